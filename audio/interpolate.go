@@ -1,0 +1,105 @@
+package audio
+
+import "math"
+
+// TruePeakOversampling is how many points the true-peak meter looks at for each
+// sample, the sample itself among them.
+const TruePeakOversampling = 4
+
+// interpolatorTaps is the length of each phase; the four make a low-pass of 96
+// taps at four times the rate, twice what ITU-R BS.1770-4, Annex 2 lists.
+const interpolatorTaps = 24
+
+// interpolatorBeta shapes the Kaiser window. Of the whole numbers 5 to 8, 6 keeps
+// every phase flattest up to 0.42 of the rate: within 0.016 dB, and within 0.01
+// up to 0.4.
+const interpolatorBeta = 6
+
+// half is one coefficient, or one pair of samples, for each half of a window.
+type half [interpolatorTaps / 2]float64
+
+// window is the samples x[n-11] to x[n+12].
+type window [interpolatorTaps]float64
+
+// interpolator gives the waveform at n + 1/4, n + 2/4 and n + 3/4; phase 0 is
+// the sample itself. Mirrored in the middle of the window, phase 1 becomes
+// phase 3 and phase 2 stays, so the coefficients are kept as what they do to
+// sums and differences of mirrored samples: 12 of each for a window.
+var interpolator = newInterpolator()
+
+type interpolate struct {
+	middle    half // phase 2, of the sums
+	even, odd half // phase 1 = even of the sums + odd of the differences; phase 3 = even - odd
+	// norm bounds |output| / max |input|: the largest sum of magnitudes of a
+	// phase's taps, raised by more than rounding can add.
+	norm float64
+}
+
+func newInterpolator() (h interpolate) {
+	quarter, middle := designPhase(1./4), designPhase(2./4)
+	for k := range h.even {
+		mirrored := quarter[len(quarter)-1-k]
+		h.even[k] = (quarter[k] + mirrored) / 2
+		h.odd[k] = (quarter[k] - mirrored) / 2
+		h.middle[k] = middle[k]
+	}
+	h.norm = max(magnitudes(quarter), magnitudes(middle)) * (1 + 1e-12)
+	return h
+}
+
+// designPhase is the row of taps that gives the waveform at n + t.
+func designPhase(t float64) (h window) {
+	sum := 0.
+	for k := range h {
+		away := float64(k-(interpolatorTaps/2-1)) - t
+		h[k] = sinc(away) * kaiser(away/(interpolatorTaps/2), interpolatorBeta)
+		sum += h[k]
+	}
+	for k := range h {
+		h[k] /= sum // a constant stays what it is
+	}
+	return h
+}
+
+func magnitudes(h window) float64 {
+	sum := 0.
+	for _, c := range h {
+		sum += math.Abs(c)
+	}
+	return sum
+}
+
+// peak is the largest magnitude of the three points.
+func (h *interpolate) peak(x *window) float64 {
+	var middle, even, odd float64
+	for k := range h.middle {
+		sum, difference := x[k]+x[len(x)-1-k], x[k]-x[len(x)-1-k]
+		middle += h.middle[k] * sum
+		even += h.even[k] * sum
+		odd += h.odd[k] * difference
+	}
+	return max(math.Abs(middle), math.Abs(even)+math.Abs(odd))
+}
+
+func sinc(t float64) float64 {
+	if t == 0 {
+		return 1
+	}
+	return math.Sin(math.Pi*t) / (math.Pi * t)
+}
+
+// kaiser is the Kaiser window at t in [-1, 1] (Kaiser 1974), 1 at 0.
+func kaiser(t, beta float64) float64 {
+	return bessel0(beta*math.Sqrt(max(0, 1-t*t))) / bessel0(beta)
+}
+
+// bessel0 is the modified Bessel function I0 by its power series, which for
+// arguments up to 8 needs no more than 30 terms.
+func bessel0(x float64) float64 {
+	sum, term := 1., 1.
+	for k := 1.; k <= 30; k++ {
+		term *= (x / 2 / k) * (x / 2 / k)
+		sum += term
+	}
+	return sum
+}
