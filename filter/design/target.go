@@ -1,0 +1,118 @@
+package design
+
+import "math"
+
+// Level is what a magnitude must be at one frequency, linear.
+type Level struct {
+	// Aim is the value to design for.
+	Aim float64
+	// Low and High bound what may come out before any tolerance is given.
+	// They are equal where the target is a plain curve; Low is 0 where deeper
+	// is free.
+	Low, High float64
+	// Allow is the tolerance in dB at this frequency.
+	Allow float64
+}
+
+// Target is a magnitude to be met.
+type Target struct {
+	// Grid gives the levels on the grid of a transform of size points, at
+	// omega = 2 pi k/size for k = 0 to size/2; size is even. It is asked for
+	// as a whole because a long kernel's magnitude is only cheap to know so.
+	Grid func(size int) []Level
+	// At gives the level at one frequency, and Points the frequencies where
+	// a grid would have to be much denser than elsewhere: round its zeros.
+	At     func(omega float64) Level
+	Points []float64
+}
+
+// FloorDB is how far under the greatest target level an error is always
+// forgiven: no kernel of finite length reaches a zero of the target exactly.
+const FloorDB = -80
+
+// Grid is a Target sampled: the grid's points, then the target's own.
+type Grid struct {
+	levels []Level
+	size   int
+	points []float64
+	floor  float64
+}
+
+// Sample puts a target on the grid of a size-point transform.
+func (t Target) Sample(size int) *Grid {
+	g := &Grid{levels: t.Grid(size), size: size, points: t.Points}
+	for _, omega := range t.Points {
+		g.levels = append(g.levels, t.At(omega))
+	}
+	top := 0.0
+	for _, l := range g.levels {
+		top = math.Max(top, l.High)
+	}
+	g.floor = math.Pow(10, FloorDB/20.0) * top
+	return g
+}
+
+// Magnitude is |H| where a Grid asks for it: at bin k of its transform, and at
+// a frequency between bins.
+type Magnitude struct {
+	Bin func(k int) float64
+	At  func(omega float64) float64
+}
+
+// at is the magnitude at a grid's i-th level.
+func (g *Grid) at(m Magnitude, i int) float64 {
+	if bins := g.size/2 + 1; i >= bins {
+		return m.At(g.points[i-bins])
+	}
+	return m.Bin(i)
+}
+
+// guard is the share of a tolerance that a design may use. On a grid of eight
+// points to a ripple of the error, the crest of one can stand between two
+// points, 1 - cos(pi/16) = 1.9 % above them.
+const guard = 0.97
+
+// Met tells whether a magnitude keeps, with something in hand for what stands
+// between the points (guard),
+//
+//	Low - a Low - floor <= |H| <= High + a High + floor
+//
+// at every point, with a = 10^(Allow/20) - 1. NaN fails.
+func (g *Grid) Met(magnitude Magnitude) bool {
+	for i, l := range g.levels {
+		a := guard * (math.Pow(10, l.Allow/20) - 1)
+		m := g.at(magnitude, i)
+		if !(m <= l.High+a*l.High+guard*g.floor && m >= l.Low-a*l.Low-guard*g.floor) {
+			return false
+		}
+	}
+	return true
+}
+
+// ErrorDB is the least tolerance in dB, the same at every frequency, under
+// which the magnitude would be met: the error that was actually reached.
+func (g *Grid) ErrorDB(magnitude Magnitude) float64 {
+	worst := 0.0
+	for i, l := range g.levels {
+		m := g.at(magnitude, i)
+		if math.IsNaN(m) {
+			return math.NaN()
+		}
+		if over := m - l.High - g.floor; over > 0 {
+			worst = math.Max(worst, ratio(over, l.High))
+		}
+		if under := l.Low - m - g.floor; under > 0 {
+			worst = math.Max(worst, ratio(under, l.Low))
+		}
+	}
+	return 20 * math.Log10(1+worst)
+}
+
+// ratio is err relative to level; both are above the floor when it matters,
+// so a level of 0 with an error left over is an infinite one.
+func ratio(err, level float64) float64 {
+	if level == 0 {
+		return math.Inf(1)
+	}
+	return err / level
+}

@@ -1,0 +1,54 @@
+package response
+
+import "math"
+
+// System is a causal filter: a kernel followed by a cascade. Nil taps stand
+// for a kernel of the one tap 1.
+type System struct {
+	Taps     []float64
+	Sections []Section
+}
+
+// Spectrum gives H at omega = 2 pi k/size, k = 0 to size/2: the kernel's
+// discrete transform times the sections' own formula. size is a power of two,
+// at least len(Taps).
+func (s System) Spectrum(size int) []complex128 {
+	h := make([]complex128, size/2+1)
+	for k := range h {
+		h[k] = 1
+	}
+	if s.Taps != nil {
+		h = Spectrum(s.Taps, size)
+	}
+	if len(s.Sections) > 0 {
+		for k := range h {
+			h[k] *= SectionsAt(s.Sections, 2*math.Pi*float64(k)/float64(size))
+		}
+	}
+	return h
+}
+
+// At is H at omega radians a sample, summed directly.
+func (s System) At(omega float64) complex128 {
+	h := SectionsAt(s.Sections, omega)
+	if s.Taps != nil {
+		h *= TapsAt(s.Taps, omega)
+	}
+	return h
+}
+
+// GroupDelay gives the group delay in samples on the grid of Spectrum: by
+// Re{DFT(n h)/DFT(h)} for the kernel, NaN where that is not stated, plus the
+// sections' own formula.
+func (s System) GroupDelay(size int) []float64 {
+	tau := make([]float64, size/2+1)
+	if s.Taps != nil {
+		tau = TapsGroupDelay(s.Taps, size)
+	}
+	if len(s.Sections) > 0 {
+		for k := range tau {
+			tau[k] += SectionsGroupDelay(s.Sections, 2*math.Pi*float64(k)/float64(size))
+		}
+	}
+	return tau
+}
