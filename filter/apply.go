@@ -1,0 +1,186 @@
+package filter
+
+import (
+	"fmt"
+	"io"
+
+	"fettle/audio"
+	"fettle/filter/stream"
+
+	goaudio "github.com/go-audio/audio"
+)
+
+// chunk is how many frames Apply moves at a time.
+const chunk = 4096
+
+// Apply filters a stream: aligned, of the same length and format. It fails
+// with an error that wraps ErrForRecording when the chain names a channel
+// that the stream does not have or was realised at another rate.
+func (f *Filter) Apply(src audio.Source) (audio.Source, error) {
+	return f.ApplyWith(src, f.chain.Edges)
+}
+
+// ApplyWith is Apply with other edges than the chain's: a probe stands in
+// silence, whatever a recording would.
+func (f *Filter) ApplyWith(src audio.Source, edges Edges) (audio.Source, error) {
+	format := src.Format()
+	if err := f.suits(format); err != nil {
+		return nil, err
+	}
+	return f.newAligned(src, format, edges), nil
+}
+
+func (f *Filter) suits(format *goaudio.Format) error {
+	if format.SampleRate != f.rate {
+		return &recordingError{ChainError{File: f.chain.File, Msg: fmt.Sprintf("was realised at %d Hz but the recording has %d Hz", f.rate, format.SampleRate)}}
+	}
+	for i, s := range f.chain.Stages {
+		for _, n := range s.Channels {
+			if n > format.NumChannels && s.When.Holds(float64(f.rate)) {
+				return f.chain.stageError(i, fmt.Errorf("names channel %d, but the recording has %d; take it from 'channels', or treat such recordings with a chain of their own", n, format.NumChannels))
+			}
+		}
+	}
+	return nil
+}
+
+// lane is the channels of one stream that share a path.
+type lane struct {
+	channels []int // from 0
+	kernel   stream.Kernel
+	planes   [][]float64 // this lane's part of the stream's planes
+}
+
+// aligned is the Source that Apply returns.
+type aligned struct {
+	src    audio.Source
+	input  *extended
+	lanes  []lane
+	raw    []float64   // one chunk, interleaved
+	planes [][]float64 // one chunk, a slice a channel
+	skip   int64       // frames still to be dropped
+	at, n  int         // what is left of the planes: frames at to n
+	out    int64       // frames given so far
+}
+
+func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, edges Edges) *aligned {
+	a := &aligned{src: src, raw: make([]float64, chunk*format.NumChannels)}
+	for range format.NumChannels {
+		a.planes = append(a.planes, make([]float64, chunk))
+	}
+	lead, tail := 0, 0
+	for _, p := range f.paths {
+		var channels []int
+		for c := range format.NumChannels {
+			if f.pathOf(c+1) == p {
+				channels = append(channels, c)
+			}
+		}
+		if channels == nil {
+			continue
+		}
+		k := p.kernel(len(channels))
+		lead = max(lead, f.align.skip(p)+k.Delay())
+		tail = max(tail, k.Tail())
+		a.lanes = append(a.lanes, lane{channels: channels, kernel: k})
+	}
+	for i := range a.lanes {
+		l := &a.lanes[i]
+		wait := lead - f.align.skip(f.pathOf(l.channels[0]+1)) - l.kernel.Delay()
+		if wait > 0 {
+			l.kernel = stream.Series(l.kernel, stream.NewDelay(wait, len(l.channels)))
+		}
+		for _, c := range l.channels {
+			l.planes = append(l.planes, a.planes[c])
+		}
+	}
+	before := 0
+	if edges != Silence {
+		before = tail
+	}
+	a.input = newExtended(src, edges, before, lead)
+	a.skip = int64(before + lead)
+	return a
+}
+
+// pathOf finds the path of a channel, from 1.
+func (f *Filter) pathOf(channel int) *Path {
+	for _, p := range f.paths {
+		if p.Channel == channel {
+			return p
+		}
+	}
+	return f.paths[len(f.paths)-1]
+}
+
+// kernel makes the path's streaming kernel for some channels.
+func (p *Path) kernel(channels int) stream.Kernel {
+	var ks []stream.Kernel
+	if p.Delay > 0 {
+		ks = append(ks, stream.NewDelay(p.Delay, channels))
+	}
+	if p.fir != nil {
+		ks = append(ks, p.fir.Kernel(channels))
+	}
+	if len(p.System.Sections) > 0 {
+		ks = append(ks, stream.NewCascade(p.System.Sections, channels))
+	}
+	return stream.Series(ks...)
+}
+
+func (a *aligned) Format() *goaudio.Format { return a.src.Format() }
+func (a *aligned) Frames() int64           { return a.src.Frames() }
+
+// ReadFrames pulls input until there is output to give.
+func (a *aligned) ReadFrames(dst []float64) (int, error) {
+	for a.at == a.n && !a.ended() {
+		if err := a.fill(); err != nil {
+			return 0, err
+		}
+	}
+	if a.ended() {
+		return 0, io.EOF
+	}
+	channels := len(a.planes)
+	frames := min(len(dst)/channels, a.n-a.at)
+	if end := a.input.length; end >= 0 {
+		frames = int(min(int64(frames), end-a.out))
+	}
+	for c, plane := range a.planes {
+		for i, v := range plane[a.at : a.at+frames] {
+			dst[i*channels+c] = v
+		}
+	}
+	a.at += frames
+	a.out += int64(frames)
+	return frames, nil
+}
+
+// ended tells whether as many frames went out as the source turned out to have.
+func (a *aligned) ended() bool { return a.input.length >= 0 && a.out >= a.input.length }
+
+// fill runs one chunk of input through the lanes.
+func (a *aligned) fill() error {
+	n, err := a.input.ReadFrames(a.raw)
+	if err != nil {
+		return err
+	}
+	channels := len(a.planes)
+	for c, plane := range a.planes {
+		for i := range n {
+			plane[i] = a.raw[i*channels+c]
+		}
+	}
+	part := make([][]float64, 0, channels)
+	for _, l := range a.lanes {
+		part = part[:0]
+		for _, plane := range l.planes {
+			part = append(part, plane[:n])
+		}
+		l.kernel.Process(part, part)
+	}
+	drop := min(a.skip, int64(n))
+	a.skip -= drop
+	a.at, a.n = int(drop), n
+	return nil
+}

@@ -1,0 +1,102 @@
+package filter
+
+import (
+	"math"
+
+	"fettle/filter/design"
+)
+
+// A cusp is where |H| touches zero at an angle: the centre of a notch, DC
+// under a first-order high-pass. A linear-phase kernel for it decays only as
+// 1/t^2, so inside its -3 dB width the target is one-sided: at least the
+// curve's attenuation, up to a depth; deeper is free.
+//
+// In the bilinear variable tan(omega/2) each such stage is x/sqrt(x^2 + 1),
+// with x its distance from the zero in half widths. The smooth twin
+// x^2/(x^2 + sqrt 2 - 1) has the same -3 dB width, never less attenuation
+// inside it and at most 0.132 dB less outside.
+type cusp struct {
+	distance func(omega float64) float64 // x; -3 dB at 1
+	shallow  float64                     // 10^(-depth/20)
+	points   []float64                   // omega where the depth begins and ends to bind
+}
+
+// depth is how many dB a one-sided part must reach.
+type depth struct{ db float64 }
+
+const (
+	twinSquare = math.Sqrt2 - 1
+	// twinAllow is the tolerance of a stage with a smooth twin where the twin
+	// strays furthest from the curve, and twinStray that distance; both dB.
+	twinAllow = 0.15
+	twinStray = 0.1313
+)
+
+// highpass serves a first-order high-pass, whose zero is at DC.
+func (d *depth) highpass(hz, rate float64) *cusp {
+	corner := math.Tan(math.Pi * hz / rate)
+	c := d.cusp(func(omega float64) float64 { return math.Tan(omega/2) / corner })
+	for _, x := range c.near() {
+		c.points = append(c.points, 2*math.Atan(corner*x))
+	}
+	return c
+}
+
+// bandstop serves a first-order band-stop with -3 dB points lo and hi.
+func (d *depth) bandstop(lo, hi, rate float64) *cusp {
+	a, b := math.Tan(math.Pi*lo/rate), math.Tan(math.Pi*hi/rate)
+	return d.band(a*b, b-a)
+}
+
+func (d *depth) notch(hz, width, rate float64) *cusp {
+	centre := math.Tan(math.Pi * hz / rate)
+	// The digital width B of a bilinear notch is that of tan(B/2)(1 + centre^2).
+	return d.band(centre*centre, math.Tan(math.Pi*width/rate)*(1+centre*centre))
+}
+
+// band serves a zero at the root of square, in the bilinear variable, with
+// -3 dB points width apart.
+func (d *depth) band(square, width float64) *cusp {
+	c := d.cusp(func(omega float64) float64 {
+		w := math.Tan(omega / 2)
+		if w == 0 {
+			return math.Inf(1)
+		}
+		return math.Abs(w*w-square) / (w * width)
+	})
+	for _, x := range c.near() {
+		// Both solutions of w^2 -+ x width w - square = 0.
+		half := x * width / 2
+		root := math.Sqrt(half*half + square)
+		c.points = append(c.points, 2*math.Atan(root-half), 2*math.Atan(root+half))
+	}
+	return c
+}
+
+func (d *depth) cusp(distance func(float64) float64) *cusp {
+	return &cusp{distance: distance, shallow: math.Pow(10, -d.db/20)}
+}
+
+// near lists distances from the zero at which the curve runs through the
+// levels round the depth, where a grid fit for the whole would see nothing.
+func (c *cusp) near() []float64 {
+	out := []float64{0}
+	for x := c.shallow / 4; x < 1; x *= math.Sqrt2 {
+		out = append(out, x)
+	}
+	return out
+}
+
+// level turns the stage's curve at omega into a target with its one-sided part.
+func (c *cusp) level(omega, magnitude float64) design.Level {
+	x := c.distance(omega)
+	if math.IsInf(x, 1) {
+		return design.Level{Aim: magnitude, Low: magnitude, High: magnitude}
+	}
+	twin := x * x / (x*x + twinSquare)
+	if x < 1 {
+		return design.Level{Aim: twin, High: math.Max(magnitude, c.shallow)}
+	}
+	stray := 20 * math.Log10(twin/magnitude)
+	return design.Level{Aim: twin, Low: magnitude, High: magnitude, Allow: twinAllow * stray / twinStray}
+}

@@ -1,0 +1,171 @@
+package filter
+
+import (
+	"io"
+
+	"fettle/audio"
+)
+
+// extended is a source with frames put before its first and after its last:
+// zeros, the outermost frame held, or the recording reflected about its
+// outermost frame (which is not repeated).
+type extended struct {
+	src      audio.Source
+	edges    Edges
+	channels int
+	before   int       // frames to put ahead
+	started  bool      // head is made
+	head     []float64 // frames still to be given before the source goes on
+	ring     []float64 // the source's last frames, frame k at k mod its length
+	seen     int64     // frames of the source that went by
+	length   int64     // the source's length, -1 until its end is met
+	past     int64     // frames given beyond the end
+}
+
+// newExtended puts before frames ahead of src and as many after it as are
+// read; of those, the first after are exact and the rest need only exist.
+func newExtended(src audio.Source, edges Edges, before, after int) *extended {
+	e := &extended{src: src, edges: edges, channels: src.Format().NumChannels, before: before, length: -1}
+	switch edges {
+	case Hold:
+		e.ring = make([]float64, e.channels)
+	case Mirror:
+		e.ring = make([]float64, (after+1)*e.channels)
+	}
+	return e
+}
+
+// ReadFrames fills dst with what comes next. It ends with io.EOF only for a
+// source without frames; otherwise only the source's own errors end it.
+func (e *extended) ReadFrames(dst []float64) (int, error) {
+	if !e.started {
+		if err := e.start(); err != nil {
+			return 0, err
+		}
+	}
+	if len(e.head) > 0 {
+		n := copy(dst, e.head)
+		e.head = e.head[n:]
+		return n / e.channels, nil
+	}
+	if e.length < 0 {
+		n, err := e.read(dst)
+		if err != io.EOF {
+			return n, err
+		}
+	}
+	if e.length == 0 {
+		return 0, io.EOF
+	}
+	e.pad(dst)
+	return len(dst) / e.channels, nil
+}
+
+// read takes frames from the source and remembers the last of them.
+func (e *extended) read(dst []float64) (int, error) {
+	n, err := e.src.ReadFrames(dst)
+	if err == io.EOF {
+		e.length = e.seen
+		return 0, err
+	}
+	if err != nil {
+		return 0, err
+	}
+	e.remember(dst[:n*e.channels])
+	return n, nil
+}
+
+func (e *extended) remember(frames []float64) {
+	size := len(e.ring) / e.channels
+	n := len(frames) / e.channels
+	skip := max(0, n-size)
+	for i := skip; i < n; i++ {
+		at := int((e.seen + int64(i)) % int64(max(size, 1)))
+		copy(e.frame(e.ring, at), e.frame(frames, i))
+	}
+	e.seen += int64(n)
+}
+
+func (e *extended) frame(frames []float64, i int) []float64 {
+	return frames[i*e.channels : (i+1)*e.channels]
+}
+
+// start makes the frames that stand ahead of the source, for which it must
+// look into the source: one frame to hold, as many as are asked to mirror.
+func (e *extended) start() error {
+	e.started = true
+	if e.before == 0 {
+		return nil
+	}
+	want := 0
+	switch e.edges {
+	case Hold:
+		want = 1
+	case Mirror:
+		want = e.before + 1
+	}
+	first, err := e.take(want)
+	if err != nil {
+		return err
+	}
+	have := len(first) / e.channels
+	e.head = make([]float64, e.before*e.channels, (e.before+have)*e.channels)
+	if have > 0 {
+		for i := range e.before {
+			from := 0
+			if e.edges == Mirror {
+				from = reflect(int64(i-e.before), int64(have))
+			}
+			copy(e.frame(e.head, i), e.frame(first, from))
+		}
+	}
+	e.head = append(e.head, first...)
+	return nil
+}
+
+// take reads up to frames frames of the source.
+func (e *extended) take(frames int) ([]float64, error) {
+	var out []float64
+	for buf := make([]float64, chunk*e.channels); len(out) < frames*e.channels; {
+		n, err := e.read(buf[:min(len(buf), frames*e.channels-len(out))])
+		if err == io.EOF {
+			break
+		}
+		if err != nil {
+			return nil, err
+		}
+		out = append(out, buf[:n*e.channels]...)
+	}
+	return out, nil
+}
+
+// pad fills dst with frames from beyond the source's end.
+func (e *extended) pad(dst []float64) {
+	size := int64(len(e.ring) / e.channels)
+	for i := range len(dst) / e.channels {
+		to := e.frame(dst, i)
+		switch e.edges {
+		case Hold:
+			copy(to, e.ring)
+		case Mirror:
+			from := int64(reflect(e.length+e.past, e.length))
+			copy(to, e.frame(e.ring, int(from%size)))
+		default:
+			clear(to)
+		}
+		e.past++
+	}
+}
+
+// reflect maps an index outside 0..n-1 into it, mirrored about 0 and n-1 as
+// often as needed.
+func reflect(i, n int64) int {
+	if n == 1 {
+		return 0
+	}
+	period := 2 * (n - 1)
+	if i %= period; i < 0 {
+		i += period
+	}
+	return int(min(i, period-i))
+}

@@ -1,0 +1,117 @@
+package filter
+
+import (
+	"fettle/filter/design"
+	"fettle/filter/stream"
+	"math"
+	"math/cmplx"
+)
+
+// Rate is the sample rate in Hz that the filter was realised for.
+func (f *Filter) Rate() int { return f.rate }
+
+// Chain is the chain that was realised.
+func (f *Filter) Chain() *Chain { return f.chain }
+
+// Phase names the realisation: what the caller asked for, else the chain's
+// own phase, else given.
+func (f *Filter) Phase() Realisation {
+	switch {
+	case f.as != Written:
+		return f.as
+	case f.chain.Phase != Written:
+		return f.chain.Phase
+	}
+	return Given
+}
+
+// Paths lists the ways that channels take, the one for all channels that no
+// stage names last. Most chains have one.
+func (f *Filter) Paths() []*Path { return f.paths }
+
+// Untouched tells whether a channel (from 1) comes out with the very samples
+// that went in, moved by whole frames at most: nothing is requantised.
+func (f *Filter) Untouched(channel int) bool {
+	s := f.pathOf(channel).System
+	return s.Taps == nil && len(s.Sections) == 0
+}
+
+// Reach is how many samples before and after the aligned instant a path's
+// output to a single impulse may be other than negligible.
+func (f *Filter) Reach(p *Path) (before, after int) {
+	tail := p.Delay
+	if p.System.Taps != nil {
+		tail += len(p.System.Taps) - 1
+	}
+	if len(p.System.Sections) > 0 {
+		tail += stream.NewCascade(p.System.Sections, 1).Tail()
+	}
+	skip := f.align.skip(p)
+	return max(0, skip), max(0, tail-skip)
+}
+
+// Shift is how many samples of a path's causal response (Path.Response) come
+// before the aligned instant.
+func (f *Filter) Shift(p *Path) int { return f.align.skip(p) }
+
+// Carrier is the path without what shapes tone (gain, bells, shelves): it
+// decides which bands count as carried. It gives |H| on the grid of a
+// transform of size points.
+func (p *Path) Carrier(size int) []float64 {
+	h := p.System.Spectrum(size)
+	out := make([]float64, len(h))
+	for k := range out {
+		out[k] = cmplx.Abs(h[k])
+	}
+	for _, m := range p.members {
+		if !m.stage.kind.tone {
+			continue
+		}
+		for k, l := range m.levels(size) {
+			if l.Aim > 0 {
+				out[k] /= l.Aim
+			}
+		}
+	}
+	return out
+}
+
+// TargetErrorDB is how far the path's magnitude strays from the chain's
+// target, in dB: the least tolerance that it meets at every frequency, an
+// error 80 dB under the greatest level forgiven (design.FloorDB). It is
+// measured on the realised coefficients, on a grid of eight points to the
+// narrowest feature.
+func (p *Path) TargetErrorDB() float64 { return p.target() }
+
+func (p *Path) measureTarget(tolerance float64) float64 {
+	if len(p.members) == 0 {
+		return 0
+	}
+	size := design.GridFor(p.members.finest())
+	for size < 8*len(p.System.Taps) {
+		size *= 2
+	}
+	h := p.System.Spectrum(size)
+	g := p.members.target(tolerance).Sample(size)
+	return g.ErrorDB(design.Magnitude{
+		Bin: func(k int) float64 { return cmplx.Abs(h[k]) },
+		At:  func(omega float64) float64 { return cmplx.Abs(p.System.At(omega)) },
+	})
+}
+
+// Response gives the path's causal response on the grid of a transform of
+// size points: H, and group delay in samples, delay stages included; NaN where
+// it is not stated.
+func (p *Path) Response(size int) (h []complex128, tau []float64) {
+	h, tau = p.System.Spectrum(size), p.System.GroupDelay(size)
+	for k := range h {
+		omega := 2 * math.Pi * float64(k) / float64(size)
+		h[k] *= cmplx.Rect(1, -omega*float64(p.Delay))
+		tau[k] += float64(p.Delay)
+	}
+	return h, tau
+}
+
+// KernelName names the convolver's arithmetic, for the record: outputs are the
+// same byte for byte only under one kernel.
+const KernelName = "portable"

@@ -1,0 +1,115 @@
+package filter
+
+import (
+	"math"
+
+	"fettle/audit/figures"
+	"fettle/filter/stream"
+)
+
+// Latency is what a path delays and what Apply takes away, in samples. Delay
+// stages are intent and in none of these.
+type Latency struct {
+	// Exact is the bulk latency (response.BulkLatency), or the centroid where
+	// the chain aligns by that. It may have a fraction and may be negative.
+	Exact float64
+	// Removed is what Apply removes. It is whole unless the chain asks for
+	// the fraction to be removed too.
+	Removed float64
+	// Residual is Exact less Removed: what is left.
+	Residual float64
+	// LookAhead is how many frames of input after a frame its output needs.
+	LookAhead int
+}
+
+// alignment is how a filter's paths are brought in line. All channels of a
+// recording are shifted alike: what a stage costs one channel delays the
+// others by as many whole samples, then one figure is removed from all.
+type alignment struct {
+	to       Align
+	greatest int // round(bulk) of the latest path
+	removed  int // whole samples removed from every channel
+}
+
+func (f *Filter) alignPaths() alignment {
+	a := alignment{to: f.chain.Align}
+	for i, p := range f.paths {
+		p.bulk = p.latencyBy(a.to.To, float64(f.rate))
+		if whole := int(math.Round(p.bulk)); i == 0 || whole > a.greatest {
+			a.greatest = whole
+		}
+	}
+	switch a.to.To {
+	case AlignAuto, AlignCentroid:
+		a.removed = a.greatest
+	case AlignBy:
+		a.removed = a.to.By
+	}
+	return a
+}
+
+// latencyBy finds the path's own latency, delay stages left out.
+func (p *Path) latencyBy(to AlignTo, rate float64) float64 {
+	h := p.impulse()
+	if to == AlignCentroid {
+		return centroid(h)
+	}
+	d, _ := figures.BulkLatency(h, 0, rate)
+	return d
+}
+
+// centroid is the energy's mean instant, sum n h^2 / sum h^2.
+func centroid(h []float64) float64 {
+	var moment, energy float64
+	for n, v := range h {
+		moment += float64(n) * v * v
+		energy += v * v
+	}
+	if energy == 0 {
+		return 0
+	}
+	return moment / energy
+}
+
+// impulse is the response of System, until what is left is negligible.
+func (p *Path) impulse() []float64 {
+	h := []float64{1}
+	if p.System.Taps != nil {
+		h = p.System.Taps
+	}
+	if len(p.System.Sections) == 0 {
+		return h
+	}
+	cascade := stream.NewCascade(p.System.Sections, 1)
+	out := make([]float64, len(h)+cascade.Tail())
+	copy(out, h)
+	cascade.Process([][]float64{out}, [][]float64{out})
+	return out
+}
+
+// fraction is the part of a sample to be removed from a path.
+func (a alignment) fraction(p *Path) float64 {
+	if !a.to.Fraction {
+		return 0
+	}
+	return p.bulk - math.Round(p.bulk)
+}
+
+// skip is how many samples of System's output precede the aligned instant;
+// negative: the output has to wait.
+func (a alignment) skip(p *Path) int {
+	others := a.greatest - int(math.Round(p.bulk)) // delayed alike
+	return a.removed - others + p.lag
+}
+
+// Latency tells what is delayed and removed on a path.
+func (f *Filter) Latency(p *Path) Latency {
+	exact := p.bulk + float64(f.align.greatest) - math.Round(p.bulk)
+	removed := float64(f.align.removed) + f.align.fraction(p)
+	return Latency{
+		Exact:     exact,
+		Removed:   removed,
+		Residual:  exact - removed,
+		LookAhead: max(0, f.align.skip(p)-p.Delay),
+	}
+}

@@ -1,0 +1,215 @@
+package filter
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"fettle/filter/design"
+	"fettle/filter/response"
+
+	"github.com/goccy/go-yaml/ast"
+)
+
+// Realisation names a way to build a chain's magnitude response.
+type Realisation string
+
+// The realisations; Written, the zero value, keeps what the chain file says.
+const (
+	Written Realisation = ""
+	Linear  Realisation = "linear"
+	Minimum Realisation = "minimum"
+	IIR     Realisation = "iir"
+	Given   Realisation = "given"
+)
+
+var realisations = []string{string(Linear), string(Minimum), string(IIR), string(Given)}
+
+// ParseRealisation reads a realisation's name.
+func ParseRealisation(name string) (Realisation, error) {
+	if !slices.Contains(realisations, name) {
+		return "", fmt.Errorf("phase %q is not known; allowed are %s", name, strings.Join(realisations, ", "))
+	}
+	return Realisation(name), nil
+}
+
+// Stage is one step of a chain as its file has it.
+type Stage struct {
+	Kind     string
+	Phase    Realisation // as written at the stage, Written if it is not
+	Channels []int       // from 1; empty: all
+	When     *Condition  // nil: always
+
+	kind kind
+	at   place
+	plan func(rate float64) (plan, error)
+}
+
+// place is where a stage stands in its file.
+type place struct{ line, column int }
+
+// kind is what the realiser must know of a stage's kind.
+type kind struct {
+	read func(f *fields, c *Chain) func(rate float64) (plan, error)
+	// coefficients: given by coefficients, so the chain's phase does not
+	// speak for it.
+	coefficients bool
+	// intent: its phase is wanted; every realisation keeps it.
+	intent bool
+	// tone: shapes what is carried instead of bounding it (gain, bell,
+	// shelf), so it does not decide which bands count as carried.
+	tone bool
+}
+
+// plan is a stage at one rate. At most one of sections, taps and mask is set.
+type plan struct {
+	gain     float64            // linear factor
+	delay    float64            // samples
+	sections []response.Section // recursive form; the curve of a classical stage
+	taps     []float64          // given kernel
+	mask     *design.Mask       // bounds to be met
+	cusp     *cusp              // where a curve's target is one-sided
+}
+
+// kinds is every stage that a chain can hold.
+var kinds map[string]kind
+
+func init() { // breaks the cycle between the table and the readers that list it
+	kinds = map[string]kind{
+		"highpass":  {read: passReader(design.Highpass)},
+		"lowpass":   {read: passReader(design.Lowpass)},
+		"bandpass":  {read: passReader(design.Bandpass)},
+		"bandstop":  {read: passReader(design.Bandstop)},
+		"bell":      {read: readBell, tone: true},
+		"lowshelf":  {read: shelfReader(design.LowShelf, design.LowShelfSlope), tone: true},
+		"highshelf": {read: shelfReader(design.HighShelf, design.HighShelfSlope), tone: true},
+		"notch":     {read: readNotch},
+		"allpass":   {read: readAllpass, intent: true},
+		"gain":      {read: readGain, tone: true, intent: true},
+		"delay":     {read: readDelay, intent: true},
+		"dc":        {read: readDC},
+		"fir":       {read: readFIR, coefficients: true},
+		"biquads":   {read: readBiquads, coefficients: true},
+	}
+}
+
+func kindNames() string {
+	names := make([]string, 0, len(kinds))
+	for name := range kinds {
+		names = append(names, name)
+	}
+	slices.Sort(names)
+	return strings.Join(names, ", ")
+}
+
+// readStage reads one item of the list of stages.
+func (c *Chain) readStage(d *decoder, n ast.Node) *Stage {
+	item := d.mapping(n, "a stage")
+	if d.err != nil {
+		return nil
+	}
+	if len(item.order) != 1 {
+		d.fail(n, "a stage is one name with its values, such as highpass: {at: 70 Hz, order: 4}; here are %d names", len(item.order))
+		return nil
+	}
+	name := item.order[0]
+	entry := item.keys[name]
+	k, ok := kinds[name]
+	if !ok {
+		d.fail(entry.Key, "there is no stage '%s'; stages are %s", name, kindNames())
+		return nil
+	}
+	f := d.mapping(entry.Value, "stage "+name)
+	s := &Stage{Kind: name, kind: k}
+	s.at.line, s.at.column = position(entry.Key)
+	s.plan = k.read(f, c)
+	s.readCommon(f)
+	f.done()
+	return s
+}
+
+// readCommon reads what may stand on any stage.
+func (s *Stage) readCommon(f *fields) {
+	s.Phase = Realisation(f.word("phase", "", realisations...))
+	if n, ok := f.get("when"); ok {
+		s.When = f.d.condition(n)
+	}
+	if n, ok := f.get("channels"); ok {
+		for _, v := range f.d.list(n, "channels") {
+			s.Channels = append(s.Channels, f.d.whole(v, "channels", 1, math.MaxUint16))
+		}
+		if f.d.err == nil && len(s.Channels) == 0 {
+			f.d.fail(n, "'channels' is an empty list; name channels from 1, or leave it out for all")
+		}
+	}
+}
+
+// serves tells whether the stage applies to a channel (from 1; 0 stands for
+// all channels that no stage names).
+func (s *Stage) serves(channel int) bool {
+	return len(s.Channels) == 0 || slices.Contains(s.Channels, channel)
+}
+
+// phaseUnder is how the stage is realised when the chain says chain and the
+// caller asks for as.
+func (s *Stage) phaseUnder(chain, as Realisation) Realisation {
+	switch {
+	case s.Phase == Given:
+		return Given
+	case as != Written:
+		return as
+	case s.Phase != Written:
+		return s.Phase
+	case s.kind.coefficients || chain == Written:
+		return Given
+	}
+	return chain
+}
+
+// Condition is a stage's when: a comparison with the recording's rate.
+type Condition struct {
+	op   string
+	rate float64
+}
+
+var comparisons = []string{">=", "<=", "==", "!=", ">", "<"}
+
+func (d *decoder) condition(n ast.Node) *Condition {
+	text := d.text(n, "when")
+	rest, ok := strings.CutPrefix(strings.TrimSpace(text), "rate")
+	rest = strings.TrimSpace(rest)
+	for _, op := range comparisons {
+		value, found := strings.CutPrefix(rest, op)
+		if !ok || !found {
+			continue
+		}
+		hz, err := frequency.parse(value)
+		if err != nil {
+			d.fail(n, "'when': %v", err)
+		}
+		return &Condition{op, hz}
+	}
+	d.fail(n, "'when' is %s; write a comparison with the recording's rate, such as rate >= 32 kHz", describe(n))
+	return nil
+}
+
+// Holds tells whether the condition is true at a rate; nil always holds.
+func (c *Condition) Holds(rate float64) bool {
+	if c == nil {
+		return true
+	}
+	switch c.op {
+	case ">=":
+		return rate >= c.rate
+	case "<=":
+		return rate <= c.rate
+	case "==":
+		return rate == c.rate
+	case "!=":
+		return rate != c.rate
+	case ">":
+		return rate > c.rate
+	}
+	return rate < c.rate
+}
