@@ -1,0 +1,136 @@
+package audit
+
+import (
+	"fettle/audio"
+	"fettle/audit/figures"
+	"fettle/filter"
+
+	"gonum.org/v1/gonum/dsp/fourier"
+)
+
+// Result is the audit of one path of a chain at one rate.
+type Result struct {
+	Chain   string
+	Phase   filter.Realisation
+	Rate    int // Hz
+	Channel int // from 1; 0: every channel that no stage names
+	// Shared tells that the path serves all channels alike.
+	Shared bool
+
+	Latency filter.Latency
+	// Delay in samples is what the chain's delay stages add on purpose.
+	Delay int
+	// Taps and Sections are what the path is made of.
+	Taps, Sections int
+	// TargetErrorDB and ToleranceDB: how far the magnitude strays from the
+	// chain's target, and how far it may.
+	TargetErrorDB, ToleranceDB float64
+
+	Figures *figures.Figures
+	// Disagreement in seconds between the arrivals by impulse and by chirp,
+	// and AnalyticDisagreement between impulse and the coefficients' own
+	// formulas, in the worst carried band; NaN when no band is carried.
+	Disagreement, AnalyticDisagreement float64
+}
+
+// Chain audits every path of a realised chain.
+func Chain(f *filter.Filter) ([]*Result, error) {
+	var out []*Result
+	for _, p := range f.Paths() {
+		r, err := auditPath(f, p)
+		if err != nil {
+			return nil, err
+		}
+		out = append(out, r)
+	}
+	return out, nil
+}
+
+func auditPath(f *filter.Filter, p *filter.Path) (*Result, error) {
+	r := &Result{
+		Chain: f.Chain().Name, Phase: f.Phase(), Rate: f.Rate(),
+		Channel: p.Channel, Shared: len(f.Paths()) == 1,
+		Latency: f.Latency(p), Delay: p.Delay,
+		Taps: len(p.System.Taps), Sections: len(p.System.Sections),
+		TargetErrorDB: p.TargetErrorDB(), ToleranceDB: f.Chain().Tolerance,
+	}
+	rate := float64(f.Rate())
+	b := newBench(f, p)
+	h, err := b.through(impulse(f.Rate(), b.channels, b.before, b.before+1+b.after))
+	if err != nil {
+		return nil, err
+	}
+	r.Figures = figures.Measure(figures.Response{
+		H: h, Origin: b.before, Rate: rate,
+		Carried: carried(p, rate), Removed: r.Latency.Removed,
+	})
+	return r, b.compareRoads(r, h)
+}
+
+// bench is where one path is measured.
+type bench struct {
+	filter   *filter.Filter
+	path     *filter.Path
+	channels int // of the probe
+	channel  int // to be read, from 0
+	before   int // frames that the response needs before the aligned instant
+	after    int // and after it
+}
+
+func newBench(f *filter.Filter, p *filter.Path) *bench {
+	b := &bench{filter: f, path: p}
+	for _, q := range f.Paths() {
+		b.channels = max(b.channels, q.Channel)
+	}
+	if p.Channel == 0 { // one more than any that a stage names
+		b.channels++
+		b.channel = b.channels - 1
+	} else {
+		b.channel = p.Channel - 1
+	}
+	b.before, b.after = f.Reach(p)
+	return b
+}
+
+// through sends a probe through the filter, in silence.
+func (b *bench) through(probe audio.Source) ([]float64, error) {
+	out, err := b.filter.ApplyWith(probe, filter.Silence)
+	if err != nil {
+		return nil, err
+	}
+	return channelOf(out, b.channel)
+}
+
+// compareRoads measures by chirp and by formula what h says by impulse.
+func (b *bench) compareRoads(r *Result, h []float64) error {
+	rate := float64(r.Rate)
+	// At least as much chirp as response, so that it stays a chirp.
+	size := gridFor(2*(b.before+b.after+1), rate)
+	x := make([]float64, size)
+	copy(x[b.before:], chirp(rate, size-b.before-b.after))
+	y, err := b.through(everywhere(r.Rate, b.channels, x))
+	if err != nil {
+		return err
+	}
+	bands := r.Figures.Bands
+	byImpulse := impulseRoad(h, b.before, size).arrivals(bands, rate, size)
+	byChirp := chirpRoad(x, y, size).arrivals(bands, rate, size)
+	response, tau := b.path.Response(size)
+	byFormula := analyticRoad(response, tau, b.filter.Shift(b.path)).arrivals(bands, rate, size)
+	r.Disagreement = disagreement(byImpulse, byChirp, bands)
+	r.AnalyticDisagreement = disagreement(byImpulse, byFormula, bands)
+	return nil
+}
+
+// carried tells which bands the chain carries: by its magnitude without what
+// only shapes tone, put into a zero-phase response for the bands to be taken.
+func carried(p *filter.Path, rate float64) []bool {
+	size := gridFor(4*len(p.System.Taps), rate)
+	magnitude := p.Carrier(size)
+	spectrum := make([]complex128, len(magnitude))
+	for k, m := range magnitude {
+		// Half the length late, so that the response stands whole in the buffer.
+		spectrum[k] = complex(m*float64(1-2*(k%2))/float64(size), 0)
+	}
+	return figures.CarriedBands(fourier.NewFFT(size).Sequence(nil, spectrum), rate)
+}

@@ -1,0 +1,185 @@
+package figures
+
+import (
+	"math"
+	"math/cmplx"
+)
+
+// symmetryTolerance is how far mirrored taps may differ, as a fraction of the largest.
+const symmetryTolerance = 1e-12
+
+// BulkLatency is the one delay that stands for the whole response h: in samples
+// after index origin, fractional and possibly negative. rate is in Hz.
+//
+// For a kernel that is symmetric or antisymmetric to 1e-12 of its largest tap it is
+// exactly the middle, (N-1)/2 of the taps that are not zero. Otherwise it is the lag t
+// that maximises |∫ H(f)/f·e^(j2πft) df| over 20 Hz to 0.45 fs, one-sided: the
+// envelope of the correlation with pink noise. polarity is the sign of the real
+// part of that integral there, or 0, not stated, unless its modulus is at least
+// 0.75 of ∫|H|/f df and its angle within 45° of 0° or 180°.
+//
+// A response without energy, or one that is not finite, has NaN and 0.
+func BulkLatency(h []float64, origin int, rate float64) (d float64, polarity int) {
+	if (Response{H: h, Rate: rate}).unusable() != "" {
+		return math.NaN(), 0
+	}
+	x, from := support(h)
+	s := newSpectrum(x, 0, rate, 1)
+	t, polarity := s.bulkLatency()
+	return t + float64(from-origin), polarity
+}
+
+// bulkLatency is BulkLatency relative to the first sample of s.x.
+func (s *spectrum) bulkLatency() (t float64, polarity int) {
+	c := s.pinkCorrelation()
+	t, symmetric := mirror(s.x)
+	if !symmetric {
+		t = c.largest(s)
+	}
+	return t, c.polarity(t)
+}
+
+// mirror is the index about which x is symmetric or antisymmetric, if it is.
+// Only the energy's centroid can be that index.
+func mirror(x []float64) (centre float64, ok bool) {
+	var energy, moment, largest float64
+	for n, v := range x {
+		energy += v * v
+		moment += float64(n) * v * v
+		largest = max(largest, math.Abs(v))
+	}
+	twice := int(math.Round(2 * moment / energy))
+	even, odd := true, true
+	for n, v := range x {
+		var twin float64
+		if m := twice - n; m >= 0 && m < len(x) {
+			twin = x[m]
+		}
+		even = even && math.Abs(v-twin) <= symmetryTolerance*largest
+		odd = odd && math.Abs(v+twin) <= symmetryTolerance*largest
+	}
+	return float64(twice) / 2, even || odd
+}
+
+// correlation is H(f)/f df over the pink range: the one-sided spectrum of the
+// correlation with pink noise.
+type correlation struct {
+	first int // bin of w[0]
+	size  int // K
+	w     []complex128
+	total float64 // ∫|H|/f df
+}
+
+func (s *spectrum) pinkCorrelation() *correlation {
+	c := &correlation{first: -1, size: s.size}
+	s.eachPink(func(k int, pink float64) {
+		if c.first < 0 {
+			c.first = k
+		}
+		v := s.h[k] * complex(pink, 0)
+		c.w = append(c.w, v)
+		c.total += cmplx.Abs(v)
+	})
+	return c
+}
+
+// at is the integral at a lag of t samples, and its first two derivatives by t.
+func (c *correlation) at(t float64) (a0, a1, a2 complex128) {
+	unit := 2 * math.Pi / float64(c.size)
+	rotation := turn(unit * t)
+	for from := 0; from < len(c.w); from += resync {
+		z := turn(unit * t * float64(c.first+from))
+		w := unit * float64(c.first+from)
+		for _, v := range c.w[from:min(from+resync, len(c.w))] {
+			v *= z
+			a0 += v
+			a1 += complex(-w*imag(v), w*real(v))
+			a2 -= complex(w*w*real(v), w*w*imag(v))
+			w += unit
+			z *= rotation
+		}
+	}
+	return a0, a1, a2
+}
+
+// slope is the first and second derivative by t of the squared modulus, and the square itself.
+func (c *correlation) slope(t float64) (f, f1, f2 float64) {
+	a0, a1, a2 := c.at(t)
+	f1 = 2 * real(cmplx.Conj(a0)*a1)
+	f2 = 2*power(a1) + 2*real(cmplx.Conj(a0)*a2)
+	return power(a0), f1, f2
+}
+
+// contender is how near a coarse maximum must come to the largest to be refined:
+// on whole samples a maximum up to 0.45 fs is seen at worst 8 % low.
+const contender = 0.9
+
+// largest is the lag of the largest modulus: every coarse maximum that could be it, refined.
+func (c *correlation) largest(s *spectrum) float64 {
+	// A quarter of the bins holds every lag within K/8 samples, the length of x at least.
+	const stride = 4
+	n := c.size / stride
+	one := make([]complex128, n/2+1)
+	for i, v := range c.w {
+		if k := c.first + i; k%stride == 0 {
+			one[k/stride] = v
+		}
+	}
+	coarse := s.analytic(one, n)
+	var top float64
+	for _, v := range coarse {
+		top = max(top, power(v))
+	}
+	best, bestValue := 0.0, -1.0
+	for i, v := range coarse {
+		before, after := coarse[(i+n-1)%n], coarse[(i+1)%n]
+		if p := power(v); p < contender*contender*top || p < power(before) || p < power(after) {
+			continue
+		}
+		lag := i
+		if i > n/2 {
+			lag -= n
+		}
+		if t, value := c.climb(float64(lag)); value > bestValue {
+			best, bestValue = t, value
+		}
+	}
+	return best
+}
+
+// climb finds the maximum within a sample of t: Newton steps, kept inside a
+// bracket that shrinks by the sign of the slope.
+func (c *correlation) climb(t float64) (at, value float64) {
+	lo, hi := t-1, t+1
+	for range 60 {
+		f, f1, f2 := c.slope(t)
+		if f1 > 0 {
+			lo = t
+		} else {
+			hi = t
+		}
+		next := t - f1/f2
+		if !(f2 < 0 && next > lo && next < hi) {
+			next = (lo + hi) / 2
+		}
+		moved := math.Abs(next - t)
+		at, value, t = t, f, next
+		if moved < 1e-11*(1+math.Abs(t)) {
+			break
+		}
+	}
+	return at, value
+}
+
+// polarity is the sign of the correlation at lag t, 0 when it is not clear enough to state.
+func (c *correlation) polarity(t float64) int {
+	a, _, _ := c.at(t)
+	const half = math.Sqrt2 / 2 // cos 45°
+	switch modulus := cmplx.Abs(a); {
+	case !(modulus >= 0.75*c.total), math.Abs(real(a)) < half*modulus:
+		return 0
+	case real(a) < 0:
+		return -1
+	}
+	return 1
+}

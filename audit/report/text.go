@@ -1,0 +1,189 @@
+package report
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strings"
+
+	"fettle/audit"
+	"fettle/audit/figures"
+)
+
+// Width is the most columns that a text report takes.
+const Width = 100
+
+// Text writes one result for a terminal: what was built, what it does to time
+// as a whole, and band by band. No line is longer than Width.
+func Text(w io.Writer, r *audit.Result) error {
+	var b strings.Builder
+	heading(&b, r)
+	whole(&b, r)
+	rings(&b, r.Figures)
+	bands(&b, r.Figures.Bands)
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+func heading(b *strings.Builder, r *audit.Result) {
+	title := fmt.Sprintf("%s: %s phase at %s", clip(r.Chain, 48), r.Phase, hertz(float64(r.Rate)))
+	if r.Phase == "given" {
+		title = fmt.Sprintf("%s: as given, at %s", clip(r.Chain, 48), hertz(float64(r.Rate)))
+	}
+	switch {
+	case r.Channel > 0:
+		title += fmt.Sprintf(", channel %d", r.Channel)
+	case !r.Shared:
+		title += ", other channels"
+	}
+	fmt.Fprintf(b, "%s\n%s\n", title, strings.Repeat("=", len([]rune(title))))
+	fmt.Fprintf(b, "  %-22s %s\n", "built as", builtOf(r))
+	fmt.Fprintf(b, "  %-22s %s dB (allowed %g dB)\n", "off target by at most", decimal(r.TargetErrorDB, 3), r.ToleranceDB)
+}
+
+func builtOf(r *audit.Result) string {
+	var parts []string
+	if r.Taps > 0 {
+		parts = append(parts, fmt.Sprintf("a kernel of %d taps", r.Taps))
+	}
+	if r.Sections > 0 {
+		parts = append(parts, fmt.Sprintf("%d second-order sections", r.Sections))
+	}
+	if r.Delay > 0 {
+		parts = append(parts, fmt.Sprintf("a wanted delay of %d samples", r.Delay))
+	}
+	if parts == nil {
+		return "nothing: every sample passes as it is"
+	}
+	return strings.Join(parts, ", ")
+}
+
+func whole(b *strings.Builder, r *audit.Result) {
+	f, l := r.Figures, r.Latency
+	row := func(name, format string, args ...any) {
+		fmt.Fprintf(b, "  %-22s %s\n", name, fmt.Sprintf(format, args...))
+	}
+	row("latency removed", "%s samples (%s), %s left", decimal(l.Removed, 2), milliseconds(l.Removed/float64(r.Rate)), decimal(l.Residual, 2))
+	row("polarity", "%s", polarityOf(f))
+	row("delay spread", "%s over the carried bands", milliseconds(f.DelaySpread))
+	row("phase deviation", "%s degrees in the worst carried band", decimal(f.PhaseDeviation, 1))
+	row("smear, pink", "%s", smearOf(f.Pink))
+	row("smear, white", "%s", smearOf(f.White))
+	row("90 %% / 99.9 %% of energy", "within %s / %s", milliseconds(f.D90), milliseconds(f.D999))
+	row("energy ahead", "%s before the aligned instant (-60 dB)", milliseconds(f.Lead))
+	row("sum test", "%s dB: deepest loss when mixed 1:1 with the untreated", decimal(f.SumTest, 1))
+	row("probes disagree by", "%s (impulse, chirp), %s (impulse, formula)", microseconds(r.Disagreement), microseconds(r.AnalyticDisagreement))
+}
+
+func polarityOf(f *figures.Figures) string {
+	switch f.Polarity {
+	case 1:
+		return "kept"
+	case -1:
+		return "inverted"
+	}
+	return "not stated"
+}
+
+func smearOf(s figures.Smear) string {
+	return fmt.Sprintf("%s = magnitude %s and phase %s", milliseconds(s.Total), milliseconds(s.Magnitude), milliseconds(s.Phase))
+}
+
+// rings tables early and late energy.
+func rings(b *strings.Builder, f *figures.Figures) {
+	fmt.Fprintf(b, "\n  %-18s %10s %10s   %s\n", "", "level", "to -60 dB", "energy beyond 2 / 5 / 20 ms")
+	line := func(name string, c figures.RingColumn) {
+		fmt.Fprintf(b, "  %-18s %10s %10s   %s\n", name, ringLevel(c.Level), milliseconds(c.Length),
+			strings.Join([]string{ringLevel(c.Beyond[0]), ringLevel(c.Beyond[1]), ringLevel(c.Beyond[2])}, " / "))
+	}
+	line("pre-ring, white", f.PreRing.White)
+	line("pre-ring, pink", f.PreRing.Pink)
+	line("post-ring, white", f.PostRing.White)
+	line("post-ring, pink", f.PostRing.Pink)
+}
+
+func bands(b *strings.Builder, bands []figures.BandFigures) {
+	fmt.Fprintf(b, "\n  %8s %9s %12s %12s %12s %12s %9s\n", "band", "gain", "arrival", "spread", "pre-ring", "post-ring", "phase")
+	fmt.Fprintf(b, "  %8s %9s %12s %12s %12s %12s %9s\n", "Hz", "dB", "ms", "ms", "ms", "ms", "degrees")
+	for _, x := range bands {
+		if !x.Carried {
+			fmt.Fprintf(b, "  %8g %9s %12s\n", x.Nominal, decimal(x.Gain, 1), "not carried")
+			continue
+		}
+		fmt.Fprintf(b, "  %8g %9s %12s %12s %12s %12s %9s\n", x.Nominal, decimal(x.Gain, 2),
+			decimal(x.Arrival*toMS, 4), decimal(x.Spread*toMS, 4), decimal(x.PreRing*toMS, 2), decimal(x.PostRing*toMS, 2),
+			decimal(x.PhaseDeviation, 1))
+	}
+}
+
+// Brief writes one line a result, with a heading: what render shows.
+func Brief(w io.Writer, results []*audit.Result) error {
+	var b strings.Builder
+	fmt.Fprintf(&b, "%9s %4s %-8s %9s %10s %11s %11s %11s %9s\n",
+		"rate", "ch", "phase", "removed", "left", "spread", "smear", "pre-ring", "off target")
+	fmt.Fprintf(&b, "%9s %4s %-8s %9s %10s %11s %11s %11s %9s\n",
+		"", "", "", "samples", "samples", "ms", "pink, ms", "pink, dB", "dB")
+	for _, r := range results {
+		channel := "all"
+		switch {
+		case r.Channel > 0:
+			channel = fmt.Sprint(r.Channel)
+		case !r.Shared:
+			channel = "rest"
+		}
+		f := r.Figures
+		fmt.Fprintf(&b, "%9s %4s %-8s %9s %10s %11s %11s %11s %9s\n", hertz(float64(r.Rate)), channel, r.Phase,
+			decimal(r.Latency.Removed, 2), decimal(r.Latency.Residual, 3), decimal(f.DelaySpread*toMS, 4),
+			decimal(f.Pink.Total*toMS, 3), ringLevel(f.PreRing.Pink.Level), decimal(r.TargetErrorDB, 3))
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+func hertz(hz float64) string {
+	if hz >= 1000 {
+		return fmt.Sprintf("%g kHz", hz/1000)
+	}
+	return fmt.Sprintf("%g Hz", hz)
+}
+
+// decimal prints a figure, a dash where it is not stated. What rounds to zero
+// has no sign.
+func decimal(x float64, digits int) string {
+	if math.IsNaN(x) {
+		return "-"
+	}
+	s := fmt.Sprintf("%.*f", digits, x)
+	if strings.Trim(s, "-0.") == "" {
+		s = strings.TrimPrefix(s, "-")
+	}
+	return s
+}
+
+func milliseconds(seconds float64) string { return decimal(seconds*toMS, 3) + " ms" }
+
+func microseconds(seconds float64) string {
+	if math.IsNaN(seconds) {
+		return "not stated"
+	}
+	return fmt.Sprintf("%.1g us", seconds*toUS)
+}
+
+func ringLevel(db float64) string {
+	switch {
+	case math.IsNaN(db):
+		return "-"
+	case db <= figures.None:
+		return "none"
+	}
+	return decimal(db, 1) + " dB"
+}
+
+// clip shortens a name to n characters.
+func clip(name string, n int) string {
+	r := []rune(name)
+	if len(r) <= n {
+		return name
+	}
+	return string(r[:n-3]) + "..."
+}
