@@ -1,0 +1,114 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"runtime/debug"
+
+	"github.com/urfave/cli/v2"
+)
+
+// Exit statuses, a promise to scripts.
+const (
+	exitDone        = 0
+	exitNotStarted  = 1 // usage, chain, no input: nothing was done
+	exitSomeFailed  = 2 // finished, but some recordings failed
+	exitInterrupted = 130
+)
+
+const exitHelp = `EXIT STATUS
+   0 done; 1 could not start (usage, chain, no input); 2 finished, but some
+   recordings failed; 130 interrupted`
+
+// failure carries an exit status; its error may be nil when all was said.
+type failure struct {
+	status int
+	err    error
+}
+
+func (f *failure) Error() string { return fmt.Sprint(f.err) }
+func (f *failure) Unwrap() error { return f.err }
+
+// run is the whole program without process state: the one place where errors
+// become messages and statuses.
+func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
+	app := newApp(stdout, stderr)
+	args, err := flagsFirst(app, args)
+	if err == nil {
+		err = app.RunContext(ctx, args)
+	}
+	return finish(err, stderr)
+}
+
+func finish(err error, stderr io.Writer) int {
+	if err == nil {
+		return exitDone
+	}
+	status := exitNotStarted
+	var f *failure
+	if errors.As(err, &f) {
+		status, err = f.status, f.err
+	}
+	if errors.Is(err, context.Canceled) {
+		status, err = exitInterrupted, errors.New("interrupted: recordings not yet done were left as they were; the same command goes on where it stopped")
+	}
+	if err != nil {
+		fmt.Fprintf(stderr, "fettle: %v\n", err)
+	}
+	return status
+}
+
+func newApp(stdout, stderr io.Writer) *cli.App {
+	app := &cli.App{
+		Name:      "fettle",
+		Usage:     "clean recordings through one filter chain, aligned to the sample, and audit what it does to timing",
+		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN",
+		Version:   version(),
+		Writer:    stdout,
+		ErrWriter: stderr,
+		Commands:  []*cli.Command{renderCommand(), auditCommand()},
+		// Errors are printed in one place, by finish.
+		ExitErrHandler: func(*cli.Context, error) {},
+		OnUsageError:   usageError,
+		CommandNotFound: func(c *cli.Context, name string) {
+			c.App.Metadata["unknown"] = name
+		},
+		Metadata:        map[string]any{},
+		HideHelpCommand: true,
+	}
+	app.CustomAppHelpTemplate = cli.AppHelpTemplate + "\n" + exitHelp + "\n"
+	app.Action = func(c *cli.Context) error {
+		if c.Args().Present() {
+			return fmt.Errorf("there is no command %q; see fettle --help", c.Args().First())
+		}
+		return cli.ShowAppHelp(c)
+	}
+	for _, c := range app.Commands {
+		quiet(c)
+	}
+	return app
+}
+
+// quiet makes a command hand usage errors on instead of printing its help.
+func quiet(c *cli.Command) {
+	c.OnUsageError = usageError
+	c.HideHelpCommand = true
+	for _, sub := range c.Subcommands {
+		quiet(sub)
+	}
+}
+
+func usageError(c *cli.Context, err error, _ bool) error {
+	return fmt.Errorf("%w; see fettle %s --help", err, c.Command.FullName())
+}
+
+// version is the module's version where the build knows one.
+func version() string {
+	info, ok := debug.ReadBuildInfo()
+	if !ok || info.Main.Version == "" || info.Main.Version == "(devel)" {
+		return "devel"
+	}
+	return info.Main.Version
+}

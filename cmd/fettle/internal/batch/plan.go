@@ -1,0 +1,184 @@
+package batch
+
+import (
+	"crypto/sha256"
+	"errors"
+	"fmt"
+	"os"
+	"path/filepath"
+	"slices"
+	"strings"
+	"sync"
+
+	"fettle/audio"
+	"fettle/audio/pcm"
+	"fettle/filter"
+)
+
+// Options is what the caller asks for beside the chain.
+type Options struct {
+	Out      string
+	Phase    filter.Realisation
+	Encoding *pcm.Encoding // nil: as each original
+	Headroom Headroom
+	Jobs     int
+	Again    bool // redo what the record says is done
+	Version  string
+}
+
+// Headroom says how outputs are kept within full scale.
+type Headroom struct {
+	DB  float64 // taken off every recording
+	Fit bool    // take off what each recording needs
+}
+
+func (h Headroom) String() string {
+	if h.Fit {
+		return "fit"
+	}
+	return fmt.Sprintf("%g dB", h.DB)
+}
+
+// Job is one recording of a plan.
+type Job struct {
+	Input
+	Output string // path
+	Rate   int    // Hz, 0 when the header could not be read
+	Bytes  int64
+	Done   bool // the record says so, and nothing it depends on changed
+}
+
+// Plan is a batch that is ready to run.
+type Plan struct {
+	Chain    *filter.Chain
+	Options  Options
+	Jobs     []*Job
+	Problems []error // inputs that could not even be listed
+
+	once sync.Once
+	made *filters
+}
+
+// New plans a batch. It reads headers and the treatment record but writes
+// nothing. It refuses inputs that would share an output and outputs that would
+// land on an original.
+func New(chain *filter.Chain, args []string, o Options) (*Plan, error) {
+	inputs, problems, err := Gather(args, o.Out)
+	if err != nil {
+		return nil, err
+	}
+	p := &Plan{Chain: chain, Options: o, Problems: problems}
+	for _, in := range inputs {
+		p.Jobs = append(p.Jobs, &Job{Input: in, Output: filepath.Join(o.Out, in.Rel)})
+	}
+	if err := p.refuseHarm(); err != nil {
+		return nil, err
+	}
+	past, err := readRecord(p.recordPath())
+	if err != nil {
+		return nil, err
+	}
+	for _, j := range p.Jobs {
+		j.inspect()
+		j.Done = !o.Again && p.isDone(j, past[j.Rel])
+	}
+	return p, nil
+}
+
+// Rates lists the rates of the recordings that are still to be treated.
+func (p *Plan) Rates() []int {
+	var out []int
+	for _, j := range p.Jobs {
+		if j.Rate > 0 && !j.Done && !slices.Contains(out, j.Rate) {
+			out = append(out, j.Rate)
+		}
+	}
+	slices.Sort(out)
+	return out
+}
+
+// refuseHarm checks that every output is its own and none is an original.
+func (p *Plan) refuseHarm() error {
+	byOutput := map[string]*Job{}
+	byFile := map[string]*Job{}
+	for _, j := range p.Jobs {
+		byFile[absolute(j.Path)] = j
+	}
+	for _, j := range p.Jobs {
+		// Folded, since not every file system tells a.wav from A.WAV.
+		key := strings.ToLower(filepath.Clean(j.Output))
+		if other := byOutput[key]; other != nil {
+			return fmt.Errorf("%s and %s would both become %s; treat them in batches of their own", other.Path, j.Path, j.Output)
+		}
+		byOutput[key] = j
+		if original := byFile[absolute(j.Output)]; original != nil {
+			return fmt.Errorf("the output %s is the original %s; choose another folder for --out, since originals are never written to", j.Output, original.Path)
+		}
+		if sameFile(j.Output, j.Path) {
+			return fmt.Errorf("the output %s is the original itself; choose another folder for --out, since originals are never written to", j.Output)
+		}
+	}
+	return nil
+}
+
+func sameFile(a, b string) bool {
+	x, errX := os.Stat(a)
+	y, errY := os.Stat(b)
+	return errX == nil && errY == nil && os.SameFile(x, y)
+}
+
+// inspect reads the header for the rate; what is wrong with it comes up again
+// when the job is run, and is reported there.
+func (j *Job) inspect() {
+	if info, err := os.Stat(j.Path); err == nil {
+		j.Bytes = info.Size()
+	}
+	r, err := audio.Open(j.Path)
+	if err != nil {
+		return
+	}
+	defer r.Close()
+	j.Rate = r.Format().SampleRate
+}
+
+// isDone compares what the record has of an earlier run with what is asked now.
+func (p *Plan) isDone(j *Job, e *Entry) bool {
+	if e == nil || e.Status != StatusDone {
+		return false
+	}
+	in, err := os.Stat(j.Path)
+	if err != nil || in.Size() != e.InputBytes || !in.ModTime().Equal(e.InputModified) {
+		return false
+	}
+	out, err := os.Stat(j.Output)
+	if err != nil || out.Size() != e.OutputBytes {
+		return false
+	}
+	return e.Settings == p.settings()
+}
+
+// settings identifies all that decides an output beside its input.
+func (p *Plan) settings() string {
+	h := sha256.New()
+	encoding := "as input"
+	if p.Options.Encoding != nil {
+		encoding = p.Options.Encoding.String()
+	}
+	fmt.Fprintf(h, "%x\nphase %s\nformat %s\nheadroom %s\nversion %s\n", p.Chain.SHA256, p.Options.Phase, encoding, p.Options.Headroom, p.Options.Version)
+	return fmt.Sprintf("%x", h.Sum(nil)[:8])
+}
+
+func (p *Plan) recordPath() string { return filepath.Join(p.Options.Out, RecordName) }
+
+// PrepareOut makes the output folder and proves that it can be written to.
+func (p *Plan) PrepareOut() error {
+	out := p.Options.Out
+	if err := os.MkdirAll(out, 0o777); err != nil {
+		return fmt.Errorf("the output folder %s cannot be made: %w; choose another for --out", out, cause(err))
+	}
+	probe, err := os.CreateTemp(out, ".fettle-*")
+	if err != nil {
+		return fmt.Errorf("the output folder %s cannot be written to: %w; check its permissions or choose another for --out", out, cause(err))
+	}
+	return errors.Join(probe.Close(), os.Remove(probe.Name()))
+}

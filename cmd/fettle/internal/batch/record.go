@@ -1,0 +1,144 @@
+package batch
+
+import (
+	"bufio"
+	"bytes"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"io"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"sync"
+	"time"
+)
+
+// RecordName is the treatment record's file name in the output folder.
+const RecordName = "treatment.jsonl"
+
+// RecordSchema names the layout of a record's lines.
+const RecordSchema = "fettle.treatment/1"
+
+// What became of a recording.
+const (
+	StatusDone   = "done"
+	StatusFailed = "failed"
+)
+
+// Entry is one line of the treatment record: what was done to one recording.
+// Levels are null where there is none, as in silence.
+type Entry struct {
+	Schema  string `json:"schema"`
+	Version string `json:"version"`
+	Status  string `json:"status"`
+	Error   string `json:"error,omitempty"`
+
+	Input         string    `json:"input"`
+	Output        string    `json:"output"` // below the output folder
+	InputBytes    int64     `json:"input_bytes"`
+	InputModified time.Time `json:"input_modified"`
+	OutputBytes   int64     `json:"output_bytes"`
+	SHA256In      string    `json:"sha256_in,omitempty"`
+	SHA256Out     string    `json:"sha256_out,omitempty"`
+
+	RateHz    int    `json:"rate_hz"`
+	Channels  int    `json:"channels"`
+	Frames    int64  `json:"frames"`
+	FormatIn  string `json:"format_in"`
+	FormatOut string `json:"format_out"`
+
+	Chain           string  `json:"chain"`
+	ChainSHA256     string  `json:"chain_sha256"`
+	Settings        string  `json:"settings"`
+	Phase           string  `json:"phase"`
+	LatencySamples  float64 `json:"latency_samples"`
+	ResidualSamples float64 `json:"residual_samples"`
+	Edges           string  `json:"edges"`
+	Kernel          string  `json:"kernel"`
+
+	PeakIn               *float64 `json:"peak_in_dbfs"`
+	TruePeakIn           *float64 `json:"true_peak_in_dbtp"`
+	PeakOut              *float64 `json:"peak_out_dbfs"`
+	TruePeakOut          *float64 `json:"true_peak_out_dbtp"`
+	TruePeakOversampling int      `json:"true_peak_oversampling"`
+	HeadroomDB           float64  `json:"headroom_db"` // taken off
+	Dither               string   `json:"dither"`
+
+	Warnings []string `json:"warnings"`
+}
+
+// record appends entries to the treatment record, each flushed to disk.
+type record struct {
+	mu   sync.Mutex
+	file *os.File
+}
+
+func openRecord(path string) (*record, error) {
+	if err := dropTorn(path); err != nil {
+		return nil, fmt.Errorf("%s: %w", path, cause(err))
+	}
+	f, err := os.OpenFile(path, os.O_WRONLY|os.O_APPEND|os.O_CREATE, 0o666)
+	if err != nil {
+		return nil, fmt.Errorf("the treatment record %s cannot be written: %w; check its permissions", path, cause(err))
+	}
+	return &record{file: f}, nil
+}
+
+// dropTorn cuts a last line that a killed run left without its end.
+func dropTorn(path string) error {
+	raw, err := os.ReadFile(path)
+	if errors.Is(err, fs.ErrNotExist) || err == nil && (len(raw) == 0 || raw[len(raw)-1] == '\n') {
+		return nil
+	}
+	if err != nil {
+		return err
+	}
+	return os.Truncate(path, int64(bytes.LastIndexByte(raw, '\n')+1))
+}
+
+func (r *record) append(e *Entry) error {
+	var line bytes.Buffer
+	enc := json.NewEncoder(&line)
+	enc.SetEscapeHTML(false)
+	if err := enc.Encode(e); err != nil {
+		return err
+	}
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	if _, err := r.file.Write(line.Bytes()); err != nil {
+		return fmt.Errorf("the treatment record: %w", err)
+	}
+	return r.file.Sync()
+}
+
+func (r *record) close() error { return r.file.Close() }
+
+// readRecord gives the last entry of each output; none for a missing record.
+// A line that cannot be read is an error, but for a torn last one.
+func readRecord(path string) (map[string]*Entry, error) {
+	out := map[string]*Entry{}
+	f, err := os.Open(path)
+	if errors.Is(err, fs.ErrNotExist) {
+		return out, nil
+	}
+	if err != nil {
+		return nil, fmt.Errorf("the treatment record %s cannot be read: %w", path, cause(err))
+	}
+	defer f.Close()
+	in := bufio.NewReader(f)
+	for n := 1; ; n++ {
+		line, err := in.ReadBytes('\n')
+		if err == io.EOF {
+			return out, nil // what stands here is torn, or nothing
+		}
+		if err != nil {
+			return nil, fmt.Errorf("the treatment record %s: %w", path, err)
+		}
+		e := new(Entry)
+		if err := json.Unmarshal(line, e); err != nil || e.Schema != RecordSchema {
+			return nil, fmt.Errorf("%s:%d: not a line of a treatment record; move the file away to begin a new one", path, n)
+		}
+		out[filepath.FromSlash(e.Output)] = e
+	}
+}
