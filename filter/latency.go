@@ -3,7 +3,7 @@ package filter
 import (
 	"math"
 
-	"fettle/audit/figures"
+	"fettle/filter/response"
 	"fettle/filter/stream"
 )
 
@@ -54,7 +54,7 @@ func (p *Path) latencyBy(to AlignTo, rate float64) float64 {
 	if to == AlignCentroid {
 		return centroid(h)
 	}
-	d, _ := figures.BulkLatency(h, 0, rate)
+	d, _ := response.BulkLatency(h, 0, rate)
 	return d
 }
 

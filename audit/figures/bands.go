@@ -1,13 +1,10 @@
 package figures
 
-import "math"
+import (
+	"math"
 
-// PinkFrom is the lowest frequency, in Hz, that pink weights cover.
-const PinkFrom = 20.0
-
-// TopOfBand is the highest frequency that bands and pink weights cover, as a
-// fraction of the sample rate.
-const TopOfBand = 0.45
+	"fettle/filter/response"
+)
 
 // Band is a one-third-octave band; frequencies in Hz.
 type Band struct {
@@ -30,7 +27,7 @@ func Bands(rate float64) []Band {
 	var bands []Band
 	for n := lowestBand; ; n++ {
 		b := band(n)
-		if !(b.Upper <= TopOfBand*rate) {
+		if !(b.Upper <= response.TopOfBand*rate) {
 			return bands
 		}
 		bands = append(bands, b)

@@ -3,6 +3,8 @@ package figures
 import (
 	"math"
 	"testing"
+
+	"fettle/filter/response"
 )
 
 func TestBulkLatencyOfSymmetricKernels(t *testing.T) {
@@ -19,7 +21,7 @@ func TestBulkLatencyOfSymmetricKernels(t *testing.T) {
 		{"type III", []float64{1, 2, 0, -2, -1}, 2, 0},
 		{"type IV", []float64{1, 3, -3, -1}, 1.5, 0},
 	} {
-		d, polarity := BulkLatency(c.h, 0, rate8)
+		d, polarity := response.BulkLatency(c.h, 0, rate8)
 		if d != c.d || polarity != c.polarity {
 			t.Errorf("%s: %v samples, polarity %d; want %v, %d", c.name, d, polarity, c.d, c.polarity)
 		}
@@ -31,7 +33,7 @@ func TestBulkLatencyOfSymmetricKernels(t *testing.T) {
 func TestBulkLatencyOfNearlySymmetricKernel(t *testing.T) {
 	h := zeroPhase(butterworth(4, 300, 3400, rate48, 1<<12), 2000)
 	h[1500] += 1e-9
-	d, polarity := BulkLatency(h, 1990, rate48)
+	d, polarity := response.BulkLatency(h, 1990, rate48)
 	within(t, "latency", d, 10, 1e-5)
 	if polarity != 1 {
 		t.Errorf("polarity %d, want 1", polarity)
@@ -41,12 +43,12 @@ func TestBulkLatencyOfNearlySymmetricKernel(t *testing.T) {
 // The integer shift and the sign of a response pass through exactly.
 func TestBulkLatencyShiftAndSign(t *testing.T) {
 	h := powers(1, 0.5, 200)
-	d, polarity := BulkLatency(h, 0, rate8)
+	d, polarity := response.BulkLatency(h, 0, rate8)
 	if polarity != 1 {
 		t.Errorf("polarity %d, want 1", polarity)
 	}
 	for _, shift := range []int{1, 777, 30000} {
-		moved, p := BulkLatency(append(make([]float64, shift), scaled(h, -0.01)...), 5, rate8)
+		moved, p := response.BulkLatency(append(make([]float64, shift), scaled(h, -0.01)...), 5, rate8)
 		within(t, "shifted", moved, d+float64(shift-5), 1e-7)
 		if p != -1 {
 			t.Errorf("polarity %d of the inverted response, want -1", p)
@@ -58,7 +60,7 @@ func TestBulkLatencyShiftAndSign(t *testing.T) {
 // 1e-5 up to 0.45 fs.
 func TestBulkLatencyFraction(t *testing.T) {
 	for _, d := range []float64{-0.45, -0.1, 0.1, 0.25, 0.4999} {
-		got, _ := BulkLatency(fractionalDelay(d, 200), 200, rate8)
+		got, _ := response.BulkLatency(fractionalDelay(d, 200), 200, rate8)
 		within(t, "fraction", got, d, 1e-4)
 	}
 }
@@ -102,7 +104,7 @@ func TestBulkLatencyOfButterworth(t *testing.T) {
 		{6, 300, 3400, 17.5905381, 17.6, 0},
 		{8, 300, 3400, 22.5724168, 22.6, 0},
 	} {
-		d, polarity := BulkLatency(butterworth(c.order, c.lo, c.hi, rate48, 1<<14), 0, rate48)
+		d, polarity := response.BulkLatency(butterworth(c.order, c.lo, c.hi, rate48, 1<<14), 0, rate48)
 		if polarity != c.polarity {
 			t.Errorf("order %d: polarity %d, want %d", c.order, polarity, c.polarity)
 		}

@@ -3,6 +3,8 @@ package figures
 import (
 	"math"
 	"testing"
+
+	"fettle/filter/response"
 )
 
 // Values of an independent numerical trial of the definitions at 48 kHz: lengths to three digits, levels to
@@ -88,13 +90,13 @@ func TestPinkFilter(t *testing.T) {
 	for _, rate := range []float64{8000, 44100, 96000} {
 		g := newPlans().pinkFilter(rate)
 		for _, f := range curveFrequencies(rate) {
-			if f < PinkFrom || f > TopOfBand*rate {
+			if f < response.PinkFrom || f > response.TopOfBand*rate {
 				continue
 			}
 			h, _ := transformAt(g, 0, f, rate)
 			// The cut at half a second rounds the corner at 20 Hz off; above it leaves a ripple.
 			tol := 0.03
-			if f > 1.1*PinkFrom {
+			if f > 1.1*response.PinkFrom {
 				tol = 0.003
 			}
 			within(t, "gain times √f, dB", 10*math.Log10(power(h)*f), 0, tol)

@@ -3,6 +3,8 @@ package figures
 import (
 	"fmt"
 	"math"
+
+	"fettle/filter/response"
 )
 
 // Response is one measured impulse response.
@@ -71,7 +73,7 @@ func measure(r Response, refine int) *Figures {
 	x, from := support(r.H)
 	s := newSpectrum(x, centroid(x), r.Rate, refine)
 	origin := float64(r.Origin - from)
-	latency, polarity := s.bulkLatency()
+	latency, polarity := response.BulkLatencyOf(s.x, s.h, s.size, s.rate)
 
 	f := &Figures{Latency: latency - origin, Polarity: polarity, NotStated: map[string]string{}}
 	if polarity == 0 {
@@ -91,7 +93,7 @@ const extreme = 1e100
 
 // unusable says why a response states nothing; "" when it does.
 func (r Response) unusable() string {
-	if !(r.Rate*TopOfBand > PinkFrom) || math.IsInf(r.Rate, 0) {
+	if !(r.Rate*response.TopOfBand > response.PinkFrom) || math.IsInf(r.Rate, 0) {
 		return fmt.Sprintf("a sample rate of %g Hz leaves nothing between 20 Hz and 0.45 of the rate", r.Rate)
 	}
 	var largest float64
@@ -125,7 +127,7 @@ func nothing(why string) *Figures {
 
 // centroid is the energy's mean index, to the half sample.
 func centroid(x []float64) float64 {
-	c, _ := mirror(x)
+	c, _ := response.Mirror(x)
 	return c
 }
 

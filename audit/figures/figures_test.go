@@ -4,6 +4,8 @@ import (
 	"math"
 	"testing"
 
+	"fettle/filter/response"
+
 	"pgregory.net/rapid"
 )
 
@@ -116,7 +118,7 @@ func TestUnusableResponses(t *testing.T) {
 				t.Errorf("%s: %g stated", name, v)
 			}
 		}
-		if d, polarity := BulkLatency(r.H, 0, r.Rate); !math.IsNaN(d) || polarity != 0 {
+		if d, polarity := response.BulkLatency(r.H, 0, r.Rate); !math.IsNaN(d) || polarity != 0 {
 			t.Errorf("%s: latency %g, polarity %d", name, d, polarity)
 		}
 	}

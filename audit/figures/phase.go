@@ -3,6 +3,8 @@ package figures
 import (
 	"math"
 	"math/cmplx"
+
+	"fettle/filter/response"
 )
 
 // stated is the least |H|² that a phase or group delay is stated for, as a share of its maximum: -60 dB.
@@ -40,7 +42,7 @@ func (s *spectrum) phaseResidual(d float64) *phaseCurve {
 func (s *spectrum) unwrapped(d float64) *phaseCurve {
 	c := &phaseCurve{first: -1}
 	var last float64
-	s.each(band(lowestBand).Lower, TopOfBand*s.rate, func(k int, _ float64) {
+	s.each(band(lowestBand).Lower, response.TopOfBand*s.rate, func(k int, _ float64) {
 		if c.first < 0 {
 			c.first = k
 		}

@@ -3,6 +3,8 @@ package figures
 import (
 	"math"
 	"testing"
+
+	"fettle/filter/response"
 )
 
 // The phase of a first-order all-pass is known, so the deviation can be fitted on a grid of
@@ -16,9 +18,9 @@ func TestPhaseDeviationOfAllpass(t *testing.T) {
 		return -w + 2*math.Atan2(c*math.Sin(w), 1+c*math.Cos(w)) + w*f.Latency
 	}
 	var wf, wff, wp, wfp float64
-	span := math.Log(TopOfBand * rate8 / PinkFrom)
+	span := math.Log(response.TopOfBand * rate8 / response.PinkFrom)
 	for i := range points {
-		hz := PinkFrom * math.Exp(span*(float64(i)+0.5)/points)
+		hz := response.PinkFrom * math.Exp(span*(float64(i)+0.5)/points)
 		wf += hz
 		wff += hz * hz
 		wp += phase(hz)

@@ -3,10 +3,12 @@ package figures
 import (
 	"math"
 	"math/cmplx"
+
+	"fettle/filter/response"
 )
 
 // pinkMagnitude is the weighting's magnitude at f Hz: 1/√f, flat below 20 Hz.
-func pinkMagnitude(f float64) float64 { return 1 / math.Sqrt(max(f, PinkFrom)) }
+func pinkMagnitude(f float64) float64 { return 1 / math.Sqrt(max(f, response.PinkFrom)) }
 
 func flat(float64) float64 { return 1 }
 

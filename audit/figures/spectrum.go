@@ -1,6 +1,10 @@
 package figures
 
-import "math"
+import (
+	"math"
+
+	"fettle/filter/response"
+)
 
 // spectrum is a response and its transform on a grid dense enough for every
 // integral of the package.
@@ -37,52 +41,14 @@ func newSpectrum(x []float64, mid, rate float64, refine int) *spectrum {
 	return s
 }
 
-// each visits the bins whose weighted sum is ∫ df over lo..hi, with their weights in Hz: the
-// integral of the cubic through the four bins about each interval. Its error falls with the fourth power
-// of the step, wherever between bins lo and hi lie.
+// each visits the bins whose weighted sum is the integral over lo..hi in Hz.
 func (s *spectrum) each(lo, hi float64, visit func(k int, width float64)) {
-	first, last := int(lo/s.step), int(hi/s.step)
-	weights := make([]float64, last-first+4)
-	for i := first; i <= last; i++ {
-		from := max(0, lo/s.step-float64(i))
-		to := min(1, hi/s.step-float64(i))
-		for j, w := range cubicWeights(from, to) {
-			weights[i-first+j] += w
-		}
-	}
-	for i, w := range weights {
-		visit(first-1+i, w*s.step)
-	}
+	response.EachBin(s.step, lo, hi, visit)
 }
 
-// cubicWeights integrates the cubic through the points -1, 0, 1, 2 over from..to within 0..1.
-func cubicWeights(from, to float64) [4]float64 {
-	if from == 0 && to == 1 {
-		return [4]float64{-1. / 24, 13. / 24, 13. / 24, -1. / 24}
-	}
-	a, b, c := lagrange(from), lagrange((from+to)/2), lagrange(to)
-	var w [4]float64
-	for j := range w {
-		w[j] = (to - from) / 6 * (a[j] + 4*b[j] + c[j]) // Simpson's rule is exact for cubics
-	}
-	return w
-}
-
-// lagrange are the basis polynomials of the points -1, 0, 1, 2 at u.
-func lagrange(u float64) [4]float64 {
-	return [4]float64{
-		-u * (u - 1) * (u - 2) / 6,
-		(u + 1) * (u - 1) * (u - 2) / 2,
-		-(u + 1) * u * (u - 2) / 2,
-		(u + 1) * u * (u - 1) / 6,
-	}
-}
-
-// eachPink visits the bins of pink weights, ∫ df/f over 20 Hz to 0.45 fs.
+// eachPink visits the bins of pink weights.
 func (s *spectrum) eachPink(visit func(k int, pink float64)) {
-	s.each(PinkFrom, TopOfBand*s.rate, func(k int, width float64) {
-		visit(k, width/(float64(k)*s.step))
-	})
+	response.EachPink(s.step, s.rate, visit)
 }
 
 // aligned is e^(j2πkt/K): what turns bin k of the transform of x as if x began t samples earlier.

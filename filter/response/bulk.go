@@ -1,12 +1,14 @@
-package figures
+package response
 
 import (
 	"math"
 	"math/cmplx"
+
+	"gonum.org/v1/gonum/dsp/fourier"
 )
 
-// symmetryTolerance is how far mirrored taps may differ, as a fraction of the largest.
-const symmetryTolerance = 1e-12
+// mirrorTolerance is how far mirrored taps may differ, as a fraction of the largest.
+const mirrorTolerance = 1e-12
 
 // BulkLatency is the one delay that stands for the whole response h: in samples
 // after index origin, fractional and possibly negative. rate is in Hz.
@@ -20,28 +22,37 @@ const symmetryTolerance = 1e-12
 //
 // A response without energy, or one that is not finite, has NaN and 0.
 func BulkLatency(h []float64, origin int, rate float64) (d float64, polarity int) {
-	if (Response{H: h, Rate: rate}).unusable() != "" {
+	energy := 0.0
+	for _, v := range h {
+		energy += v * v
+	}
+	if !(energy > 0) || math.IsInf(energy, 1) || !(rate*TopOfBand > PinkFrom) {
 		return math.NaN(), 0
 	}
-	x, from := support(h)
-	s := newSpectrum(x, 0, rate, 1)
-	t, polarity := s.bulkLatency()
-	return t + float64(from-origin), polarity
+	size := NextPow2(max(8*len(h), int(bulkDensity*rate)))
+	t, polarity := BulkLatencyOf(h, Spectrum(h, size), size, rate)
+	return t - float64(origin), polarity
 }
 
-// bulkLatency is BulkLatency relative to the first sample of s.x.
-func (s *spectrum) bulkLatency() (t float64, polarity int) {
-	c := s.pinkCorrelation()
-	t, symmetric := mirror(s.x)
+// bulkDensity is how many bins stand in one Hz: 1/f at 20 Hz is smooth over
+// several, however short the response.
+const bulkDensity = 10
+
+// BulkLatencyOf is BulkLatency, relative to the first sample of x, for a caller
+// that has the transform of x already: bins 0 to size/2, with size a multiple
+// of 8 and at least 8 times len(x), and ten bins or more a Hz.
+func BulkLatencyOf(x []float64, bins []complex128, size int, rate float64) (t float64, polarity int) {
+	c := pinkCorrelation(bins, size, rate)
+	t, symmetric := Mirror(x)
 	if !symmetric {
-		t = c.largest(s)
+		t = c.largest()
 	}
 	return t, c.polarity(t)
 }
 
-// mirror is the index about which x is symmetric or antisymmetric, if it is.
+// Mirror is the index about which x is symmetric or antisymmetric, if it is.
 // Only the energy's centroid can be that index.
-func mirror(x []float64) (centre float64, ok bool) {
+func Mirror(x []float64) (centre float64, ok bool) {
 	var energy, moment, largest float64
 	for n, v := range x {
 		energy += v * v
@@ -55,8 +66,8 @@ func mirror(x []float64) (centre float64, ok bool) {
 		if m := twice - n; m >= 0 && m < len(x) {
 			twin = x[m]
 		}
-		even = even && math.Abs(v-twin) <= symmetryTolerance*largest
-		odd = odd && math.Abs(v+twin) <= symmetryTolerance*largest
+		even = even && math.Abs(v-twin) <= mirrorTolerance*largest
+		odd = odd && math.Abs(v+twin) <= mirrorTolerance*largest
 	}
 	return float64(twice) / 2, even || odd
 }
@@ -70,13 +81,13 @@ type correlation struct {
 	total float64 // ∫|H|/f df
 }
 
-func (s *spectrum) pinkCorrelation() *correlation {
-	c := &correlation{first: -1, size: s.size}
-	s.eachPink(func(k int, pink float64) {
+func pinkCorrelation(bins []complex128, size int, rate float64) *correlation {
+	c := &correlation{first: -1, size: size}
+	EachPink(rate/float64(size), rate, func(k int, pink float64) {
 		if c.first < 0 {
 			c.first = k
 		}
-		v := s.h[k] * complex(pink, 0)
+		v := bins[k] * complex(pink, 0)
 		c.w = append(c.w, v)
 		c.total += cmplx.Abs(v)
 	})
@@ -115,17 +126,17 @@ func (c *correlation) slope(t float64) (f, f1, f2 float64) {
 const contender = 0.9
 
 // largest is the lag of the largest modulus: every coarse maximum that could be it, refined.
-func (c *correlation) largest(s *spectrum) float64 {
+func (c *correlation) largest() float64 {
 	// A quarter of the bins holds every lag within K/8 samples, the length of x at least.
 	const stride = 4
 	n := c.size / stride
-	one := make([]complex128, n/2+1)
+	one := make([]complex128, n)
 	for i, v := range c.w {
 		if k := c.first + i; k%stride == 0 {
 			one[k/stride] = v
 		}
 	}
-	coarse := s.analytic(one, n)
+	coarse := fourier.NewCmplxFFT(n).Sequence(nil, one)
 	var top float64
 	for _, v := range coarse {
 		top = max(top, power(v))
@@ -183,3 +194,13 @@ func (c *correlation) polarity(t float64) int {
 	}
 	return 1
 }
+
+// resync is how many steps a rotation by repeated multiplication may run before
+// it is set right again: its error grows by about 1e-16 a step.
+const resync = 512
+
+// power is |c|^2 without the square root of cmplx.Abs.
+func power(c complex128) float64 { return real(c)*real(c) + imag(c)*imag(c) }
+
+// turn is e^(jx).
+func turn(x float64) complex128 { return cmplx.Rect(1, x) }
