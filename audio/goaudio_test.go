@@ -6,10 +6,10 @@ import (
 	"path/filepath"
 	"testing"
 
+	"fettle/audio/pcm"
+
 	goaudio "github.com/go-audio/audio"
 	"github.com/go-audio/wav"
-
-	"fettle/audio/pcm"
 )
 
 // integerCases are the formats that go-audio/wav reads and writes.

@@ -10,10 +10,10 @@ import (
 	"os"
 	"time"
 
-	goaudio "github.com/go-audio/audio"
-
 	"fettle/audio/container"
 	"fettle/audio/pcm"
+
+	goaudio "github.com/go-audio/audio"
 )
 
 // bufferBytes is how much is read or written at once, whole frames of it.

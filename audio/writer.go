@@ -12,10 +12,10 @@ import (
 	"path/filepath"
 	"syscall"
 
-	"github.com/google/renameio/v2"
-
 	"fettle/audio/container"
 	"fettle/audio/pcm"
+
+	"github.com/google/renameio/v2"
 )
 
 // Spec says what a [Writer] is to write.

@@ -1,10 +1,11 @@
 package filter
 
 import (
-	"fettle/filter/design"
-	"fettle/filter/stream"
 	"math"
 	"math/cmplx"
+
+	"fettle/filter/design"
+	"fettle/filter/stream"
 )
 
 // Rate is the sample rate in Hz that the filter was realised for.

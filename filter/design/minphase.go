@@ -5,9 +5,9 @@ import (
 	"math"
 	"math/cmplx"
 
-	"gonum.org/v1/gonum/dsp/fourier"
-
 	"fettle/filter/response"
+
+	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // ReflectSections returns the minimum-phase cascade of the same magnitude:

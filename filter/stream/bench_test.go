@@ -5,9 +5,9 @@ import (
 	"slices"
 	"testing"
 
-	"gonum.org/v1/gonum/dsp/fourier"
-
 	"fettle/filter/response"
+
+	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // benchFrames is how many samples a channel one call of Process gets.

@@ -4,9 +4,9 @@ import (
 	"math"
 	"math/rand/v2"
 
-	"pgregory.net/rapid"
-
 	"fettle/filter/response"
+
+	"pgregory.net/rapid"
 )
 
 // noise returns n samples evenly spread over -1 to 1, the same for a seed.
