@@ -4,8 +4,6 @@ import (
 	"fettle/audio"
 	"fettle/audit/figures"
 	"fettle/filter"
-
-	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // Result is the audit of one path of a chain at one rate.
@@ -123,14 +121,11 @@ func (b *bench) compareRoads(r *Result, h []float64) error {
 }
 
 // carried tells which bands the chain carries: by its magnitude without what
-// only shapes tone, put into a zero-phase response for the bands to be taken.
+// only shapes tone. Nil, by the response measured, where nothing does.
 func carried(p *filter.Path, rate float64) []bool {
-	size := gridFor(4*len(p.System.Taps), rate)
-	magnitude := p.Carrier(size)
-	spectrum := make([]complex128, len(magnitude))
-	for k, m := range magnitude {
-		// Half the length late, so that the response stands whole in the buffer.
-		spectrum[k] = complex(m*float64(1-2*(k%2))/float64(size), 0)
+	if !p.ShapesTone() {
+		return nil
 	}
-	return figures.CarriedBands(fourier.NewFFT(size).Sequence(nil, spectrum), rate)
+	size := gridFor(len(p.System.Taps), rate)
+	return figures.CarriedBands(p.Carrier(size), rate/float64(size), rate)
 }

@@ -3,6 +3,7 @@ package filter
 import (
 	"math"
 	"math/cmplx"
+	"slices"
 
 	"fettle/filter/design"
 	"fettle/filter/stream"
@@ -54,6 +55,12 @@ func (f *Filter) Reach(p *Path) (before, after int) {
 // Shift is how many samples of a path's causal response (Path.Response) come
 // before the aligned instant.
 func (f *Filter) Shift(p *Path) int { return f.align.skip(p) }
+
+// ShapesTone tells whether a stage of the path shapes what is carried instead
+// of bounding it: gain, bells and shelves.
+func (p *Path) ShapesTone() bool {
+	return slices.ContainsFunc(p.members, func(m member) bool { return m.stage.kind.tone })
+}
 
 // Carrier is the path without what shapes tone (gain, bells, shelves): it
 // decides which bands count as carried. It gives |H| on the grid of a

@@ -54,8 +54,7 @@ func (p *Path) latencyBy(to AlignTo, rate float64) float64 {
 	if to == AlignCentroid {
 		return centroid(h)
 	}
-	d, _ := response.BulkLatency(h, 0, rate)
-	return d
+	return response.BulkDelay(h, rate)
 }
 
 // centroid is the energy's mean instant, sum n h^2 / sum h^2.

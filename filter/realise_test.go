@@ -3,6 +3,7 @@ package filter
 import (
 	"math"
 	"math/cmplx"
+	"slices"
 	"testing"
 
 	"fettle/filter/response"
@@ -31,6 +32,9 @@ var chains = map[string]string{
 func TestRealisationsMeetTheTarget(t *testing.T) {
 	for name, text := range chains {
 		for _, rate := range []int{16000, 48000} {
+			if rate == 48000 && !slices.Contains([]string{"highpass 4", "notch", "mixed"}, name) {
+				continue // the rest would say the same at three times the cost
+			}
 			iir := realised(t, text, rate, IIR)
 			for _, as := range []Realisation{Linear, Minimum} {
 				f := realised(t, text, rate, as)

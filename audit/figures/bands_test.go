@@ -2,6 +2,7 @@ package figures
 
 import (
 	"encoding/csv"
+	"math/cmplx"
 	"os"
 	"strconv"
 	"testing"
@@ -71,7 +72,12 @@ func TestBandsByRate(t *testing.T) {
 // A band-pass carries the bands it passes: 3 dB down at its corners, 20 dB down
 // one octave out for order 4 (24 dB an octave).
 func TestCarriedBands(t *testing.T) {
-	carried := CarriedBands(butterworth(4, 300, 3400, rate48, 1<<13), rate48)
+	s := newSpectrum(butterworth(4, 300, 3400, rate48, 1<<13), 0, rate48, 1)
+	magnitude := make([]float64, len(s.h))
+	for k, h := range s.h {
+		magnitude[k] = cmplx.Abs(h)
+	}
+	carried := CarriedBands(magnitude, s.step, rate48)
 	for i, b := range Bands(rate48) {
 		want := b.Centre > 160 && b.Centre < 6000
 		if carried[i] != want {

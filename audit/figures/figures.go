@@ -200,20 +200,20 @@ func (f *Figures) overCarried(samples []*bandSample, origin, rate float64) {
 	f.DelaySpread, f.PhaseDeviation, f.SumTest = last-first, worst, deepest
 }
 
-// CarriedBands says which of Bands(rate) the response h carries: those whose gain is
+// CarriedBands says which of Bands(rate) a magnitude carries: those whose gain is
 // within 20 dB of the strongest. It serves a caller that judges by another
-// response than the measured one, a chain without its gain, bells and shelves. A response without
-// energy, or not finite, carries none.
-func CarriedBands(h []float64, rate float64) []bool {
+// response than the measured one: a chain without its gain, bells and shelves.
+// magnitude is |H| at bins step Hz apart, from 0 to half the rate; ten bins or
+// more should stand in the narrowest band, which is 4.6 Hz wide.
+func CarriedBands(magnitude []float64, step, rate float64) []bool {
 	bands := Bands(rate)
-	if (Response{H: h, Rate: rate}).unusable() != "" {
-		return make([]bool, len(bands))
-	}
-	x, _ := support(h)
-	s := newSpectrum(x, 0, rate, 1)
 	gains := make([]float64, len(bands))
 	for i, b := range bands {
-		gains[i] = decibels(s.sample(b).energy() / b.width())
+		var energy float64
+		response.EachBin(step, b.Lower, b.Upper, func(k int, width float64) {
+			energy += width * magnitude[k] * magnitude[k]
+		})
+		gains[i] = decibels(energy / b.width())
 	}
 	return near(gains)
 }

@@ -26,19 +26,22 @@ func Text(w io.Writer, r *audit.Result) error {
 }
 
 func heading(b *strings.Builder, r *audit.Result) {
-	title := fmt.Sprintf("%s: %s phase at %s", clip(r.Chain, 48), r.Phase, hertz(float64(r.Rate)))
-	if r.Phase == "given" {
-		title = fmt.Sprintf("%s: as given, at %s", clip(r.Chain, 48), hertz(float64(r.Rate)))
-	}
-	switch {
-	case r.Channel > 0:
-		title += fmt.Sprintf(", channel %d", r.Channel)
-	case !r.Shared:
-		title += ", other channels"
-	}
+	title := fmt.Sprintf("%s, %s, %s", clip(r.Chain, 48), r.Phase, place(r))
 	fmt.Fprintf(b, "%s\n%s\n", title, strings.Repeat("=", len([]rune(title))))
 	fmt.Fprintf(b, "  %-22s %s\n", "built as", builtOf(r))
 	fmt.Fprintf(b, "  %-22s %s dB (allowed %g dB)\n", "off target by at most", decimal(r.TargetErrorDB, 3), r.ToleranceDB)
+}
+
+// place names a result's rate, and its channel where that matters.
+func place(r *audit.Result) string {
+	at := hertz(float64(r.Rate))
+	switch {
+	case r.Channel > 0:
+		return fmt.Sprintf("%s ch %d", at, r.Channel)
+	case !r.Shared:
+		return at + " others"
+	}
+	return at
 }
 
 func builtOf(r *audit.Result) string {
@@ -69,7 +72,7 @@ func whole(b *strings.Builder, r *audit.Result) {
 	row("phase deviation", "%s degrees in the worst carried band", decimal(f.PhaseDeviation, 1))
 	row("smear, pink", "%s", smearOf(f.Pink))
 	row("smear, white", "%s", smearOf(f.White))
-	row("90 %% / 99.9 %% of energy", "within %s / %s", milliseconds(f.D90), milliseconds(f.D999))
+	row("90 / 99.9 % of energy", "within %s / %s", milliseconds(f.D90), milliseconds(f.D999))
 	row("energy ahead", "%s before the aligned instant (-60 dB)", milliseconds(f.Lead))
 	row("sum test", "%s dB: deepest loss when mixed 1:1 with the untreated", decimal(f.SumTest, 1))
 	row("probes disagree by", "%s (impulse, chirp), %s (impulse, formula)", microseconds(r.Disagreement), microseconds(r.AnalyticDisagreement))
@@ -114,30 +117,6 @@ func bands(b *strings.Builder, bands []figures.BandFigures) {
 			decimal(x.Arrival*toMS, 4), decimal(x.Spread*toMS, 4), decimal(x.PreRing*toMS, 2), decimal(x.PostRing*toMS, 2),
 			decimal(x.PhaseDeviation, 1))
 	}
-}
-
-// Brief writes one line a result, with a heading: what render shows.
-func Brief(w io.Writer, results []*audit.Result) error {
-	var b strings.Builder
-	fmt.Fprintf(&b, "%9s %4s %-8s %9s %10s %11s %11s %11s %9s\n",
-		"rate", "ch", "phase", "removed", "left", "spread", "smear", "pre-ring", "off target")
-	fmt.Fprintf(&b, "%9s %4s %-8s %9s %10s %11s %11s %11s %9s\n",
-		"", "", "", "samples", "samples", "ms", "pink, ms", "pink, dB", "dB")
-	for _, r := range results {
-		channel := "all"
-		switch {
-		case r.Channel > 0:
-			channel = fmt.Sprint(r.Channel)
-		case !r.Shared:
-			channel = "rest"
-		}
-		f := r.Figures
-		fmt.Fprintf(&b, "%9s %4s %-8s %9s %10s %11s %11s %11s %9s\n", hertz(float64(r.Rate)), channel, r.Phase,
-			decimal(r.Latency.Removed, 2), decimal(r.Latency.Residual, 3), decimal(f.DelaySpread*toMS, 4),
-			decimal(f.Pink.Total*toMS, 3), ringLevel(f.PreRing.Pink.Level), decimal(r.TargetErrorDB, 3))
-	}
-	_, err := io.WriteString(w, b.String())
-	return err
 }
 
 func hertz(hz float64) string {

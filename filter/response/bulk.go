@@ -22,16 +22,32 @@ const mirrorTolerance = 1e-12
 //
 // A response without energy, or one that is not finite, has NaN and 0.
 func BulkLatency(h []float64, origin int, rate float64) (d float64, polarity int) {
-	energy := 0.0
-	for _, v := range h {
-		energy += v * v
-	}
-	if !(energy > 0) || math.IsInf(energy, 1) || !(rate*TopOfBand > PinkFrom) {
+	if !usable(h, rate) {
 		return math.NaN(), 0
 	}
 	size := NextPow2(max(8*len(h), int(bulkDensity*rate)))
 	t, polarity := BulkLatencyOf(h, Spectrum(h, size), size, rate)
 	return t - float64(origin), polarity
+}
+
+// BulkDelay is BulkLatency from the first sample of h, without its polarity:
+// for a symmetric kernel, which is known by looking at it, much cheaper.
+func BulkDelay(h []float64, rate float64) float64 {
+	if usable(h, rate) {
+		if middle, ok := Mirror(h); ok {
+			return middle
+		}
+	}
+	d, _ := BulkLatency(h, 0, rate)
+	return d
+}
+
+func usable(h []float64, rate float64) bool {
+	energy := 0.0
+	for _, v := range h {
+		energy += v * v
+	}
+	return energy > 0 && !math.IsInf(energy, 1) && rate*TopOfBand > PinkFrom
 }
 
 // bulkDensity is how many bins stand in one Hz: 1/f at 20 Hz is smooth over
@@ -82,7 +98,7 @@ type correlation struct {
 }
 
 func pinkCorrelation(bins []complex128, size int, rate float64) *correlation {
-	c := &correlation{first: -1, size: size}
+	c := &correlation{first: -1, size: size, w: make([]complex128, 0, len(bins))}
 	EachPink(rate/float64(size), rate, func(k int, pink float64) {
 		if c.first < 0 {
 			c.first = k
