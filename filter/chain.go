@@ -2,15 +2,13 @@ package filter
 
 import (
 	"crypto/sha256"
-	"errors"
 	"fmt"
+	"io"
 	"os"
 	"path/filepath"
 	"strings"
 
-	"github.com/goccy/go-yaml"
 	"github.com/goccy/go-yaml/ast"
-	"github.com/goccy/go-yaml/parser"
 )
 
 // Chain is a chain file, read and checked but not yet bound to a sample rate.
@@ -27,11 +25,15 @@ type Chain struct {
 	// names: what must be the same for an output to be the same.
 	SHA256 [sha256.Size]byte
 
-	files []string
+	digests []byte // one SHA-256 for each coefficient file, as they were read
 }
 
-// DefaultTolerance in dB, unless a chain says otherwise.
-const DefaultTolerance = 0.1
+// DefaultTolerance in dB, unless a chain says otherwise, and the greatest that
+// it may say: beyond it a -3 dB corner means nothing.
+const (
+	DefaultTolerance = 0.1
+	MaxTolerance     = 3
+)
 
 // Edges says what stands before the first and after the last frame.
 type Edges string
@@ -63,62 +65,61 @@ type Align struct {
 	Fraction bool // also remove what is left below one sample
 }
 
+// maxText in bytes bounds a chain file. Kernels worth more text than that
+// belong in a file of their own.
+const maxText = 1 << 20
+
 // Load reads a chain file. Errors are *ChainError, or of the file system.
 func Load(path string) (*Chain, error) {
-	raw, err := os.ReadFile(path)
+	raw, err := readAtMost(path, maxText)
 	if err != nil {
 		return nil, fmt.Errorf("the chain cannot be read: %w", err)
 	}
 	return Parse(raw, path)
 }
 
-// Parse reads a chain from text; file is its name in errors, and relative
-// coefficient files are looked for beside it.
+// readAtMost reads a file that has at most so many bytes.
+func readAtMost(path string, most int64) ([]byte, error) {
+	file, err := os.Open(path)
+	if err != nil {
+		return nil, err
+	}
+	defer file.Close()
+	raw, err := io.ReadAll(io.LimitReader(file, most+1))
+	if err == nil && int64(len(raw)) > most {
+		err = fmt.Errorf("%s is longer than the %d bytes that such a file may have", path, most)
+	}
+	return raw, err
+}
+
+// Parse reads a chain from text, which is YAML in UTF-8 of at most 1 MiB. file
+// is its name in errors, and relative coefficient files are looked for beside
+// it. Errors are *ChainError: the first thing that is wrong, with its place.
 func Parse(text []byte, file string) (*Chain, error) {
 	d := &decoder{file: file}
-	tree, err := parser.ParseBytes(text, 0)
-	if err != nil {
-		return nil, syntaxError(file, err)
-	}
 	c := &Chain{File: file, Tolerance: DefaultTolerance, Edges: Silence, Align: Align{To: AlignAuto}}
 	c.Name = strings.TrimSuffix(filepath.Base(file), filepath.Ext(file))
-	var body ast.Node
-	switch len(tree.Docs) {
-	case 0:
-	case 1:
-		body = tree.Docs[0].Body
-	default:
-		return nil, &ChainError{File: file, Msg: "holds several YAML documents; a file is one chain"}
+	if body := d.open(text); d.err == nil {
+		c.read(d, body)
 	}
-	if body == nil {
-		return nil, &ChainError{File: file, Msg: "is empty; a chain has at least 'stages'"}
-	}
-	c.read(d, body)
 	if d.err != nil {
 		return nil, d.err
 	}
-	return c, c.hash(text)
-}
-
-// syntaxError puts the YAML parser's complaint in the chain's own form.
-func syntaxError(file string, err error) error {
-	e := &ChainError{File: file, Msg: err.Error()}
-	var s *yaml.SyntaxError
-	if errors.As(err, &s) {
-		e.Msg = "is not YAML here: " + s.Message
-		e.Line, e.Column = s.Token.Position.Line, s.Token.Position.Column
-	}
-	return e
+	c.SHA256 = sha256.Sum256(fmt.Appendf(nil, "chain %d\n%s%s", len(text), text, c.digests))
+	return c, nil
 }
 
 func (c *Chain) read(d *decoder, body ast.Node) {
-	f := d.mapping(body, "a chain")
+	f := d.mapping(body, "a chain", body)
 	if n, ok := f.get("name"); ok {
 		c.Name = d.text(n, "name")
 	}
 	c.Phase = Realisation(f.word("phase", "", realisations...))
-	c.Tolerance = f.db("tolerance", DefaultTolerance, true)
-	for _, n := range d.list(f.need("stages", "[...]"), "stages") {
+	c.Tolerance = f.positiveDB("tolerance", DefaultTolerance)
+	if c.Tolerance > MaxTolerance {
+		d.fail(f.keys["tolerance"].Value, "'tolerance' is %g dB; it is at most %d dB", c.Tolerance, MaxTolerance)
+	}
+	for _, n := range d.list(f.need("stages", "[gain: {by: -3 dB}]"), "stages", "[gain: {by: -3 dB}]") {
 		if d.err != nil {
 			return
 		}
@@ -134,47 +135,28 @@ func (c *Chain) read(d *decoder, body ast.Node) {
 func (d *decoder) align(n ast.Node) Align {
 	switch n.(type) {
 	case *ast.MappingNode, *ast.MappingValueNode:
-		f := d.mapping(n, "'align'")
-		to, ok := f.get("to")
-		if !ok {
-			d.fail(n, "'align' lacks 'to'; add to: auto")
-			return Align{}
-		}
-		a := d.alignWord(to)
-		a.Fraction = f.word("fraction", "false", "true", "false") == "true"
-		if a.Fraction && a.To != AlignAuto && a.To != AlignCentroid {
-			d.fail(n, "'fraction' goes with to: auto or to: centroid")
-		}
-		f.done()
-		return a
+	default:
+		return d.alignWord(n)
 	}
-	return d.alignWord(n)
+	f := d.mapping(n, "'align'", n)
+	a := d.alignWord(f.need("to", "auto"))
+	a.Fraction = f.word("fraction", "false", "true", "false") == "true"
+	if a.Fraction && a.To != AlignAuto && a.To != AlignCentroid {
+		d.fail(f.keys["fraction"].Value, "'fraction' goes with to: auto or to: centroid")
+	}
+	f.done()
+	return a
 }
 
 func (d *decoder) alignWord(n ast.Node) Align {
-	switch text := d.text(n, "align"); AlignTo(text) {
+	text := d.text(n, "align")
+	switch to := AlignTo(text); to {
 	case AlignAuto, AlignCentroid, AlignNone:
-		return Align{To: AlignTo(text)}
-	default:
-		number, unit, err := splitQuantity(text)
-		if err != nil || number != float64(int(number)) || unit != "" && unit != "samples" {
-			d.fail(n, "'align' is %s; allowed are auto, centroid, none or a whole number of samples", describe(n))
-		}
-		return Align{To: AlignBy, By: int(number)}
+		return Align{To: to}
 	}
-}
-
-// hash covers everything that decides the output: the text and its files.
-func (c *Chain) hash(text []byte) error {
-	h := sha256.New()
-	fmt.Fprintf(h, "chain %d\n%s", len(text), text)
-	for _, path := range c.files {
-		raw, err := os.ReadFile(path)
-		if err != nil {
-			return fmt.Errorf("%s: %w", c.File, err)
-		}
-		fmt.Fprintf(h, "file %d\n%s", len(raw), raw)
+	number, unit, err := splitQuantity(text)
+	if err != nil || !isWhole(number, -maxShift, maxShift) || unit != "" && unit != "samples" {
+		d.fail(n, "'align' is %s; allowed are auto, centroid, none, or a whole number of samples up to %d", describe(n), maxShift)
 	}
-	h.Sum(c.SHA256[:0])
-	return nil
+	return Align{To: AlignBy, By: int(number)}
 }

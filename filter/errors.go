@@ -3,6 +3,9 @@ package filter
 import (
 	"errors"
 	"fmt"
+	"strconv"
+
+	"github.com/goccy/go-yaml"
 )
 
 // ChainError says what is wrong in a chain file and where.
@@ -17,6 +20,26 @@ func (e *ChainError) Error() string {
 		return fmt.Sprintf("%s: %s", e.File, e.Msg)
 	}
 	return fmt.Sprintf("%s:%d:%d: %s", e.File, e.Line, e.Column, e.Msg)
+}
+
+// syntaxError puts the YAML parser's complaint in the chain's own form.
+func syntaxError(file string, err error) *ChainError {
+	e := &ChainError{File: file, Msg: "is not YAML: " + err.Error()}
+	var s *yaml.SyntaxError
+	if errors.As(err, &s) {
+		e.Msg = "is not YAML here: " + s.Message
+		e.Line, e.Column = s.Token.Position.Line, s.Token.Position.Column
+	}
+	return e
+}
+
+// quote shows what was read, its beginning if it is long.
+func quote(text string) string {
+	const most = 60
+	if runes := []rune(text); len(runes) > most {
+		text = string(runes[:most]) + "..."
+	}
+	return strconv.Quote(text)
 }
 
 // ErrForRecording marks a chain that is sound but cannot serve one recording:

@@ -96,11 +96,11 @@ func (c *Chain) realisePath(channel int, rate float64, as Realisation) (*Path, e
 		if !s.serves(channel) || !s.When.Holds(rate) {
 			continue
 		}
-		design, err := s.plan(rate)
+		planned, err := s.plan(rate)
 		if err != nil {
 			return nil, c.stageError(i, err)
 		}
-		m := member{s, s.phaseUnder(c.Phase, as), design}
+		m := member{s, s.phaseUnder(c.Phase, as), planned}
 		p.members = append(p.members, m)
 		switch {
 		case s.kind.intent, m.phase == Given, m.phase == IIR:

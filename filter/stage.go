@@ -105,7 +105,7 @@ func kindNames() string {
 
 // readStage reads one item of the list of stages.
 func (c *Chain) readStage(d *decoder, n ast.Node) *Stage {
-	item := d.mapping(n, "a stage")
+	item := d.mapping(n, "a stage", n)
 	if d.err != nil {
 		return nil
 	}
@@ -117,16 +117,57 @@ func (c *Chain) readStage(d *decoder, n ast.Node) *Stage {
 	entry := item.keys[name]
 	k, ok := kinds[name]
 	if !ok {
-		d.fail(entry.Key, "there is no stage '%s'; stages are %s", name, kindNames())
+		d.fail(entry.Key, "there is no stage %s; stages are %s", quote(name), kindNames())
 		return nil
 	}
-	f := d.mapping(entry.Value, "stage "+name)
+	d.highest = 0
+	f := d.mapping(entry.Value, "stage "+name, entry.Key)
 	s := &Stage{Kind: name, kind: k}
 	s.at.line, s.at.column = position(entry.Key)
-	s.plan = k.read(f, c)
+	build := k.read(f, c)
 	s.readCommon(f)
 	f.done()
+	s.plan = planner(build, d.highest)
+	if d.err == nil {
+		if _, err := build(ampleRate); err != nil {
+			d.fail(entry.Key, "stage %s: %s", name, strings.TrimPrefix(err.Error(), name+": "))
+		}
+	}
 	return s
+}
+
+// ampleRate holds every frequency that a chain may name: what cannot be
+// designed at this rate cannot be at any.
+const ampleRate = 4 * maxHz
+
+// planner makes a stage's design refuse rates that do not suit it: highest is
+// the highest frequency that the stage names.
+func planner(build func(rate float64) (plan, error), highest float64) func(rate float64) (plan, error) {
+	return func(rate float64) (plan, error) {
+		if !(highest < rate/2) {
+			return plan{}, fmt.Errorf("%g Hz is not below half the rate of %g Hz, %g Hz; lower it, add when: rate > %g Hz to do without the stage there, or leave such recordings out",
+				highest, rate, rate/2, 2*highest)
+		}
+		p, err := build(rate)
+		if err == nil {
+			err = checkRing(p.sections)
+		}
+		return p, err
+	}
+}
+
+// longestRing is how many samples a recursive stage may take to fall to 1e-15:
+// its response is found whole, and transforms of eight times as many points
+// must be possible.
+const longestRing = design.MaxTaps
+
+// checkRing refuses poles so near the unit circle that the response can't be
+// told from one that never ends, or beyond it.
+func checkRing(sections []response.Section) error {
+	if !response.Stable(sections) || !(math.Log(response.MaxPoleRadius(sections)) < math.Log(1e-15)/longestRing) {
+		return fmt.Errorf("it would ring for more than %d samples; raise its frequency or width", longestRing)
+	}
+	return nil
 }
 
 // readCommon reads what may stand on any stage.
@@ -136,13 +177,24 @@ func (s *Stage) readCommon(f *fields) {
 		s.When = f.d.condition(n)
 	}
 	if n, ok := f.get("channels"); ok {
-		for _, v := range f.d.list(n, "channels") {
-			s.Channels = append(s.Channels, f.d.whole(v, "channels", 1, math.MaxUint16))
-		}
-		if f.d.err == nil && len(s.Channels) == 0 {
-			f.d.fail(n, "'channels' is an empty list; name channels from 1, or leave it out for all")
-		}
+		s.Channels = f.d.channels(n)
 	}
+}
+
+// channels reads a list of different channels, from 1.
+func (d *decoder) channels(n ast.Node) []int {
+	var out []int
+	for _, v := range d.list(n, "channels", "[1, 2]") {
+		channel := d.whole(v, "channels", 1, math.MaxUint16)
+		if slices.Contains(out, channel) {
+			d.fail(v, "'channels' names channel %d twice; keep one", channel)
+		}
+		out = append(out, channel)
+	}
+	if len(out) == 0 {
+		d.fail(n, "'channels' is an empty list; name channels from 1, or leave it out for all")
+	}
+	return out
 }
 
 // serves tells whether the stage applies to a channel (from 1; 0 stands for
@@ -184,9 +236,12 @@ func (d *decoder) condition(n ast.Node) *Condition {
 		if !ok || !found {
 			continue
 		}
-		hz, err := frequency.parse(value)
+		hz, err := frequency.parse(strings.TrimSpace(value))
+		if err == nil {
+			err = checkHz(hz)
+		}
 		if err != nil {
-			d.fail(n, "'when': %v", err)
+			d.fail(n, "'when' is %s: %v", describe(n), err)
 		}
 		return &Condition{op, hz}
 	}

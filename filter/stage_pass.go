@@ -1,10 +1,6 @@
 package filter
 
-import (
-	"math"
-
-	"fettle/filter/design"
-)
+import "fettle/filter/design"
 
 // passReader reads highpass, lowpass, bandpass and bandstop.
 func passReader(k design.Kind) func(f *fields, _ *Chain) func(float64) (plan, error) {
@@ -24,7 +20,15 @@ func (f *fields) edges(key string, k design.Kind) []float64 {
 	return []float64{f.hz(key)}
 }
 
+// maskKeys describe a mask, which Butterworth has not.
+var maskKeys = []string{"pass", "stop", "ripple", "reject", "width"}
+
 func readButterworth(f *fields, k design.Kind) func(float64) (plan, error) {
+	for _, key := range maskKeys {
+		if v := f.keys[key]; v != nil {
+			f.d.fail(v.Key, "'%s' describes a mask; add family: kaiser, or give a Butterworth %v by 'at' and 'order'", key, k)
+		}
+	}
 	at := f.edges("at", k)
 	order := f.d.whole(f.need("order", "4"), "order", 1, design.MaxOrder)
 	c := readDepth(f, order == 1 && (k == design.Highpass || k == design.Bandstop))
@@ -50,32 +54,22 @@ func readDepth(f *fields, oneSided bool) *depth {
 	if !oneSided {
 		return nil
 	}
-	return &depth{f.db("depth", 40, true)}
+	return &depth{f.positiveDB("depth", 40)}
 }
-
-// anyRate stands for a rate when a mask is checked before one is known.
-const anyRate = math.MaxFloat64
 
 // readMask reads a mask: its edges, or a corner with a transition's width.
 func readMask(f *fields, k design.Kind) func(float64) (plan, error) {
-	var mask design.Mask
-	if f.has("at") {
-		at, width := f.edges("at", k), f.hz("width")
-		if f.d.err == nil {
-			mask = design.MaskAround(k, 0, width, 0, 0, at...)
-		}
+	f.owner += " of family kaiser"
+	mask := design.Mask{Kind: k}
+	if f.oneOf("pass", "at", "12 kHz") == "at" {
+		mask = readMaskAround(f, k)
 	} else {
-		mask.Kind = k
 		copy(mask.Pass[:], f.edges("pass", k))
 		copy(mask.Stop[:], f.edges("stop", k))
 	}
-	mask.RippleDB = f.db("ripple", 0.1, true)
-	mask.RejectDB = f.db("reject", math.NaN(), true)
-	if mask.Rate = anyRate; f.d.err == nil {
-		if err := mask.Validate(); err != nil {
-			f.d.fail(f.node, "%s: %v", f.owner, err)
-		}
-	}
+	mask.RippleDB = f.positiveDB("ripple", 0.1)
+	f.need("reject", "80 dB")
+	mask.RejectDB = f.positiveDB("reject", 0)
 	return func(rate float64) (plan, error) {
 		m := mask
 		m.Rate = rate
@@ -84,4 +78,14 @@ func readMask(f *fields, k design.Kind) func(float64) (plan, error) {
 		}
 		return plan{gain: 1, mask: &m}, nil
 	}
+}
+
+// readMaskAround reads a corner, or two, and the width of the transition there.
+func readMaskAround(f *fields, k design.Kind) design.Mask {
+	at, width := f.edges("at", k), f.hz("width")
+	if f.d.err == nil && !(width < 2*at[0]) {
+		f.d.fail(f.keys["width"].Value, "'width' is %g Hz, so that the transition round %g Hz begins below 0 Hz; it must be less than %g Hz", width, at[0], 2*at[0])
+	}
+	f.d.highest = at[len(at)-1] + width/2
+	return design.MaskAround(k, 0, width, 0, 0, at...)
 }

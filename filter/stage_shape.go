@@ -21,19 +21,25 @@ func biquad(make func(rate float64) (response.Section, error)) func(float64) (pl
 }
 
 func readBell(f *fields, _ *Chain) func(float64) (plan, error) {
-	at := f.hz("at")
-	gain := f.db("gain", math.NaN(), false)
-	if f.has("width") {
-		width := f.d.quantity(f.need("width", octaves.example), "width", octaves)
-		if f.d.err == nil && !(width > 0) {
-			f.d.fail(f.keys["width"], "'width' must be above 0 oct")
-		}
+	at, gain := f.hz("at"), f.gain("gain")
+	if f.oneOf("q", "width", "1.1") == "width" {
+		width := f.octaves("width")
 		return biquad(func(rate float64) (response.Section, error) {
 			return design.Bell(rate, at, gain, design.BandwidthQ(rate, at, width))
 		})
 	}
 	q := f.positive("q")
 	return biquad(func(rate float64) (response.Section, error) { return design.Bell(rate, at, gain, q) })
+}
+
+// octaves reads a bandwidth.
+func (f *fields) octaves(key string) float64 {
+	n := f.need(key, octaves.example)
+	v := f.d.quantity(n, key, octaves)
+	if f.d.err == nil && !(v > 0 && v <= maxOctaves) {
+		f.d.fail(n, "'%s' is %s; it must be above 0 oct and at most %d oct", key, describe(n), maxOctaves)
+	}
+	return v
 }
 
 // shelf makes a section of a given steepness, a q or a slope.
@@ -43,12 +49,12 @@ type shelf func(rate, hz, gainDB, steepness float64) (response.Section, error)
 // not overshoot, unless said.
 func shelfReader(byQ, bySlope shelf) func(*fields, *Chain) func(float64) (plan, error) {
 	return func(f *fields, _ *Chain) func(float64) (plan, error) {
-		at := f.hz("at")
-		gain := f.db("gain", math.NaN(), false)
+		at, gain := f.hz("at"), f.gain("gain")
 		make, steepness := bySlope, 1.0
-		if f.has("q") {
+		switch f.either("q", "slope") {
+		case "q":
 			make, steepness = byQ, f.positive("q")
-		} else if f.has("slope") {
+		case "slope":
 			steepness = f.positive("slope")
 		}
 		return biquad(func(rate float64) (response.Section, error) { return make(rate, at, gain, steepness) })
@@ -57,12 +63,11 @@ func shelfReader(byQ, bySlope shelf) func(*fields, *Chain) func(float64) (plan, 
 
 func readNotch(f *fields, _ *Chain) func(float64) (plan, error) {
 	at := f.hz("at")
-	var width, q float64
-	if f.has("width") {
+	var width float64
+	if f.oneOf("q", "width", "12") == "width" {
 		width = f.hz("width")
 	} else {
-		q = f.positive("q")
-		width = at / q
+		width = at / f.positive("q")
 	}
 	c := readDepth(f, true)
 	return func(rate float64) (plan, error) {
@@ -78,18 +83,19 @@ func readNotch(f *fields, _ *Chain) func(float64) (plan, error) {
 
 func readAllpass(f *fields, _ *Chain) func(float64) (plan, error) {
 	at := f.hz("at")
-	if f.has("q") {
-		q := f.positive("q")
-		return biquad(func(rate float64) (response.Section, error) { return design.AllPass(rate, at, q) })
+	order, q := 1, math.Sqrt2/2
+	switch f.either("q", "order") {
+	case "q":
+		order, q = 2, f.positive("q")
+	case "order":
+		order = f.d.whole(f.need("order", "1"), "order", 1, 2)
 	}
-	order := 1
-	if n, ok := f.get("order"); ok {
-		order = f.d.whole(n, "order", 1, 2)
-	}
-	if order == 2 {
-		return biquad(func(rate float64) (response.Section, error) { return design.AllPass(rate, at, math.Sqrt2/2) })
-	}
-	return biquad(func(rate float64) (response.Section, error) { return design.AllPassFirst(rate, at) })
+	return biquad(func(rate float64) (response.Section, error) {
+		if order == 1 {
+			return design.AllPassFirst(rate, at)
+		}
+		return design.AllPass(rate, at, q)
+	})
 }
 
 func readDC(f *fields, _ *Chain) func(float64) (plan, error) {
@@ -107,20 +113,19 @@ func readDC(f *fields, _ *Chain) func(float64) (plan, error) {
 }
 
 func readGain(f *fields, _ *Chain) func(float64) (plan, error) {
-	by := f.db("by", math.NaN(), false)
+	by := f.gain("by")
 	return func(float64) (plan, error) { return plan{gain: math.Pow(10, by/20)}, nil }
 }
 
 func readDelay(f *fields, _ *Chain) func(float64) (plan, error) {
-	n := f.need("by", duration.example)
-	var by Span
-	if n != nil && f.d.err == nil {
-		var err error
-		if by, err = parseSpan(f.d.text(n, "by")); err != nil {
-			f.d.fail(n, "'by': %v", err)
-		} else if by.value < 0 {
-			f.d.fail(n, "'by' is %s; a delay is not negative (to move a recording earlier, give 'align' a number of samples)", describe(n))
-		}
+	n := f.need("by", "2 ms")
+	text := f.d.text(n, "by")
+	by, err := parseSpan(text)
+	if err == nil {
+		err = by.check()
+	}
+	if err != nil {
+		f.d.fail(n, "'by' is %s: %v", quote(text), err)
 	}
 	return func(rate float64) (plan, error) { return plan{gain: 1, delay: by.Samples(rate)}, nil }
 }

@@ -25,9 +25,27 @@ func BulkLatency(h []float64, origin int, rate float64) (d float64, polarity int
 	if !usable(h, rate) {
 		return math.NaN(), 0
 	}
-	size := NextPow2(max(8*len(h), int(bulkDensity*rate)))
+	h = h[:audibleLength(h)]
+	size := NextPow2(max(4*len(h), int(bulkDensity*rate)))
 	t, polarity := BulkLatencyOf(h, Spectrum(h, size), size, rate)
 	return t - float64(origin), polarity
+}
+
+// audibleLength leaves out an end whose energy is 1e-24 of the whole: it moves
+// a latency by far less than a millionth of a sample, and costs what it is long.
+func audibleLength(h []float64) int {
+	var total, end float64
+	for _, v := range h {
+		total += v * v
+	}
+	n := len(h)
+	for n > 1 {
+		if end += h[n-1] * h[n-1]; end > 1e-24*total {
+			break
+		}
+		n--
+	}
+	return n
 }
 
 // BulkDelay is BulkLatency from the first sample of h, without its polarity:
@@ -56,7 +74,7 @@ const bulkDensity = 10
 
 // BulkLatencyOf is BulkLatency, relative to the first sample of x, for a caller
 // that has the transform of x already: bins 0 to size/2, with size a multiple
-// of 8 and at least 8 times len(x), and ten bins or more a Hz.
+// of 4 and at least 4 times len(x), and ten bins or more a Hz.
 func BulkLatencyOf(x []float64, bins []complex128, size int, rate float64) (t float64, polarity int) {
 	c := pinkCorrelation(bins, size, rate)
 	t, symmetric := Mirror(x)
@@ -143,8 +161,8 @@ const contender = 0.9
 
 // largest is the lag of the largest modulus: every coarse maximum that could be it, refined.
 func (c *correlation) largest() float64 {
-	// A quarter of the bins holds every lag within K/8 samples, the length of x at least.
-	const stride = 4
+	// Half the bins hold every lag within K/4 samples, the length of x at least.
+	const stride = 2
 	n := c.size / stride
 	one := make([]complex128, n)
 	for i, v := range c.w {
