@@ -52,6 +52,10 @@ type Recording struct {
 // EXTENSIBLE fmt chunk. Errors begin with the path and unwrap to an error of
 // the system, to [container.ErrMalformed] or to [container.ErrUnsupported].
 func Open(path string) (*Recording, error) {
+	// Looked at before it is opened: opening a pipe may wait for ever.
+	if info, err := os.Stat(path); err == nil && !info.IsDir() && !info.Mode().IsRegular() {
+		return nil, fmt.Errorf("%s: is not a regular file; copy the recording to one first", path)
+	}
 	file, err := os.Open(path)
 	if err != nil {
 		return nil, fmt.Errorf("%s: cannot be opened: %w; check the name and the permissions", path, bare(err))
@@ -69,11 +73,8 @@ func (r *Recording) open() error {
 	if err != nil {
 		return fmt.Errorf("cannot be examined: %w; check the disk", bare(err))
 	}
-	switch {
-	case info.IsDir():
+	if info.IsDir() {
 		return errors.New("is a folder, not a recording; name a WAV file in it")
-	case !info.Mode().IsRegular():
-		return errors.New("is not a regular file; copy the recording to one first")
 	}
 	r.size, r.modTime = info.Size(), info.ModTime()
 	if r.layout, err = container.Parse(r.file, r.size); err != nil {

@@ -18,8 +18,11 @@ type Result struct {
 	Latency filter.Latency
 	// Delay in samples is what the chain's delay stages add on purpose.
 	Delay int
-	// Taps and Sections are what the path is made of.
-	Taps, Sections int
+	// Taps, Sections and ZeroSections (run forward and backward) are what the
+	// path is made of.
+	Taps, Sections, ZeroSections int
+	// Notes and Warnings are the path's.
+	Notes, Warnings []string
 	// TargetErrorDB and ToleranceDB: how far the magnitude strays from the
 	// chain's target, and how far it may.
 	TargetErrorDB, ToleranceDB float64
@@ -49,7 +52,8 @@ func auditPath(f *filter.Filter, p *filter.Path) (*Result, error) {
 		Chain: f.Chain().Name, Phase: f.Phase(), Rate: f.Rate(),
 		Channel: p.Channel, Shared: len(f.Paths()) == 1,
 		Latency: f.Latency(p), Delay: p.Delay,
-		Taps: len(p.System.Taps), Sections: len(p.System.Sections),
+		Taps: len(p.System.Taps), Sections: len(p.System.Sections), ZeroSections: len(p.System.Zero),
+		Notes: p.Notes, Warnings: p.Warnings,
 		TargetErrorDB: p.TargetErrorDB(), ToleranceDB: f.Chain().Tolerance,
 	}
 	rate := float64(f.Rate())

@@ -102,7 +102,7 @@ func TestLinearPhaseHasNoPhase(t *testing.T) {
 		for name, d := range map[string]float64{
 			"level": f.PreRing.White.Level - f.PostRing.White.Level, "pink level": f.PreRing.Pink.Level - f.PostRing.Pink.Level,
 			"beyond 2 ms": f.PreRing.White.Beyond[0] - f.PostRing.White.Beyond[0],
-			"length": f.PreRing.White.Length - f.PostRing.White.Length, "pink length": f.PreRing.Pink.Length - f.PostRing.Pink.Length,
+			"length":      f.PreRing.White.Length - f.PostRing.White.Length, "pink length": f.PreRing.Pink.Length - f.PostRing.Pink.Length,
 		} {
 			if !(math.Abs(d) <= 1e-6) {
 				t.Errorf("%s: %s before and after differ by %g", text, name, d)

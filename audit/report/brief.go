@@ -37,7 +37,7 @@ var briefRows = []struct {
 }{
 	{"", place},
 	{"realised as", func(r *audit.Result) string { return string(r.Phase) }},
-	{"taps / sections", func(r *audit.Result) string { return fmt.Sprintf("%d / %d", r.Taps, r.Sections) }},
+	{"taps / sections", func(r *audit.Result) string { return fmt.Sprintf("%d / %d", r.Taps, r.Sections+r.ZeroSections) }},
 	{"off target, dB", func(r *audit.Result) string { return decimal(r.TargetErrorDB, 3) }},
 	{"latency removed, samples", func(r *audit.Result) string { return decimal(r.Latency.Removed, 2) }},
 	{"latency left, samples", func(r *audit.Result) string { return decimal(r.Latency.Residual, 2) }},

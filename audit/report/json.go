@@ -33,6 +33,9 @@ type result struct {
 	LookAheadSamples  int               `json:"look_ahead_samples"`
 	Taps              int               `json:"taps"`
 	Sections          int               `json:"sections"`
+	ZeroSections      int               `json:"zero_sections"` // run forward and backward
+	Notes             []string          `json:"notes"`
+	Warnings          []string          `json:"warnings"`
 	LeadMS            number            `json:"lead_ms"`
 	Polarity          *int              `json:"polarity"`
 	DelaySpreadMS     number            `json:"delay_spread_ms"`
@@ -130,7 +133,8 @@ func resultOf(r *audit.Result) result {
 		Chain: r.Chain, Phase: string(r.Phase), RateHz: r.Rate,
 		LatencySamples: number(r.Latency.Removed), ResidualSamples: number(r.Latency.Residual),
 		DelaySamples: r.Delay, LookAheadSamples: r.Latency.LookAhead,
-		Taps: r.Taps, Sections: r.Sections,
+		Taps: r.Taps, Sections: r.Sections, ZeroSections: r.ZeroSections,
+		Notes: append([]string{}, r.Notes...), Warnings: append([]string{}, r.Warnings...),
 		LeadMS: ms(f.Lead), DelaySpreadMS: ms(f.DelaySpread),
 		PhaseDeviationDeg: number(f.PhaseDeviation), SumTestDB: number(f.SumTest),
 		TargetErrorDB: number(r.TargetErrorDB), ToleranceDB: number(r.ToleranceDB),
@@ -139,7 +143,10 @@ func resultOf(r *audit.Result) result {
 		Bands: []band{}, Curve: curveOf(f.Curve),
 		Probes:    probes{number(r.Disagreement * toUS), number(r.AnalyticDisagreement * toUS)},
 		Limits:    []struct{}{},
-		NotStated: f.NotStated,
+		NotStated: map[string]string{},
+	}
+	for figure, reason := range f.NotStated {
+		out.NotStated[keyOf(figure)] = reason
 	}
 	if r.Channel > 0 {
 		out.Channel = &r.Channel
@@ -154,6 +161,19 @@ func resultOf(r *audit.Result) result {
 		})
 	}
 	return out
+}
+
+// keyOf is the key under which a figure stands in the report.
+func keyOf(figure string) string {
+	switch figure {
+	case "delay_spread":
+		return "delay_spread_ms"
+	case "phase_deviation":
+		return "phase_deviation_deg"
+	case "sum_test":
+		return "sum_test_db"
+	}
+	return figure
 }
 
 func sharesOf(s figures.Smear) shares { return shares{ms(s.Total), ms(s.Magnitude), ms(s.Phase)} }

@@ -4,7 +4,9 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"fettle/audit"
 	"fettle/audit/figures"
@@ -29,7 +31,12 @@ func heading(b *strings.Builder, r *audit.Result) {
 	title := fmt.Sprintf("%s, %s, %s", clip(r.Chain, 48), r.Phase, place(r))
 	fmt.Fprintf(b, "%s\n%s\n", title, strings.Repeat("=", len([]rune(title))))
 	fmt.Fprintf(b, "  %-22s %s\n", "built as", builtOf(r))
-	fmt.Fprintf(b, "  %-22s %s dB (allowed %g dB)\n", "off target by at most", decimal(r.TargetErrorDB, 3), r.ToleranceDB)
+	for _, note := range append(slices.Clone(r.Notes), r.Warnings...) {
+		for _, line := range wrapped(note, Width-25) {
+			fmt.Fprintf(b, "  %-22s %s\n", "", line)
+		}
+	}
+	fmt.Fprintf(b, "  %-22s %s dB (tolerance %g dB)\n", "off target by at most", decimal(r.TargetErrorDB, 3), r.ToleranceDB)
 }
 
 // place names a result's rate, and its channel where that matters.
@@ -51,6 +58,9 @@ func builtOf(r *audit.Result) string {
 	}
 	if r.Sections > 0 {
 		parts = append(parts, fmt.Sprintf("%d second-order sections", r.Sections))
+	}
+	if r.ZeroSections > 0 {
+		parts = append(parts, fmt.Sprintf("%d second-order sections run forward and backward", r.ZeroSections))
 	}
 	if r.Delay > 0 {
 		parts = append(parts, fmt.Sprintf("a wanted delay of %d samples", r.Delay))
@@ -156,6 +166,22 @@ func ringLevel(db float64) string {
 		return "none"
 	}
 	return decimal(db, 1) + " dB"
+}
+
+// wrapped breaks text into lines of at most n characters at its blanks.
+func wrapped(text string, n int) []string {
+	var lines []string
+	line := ""
+	for _, word := range strings.Fields(text) {
+		if line != "" && utf8.RuneCountInString(line)+1+utf8.RuneCountInString(word) > n {
+			lines, line = append(lines, line), ""
+		}
+		if line != "" {
+			line += " "
+		}
+		line += word
+	}
+	return append(lines, line)
 }
 
 // clip shortens a name to n characters.
