@@ -6,6 +6,9 @@ import (
 	"fmt"
 	"io"
 	"runtime/debug"
+	"strings"
+
+	"fettle/cmd/fettle/internal/batch"
 
 	"github.com/urfave/cli/v2"
 )
@@ -48,40 +51,50 @@ func finish(err error, stderr io.Writer) int {
 	}
 	status := exitNotStarted
 	var f *failure
-	if errors.As(err, &f) {
+	switch {
+	case errors.As(err, &f):
 		status, err = f.status, f.err
+	case errors.Is(err, context.Canceled):
+		status, err = exitInterrupted, errors.New("interrupted")
 	}
-	if errors.Is(err, context.Canceled) {
-		status, err = exitInterrupted, errors.New("interrupted: recordings not yet done were left as they were; the same command goes on where it stopped")
-	}
-	if err != nil {
-		fmt.Fprintf(stderr, "fettle: %v\n", err)
-	}
+	complain(stderr, err)
 	return status
+}
+
+// complain prints an error; of several problems, each on a line of its own.
+func complain(w io.Writer, err error) {
+	var problems batch.Problems
+	switch {
+	case errors.As(err, &problems):
+		for _, e := range problems {
+			complain(w, e)
+		}
+	case err != nil:
+		fmt.Fprintf(w, "fettle: %s\n", plain(err.Error()))
+	}
 }
 
 func newApp(stdout, stderr io.Writer) *cli.App {
 	app := &cli.App{
 		Name:      "fettle",
-		Usage:     "clean recordings through one filter chain, aligned to the sample, and audit what it does to timing",
+		Usage:     "clean recordings, aligned to the sample",
 		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN",
+		Description: "Puts recordings through one chain of filters and hands them back aligned\n" +
+			"to the sample, with a record of what was done; and says in numbers what\n" +
+			"the chain does to time. Flags may stand before or after arguments.",
 		Version:   version(),
 		Writer:    stdout,
 		ErrWriter: stderr,
 		Commands:  []*cli.Command{renderCommand(), auditCommand()},
 		// Errors are printed in one place, by finish.
-		ExitErrHandler: func(*cli.Context, error) {},
-		OnUsageError:   usageError,
-		CommandNotFound: func(c *cli.Context, name string) {
-			c.App.Metadata["unknown"] = name
-		},
-		Metadata:        map[string]any{},
+		ExitErrHandler:  func(*cli.Context, error) {},
+		OnUsageError:    usageError,
 		HideHelpCommand: true,
 	}
 	app.CustomAppHelpTemplate = cli.AppHelpTemplate + "\n" + exitHelp + "\n"
 	app.Action = func(c *cli.Context) error {
 		if c.Args().Present() {
-			return fmt.Errorf("there is no command %q; see fettle --help", c.Args().First())
+			return fmt.Errorf("%q: there is no such command; see fettle --help", c.Args().First())
 		}
 		return cli.ShowAppHelp(c)
 	}
@@ -101,7 +114,8 @@ func quiet(c *cli.Command) {
 }
 
 func usageError(c *cli.Context, err error, _ bool) error {
-	return fmt.Errorf("%w; see fettle %s --help", err, c.Command.FullName())
+	command := strings.TrimSpace("fettle " + strings.TrimPrefix(c.Command.FullName(), "fettle"))
+	return fmt.Errorf("%w; see %s --help", err, command)
 }
 
 // version is the module's version where the build knows one.

@@ -1,8 +1,12 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"io"
+	"io/fs"
+	"math"
+	"os"
 	"strings"
 
 	"fettle/audit"
@@ -16,10 +20,11 @@ func auditCommand() *cli.Command {
 	return &cli.Command{
 		Name:        "audit",
 		Usage:       "say what a chain does to time",
+		UsageText:   "fettle audit chain CHAIN",
 		Subcommands: []*cli.Command{auditChainCommand()},
 		Action: func(c *cli.Context) error {
 			if c.Args().Present() {
-				return fmt.Errorf("there is no audit of %q; see fettle audit --help", c.Args().First())
+				return fmt.Errorf("%q: there is no such audit; see fettle audit --help", c.Args().First())
 			}
 			return cli.ShowSubcommandHelp(c)
 		},
@@ -29,54 +34,73 @@ func auditCommand() *cli.Command {
 func auditChainCommand() *cli.Command {
 	return &cli.Command{
 		Name:      "chain",
-		Usage:     "measure a chain by impulse and by chirp, through the path that render uses",
-		ArgsUsage: "CHAIN",
-		Description: "Probes the chain in the computer, at float64; nothing is played.\n" +
-			"Delay spread, smear and rings are defined in the README.\n\n" + exitHelp,
+		Usage:     "measure a chain by impulse and by chirp",
+		UsageText: "fettle audit chain [options] CHAIN",
+		Description: "Sends both probes through the very path that render uses; nothing is\n" +
+			"played. Delay spread, smear and rings are defined in the README.\n\n" +
+			"EXIT STATUS\n   0 done; 1 could not start (usage, chain); 130 interrupted",
 		Flags: []cli.Flag{
-			&cli.StringFlag{Name: "rate", Value: "48k", Usage: "sample rate to audit at, such as `44.1k`"},
+			&cli.StringFlag{Name: "rate", Value: "48k", Usage: "audit at sample rate `RATE`, such as 44.1k"},
 			phaseFlag(),
-			&cli.StringFlag{Name: "json", Usage: "also write all figures to `FILE` (- for standard output, in place of the table)"},
+			jsonFlag(),
 		},
 		Action: auditChain,
 	}
 }
 
 func phaseFlag() cli.Flag {
-	return &cli.StringFlag{Name: "phase", Usage: "realise the chain as `linear`, minimum, iir or given, whatever its file says"}
+	return &cli.StringFlag{Name: "phase", Usage: "`PHASE`: linear, minimum, iir, zero or given, over the file"}
+}
+
+func jsonFlag() cli.Flag {
+	return &cli.StringFlag{Name: "json", Usage: "write all figures to `FILE`; -: in place of the table"}
 }
 
 func auditChain(c *cli.Context) error {
 	if c.NArg() != 1 {
-		return fmt.Errorf("audit chain takes one chain file, not %d; see fettle audit chain --help", c.NArg())
+		return fmt.Errorf("audit chain: takes one chain file, not %d; see fettle audit chain --help", c.NArg())
 	}
 	rate, err := rateOf(c.String("rate"))
 	if err != nil {
 		return err
 	}
-	chain, phase, err := loadChain(c, c.Args().First())
+	chain, phase, err := loadChain(c.Args().First(), c.String("phase"))
 	if err != nil {
 		return err
 	}
-	f, err := chain.Realise(rate, phase)
-	if err != nil {
+	if err := tryWriting(c.String("json")); err != nil {
 		return err
 	}
-	results, err := audit.Chain(f)
-	if err != nil {
-		return err
-	}
-	if c.String("json") != "-" {
-		for i, r := range results {
-			if i > 0 {
-				fmt.Fprintln(c.App.Writer)
-			}
-			if err := report.Text(c.App.Writer, r); err != nil {
-				return err
-			}
+	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) {
+		f, err := chain.Realise(rate, phase)
+		if err != nil {
+			return nil, err
 		}
+		return audit.Chain(f)
+	})
+	if err != nil {
+		return err
+	}
+	if err := printTables(c, results); err != nil {
+		return err
 	}
 	return writeJSON(c, results)
+}
+
+// printTables prints the figures, unless standard output is for JSON.
+func printTables(c *cli.Context, results []*audit.Result) error {
+	if c.String("json") == "-" {
+		return nil
+	}
+	for i, r := range results {
+		if i > 0 {
+			fmt.Fprintln(c.App.Writer)
+		}
+		if err := report.Text(c.App.Writer, r); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // writeJSON writes the report that --json asks for.
@@ -87,16 +111,31 @@ func writeJSON(c *cli.Context, results []*audit.Result) error {
 }
 
 // loadChain reads a chain and the phase that --phase asks for.
-func loadChain(c *cli.Context, path string) (*filter.Chain, filter.Realisation, error) {
+func loadChain(path, phaseName string) (*filter.Chain, filter.Realisation, error) {
 	phase := filter.Written
-	if name := c.String("phase"); name != "" {
+	if phaseName != "" {
 		var err error
-		if phase, err = filter.ParseRealisation(name); err != nil {
+		if phase, err = filter.ParseRealisation(phaseName); err != nil {
 			return nil, "", fmt.Errorf("--phase: %w", err)
 		}
 	}
+	if err := isFile(path); err != nil {
+		return nil, "", err
+	}
 	chain, err := filter.Load(path)
 	return chain, phase, err
+}
+
+// isFile says in the user's words what a system's error says in its own.
+func isFile(chain string) error {
+	info, err := os.Stat(chain)
+	switch {
+	case errors.Is(err, fs.ErrNotExist):
+		return fmt.Errorf("%s: there is no such chain file; check the name", chain)
+	case err == nil && info.IsDir():
+		return fmt.Errorf("%s: is a folder, not a chain file; name a file in it", chain)
+	}
+	return nil // what else may be wrong shows when it is read
 }
 
 func rateOf(text string) (int, error) {
@@ -104,8 +143,8 @@ func rateOf(text string) (int, error) {
 	if err != nil {
 		return 0, fmt.Errorf("--rate: %w", err)
 	}
-	if hz < 1 || hz > 1<<31 || hz != float64(int(hz)) {
-		return 0, fmt.Errorf("--rate: %s is %g Hz; a sample rate is a whole number of Hz", text, hz)
+	if !(hz >= 1 && hz <= math.MaxInt32 && hz == math.Trunc(hz)) {
+		return 0, fmt.Errorf("--rate: %q is %g Hz; give a whole number of Hz from 1 on, such as 44.1k", text, hz)
 	}
 	return int(hz), nil
 }

@@ -11,6 +11,8 @@ import (
 
 func main() {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
+	// The first signal asks, the second one ends the program as usual.
+	context.AfterFunc(ctx, stop)
 	status := run(ctx, os.Args, os.Stdout, os.Stderr)
 	stop()
 	os.Exit(status)

@@ -1,6 +1,8 @@
 package main
 
 import (
+	"context"
+	"fmt"
 	"io"
 	"os"
 
@@ -19,25 +21,32 @@ type progress struct {
 	files *mpb.Bar
 }
 
-func newProgress(w io.Writer, plan *batch.Plan) *progress {
+func newProgress(ctx context.Context, w io.Writer, plan *batch.Plan) *progress {
+	bytes, files := toDo(plan)
 	f, ok := w.(*os.File)
-	if !ok || !term.IsTerminal(int(f.Fd())) {
+	if files == 0 || !ok || !term.IsTerminal(int(f.Fd())) {
 		return &progress{}
 	}
-	var bytes, files int64
-	for _, j := range plan.Jobs {
-		if !j.Done {
-			bytes += j.Bytes
-			files++
-		}
-	}
-	p := &progress{bars: mpb.New(mpb.WithOutput(f), mpb.WithWidth(40))}
+	// A terminal prints ^C where the cursor stands; the bars count on column 0.
+	context.AfterFunc(ctx, func() { fmt.Fprint(f, "\r") })
+	// With this width the longest line still fits 80 columns.
+	p := &progress{bars: mpb.New(mpb.WithOutput(f), mpb.WithWidth(36))}
 	p.bytes = p.bars.AddBar(bytes,
 		mpb.PrependDecorators(decor.CountersKibiByte("% .1f of % .1f", decor.WCSyncWidth)),
 		mpb.AppendDecorators(decor.AverageETA(decor.ET_STYLE_MMSS), decor.Name(" left")))
 	p.files = p.bars.AddBar(files,
 		mpb.PrependDecorators(decor.CountersNoUnit("%d of %d recordings", decor.WCSyncWidth)))
 	return p
+}
+
+func toDo(plan *batch.Plan) (bytes, files int64) {
+	for _, j := range plan.Jobs {
+		if !j.Done {
+			bytes += j.Bytes
+			files++
+		}
+	}
+	return bytes, files
 }
 
 func (p *progress) Bytes(n int64) {
@@ -52,13 +61,17 @@ func (p *progress) Finished(*batch.Job, error) {
 	}
 }
 
-// close leaves the bars as they are: headers and failed recordings make the
-// byte count fall short of its total.
+// close leaves the bars as they are. When all recordings are finished, so is
+// the byte count, though headers and failed recordings make it fall short.
 func (p *progress) close() {
 	if p.bars == nil {
 		return
 	}
-	p.bytes.SetTotal(-1, true)
-	p.files.SetTotal(-1, true)
+	if p.files.Completed() {
+		p.bytes.SetTotal(-1, true)
+	} else {
+		p.bytes.Abort(false)
+		p.files.Abort(false)
+	}
 	p.bars.Wait()
 }

@@ -18,20 +18,23 @@ import (
 func renderCommand() *cli.Command {
 	return &cli.Command{
 		Name:      "render",
-		Usage:     "clean recordings, aligned to the sample, with a treatment record",
-		ArgsUsage: "INPUT... (files, folders, ** patterns)",
-		Description: "Each recording keeps its length, rate, channels and sample format, and its\n" +
+		Usage:     "clean recordings, aligned, with a treatment record",
+		UsageText: "fettle render [options] --chain CHAIN --out FOLDER INPUT...",
+		Description: "An input is a file, a folder or a quoted ** pattern; of folders and patterns,\n" +
+			".wav and .wave files are taken, hidden ones left aside.\n\n" +
+			"Each recording keeps its length, rate, channels and sample format, and its\n" +
 			"name, below FOLDER. Originals are never written to. What was done is appended\n" +
-			"to FOLDER/" + batch.RecordName + "; a second run treats only what is new or changed.\n\n" + exitHelp,
+			"to FOLDER/" + batch.RecordName + "; a second run treats only what is new or changed.\n\n" +
+			"Formats: pcm8, pcm16, pcm24, pcm32, float32, float64.\n\n" + exitHelp,
 		Flags: []cli.Flag{
-			&cli.StringFlag{Name: "chain", Required: true, Usage: "chain `FILE`"},
-			&cli.StringFlag{Name: "out", Required: true, Usage: "output `FOLDER`, made if need be"},
+			&cli.StringFlag{Name: "chain", Usage: "clean through the chain in `CHAIN`, a YAML file"},
+			&cli.StringFlag{Name: "out", Usage: "put outputs into `FOLDER`, made if need be"},
 			phaseFlag(),
-			&cli.StringFlag{Name: "format", Usage: "sample `FORMAT` of the outputs: pcm8, pcm16, pcm24, pcm32, float32 or float64 (default: each original's)"},
-			&cli.StringFlag{Name: "headroom", Usage: "lower all recordings by a `LEVEL` such as \"3 dB\", or, with fit, each by what it needs"},
-			&cli.IntFlag{Name: "jobs", Value: runtime.GOMAXPROCS(0), Usage: "recordings at once"},
-			&cli.BoolFlag{Name: "again", Usage: "treat recordings that are already done again"},
-			&cli.StringFlag{Name: "json", Usage: "write the audit's figures to `FILE` (- for standard output, in place of the table)"},
+			&cli.StringFlag{Name: "format", Usage: "write `FORMAT`, such as pcm24 (default: as each original)"},
+			&cli.StringFlag{Name: "headroom", Usage: "lower all by `LEVEL`, such as \"3 dB\"; fit: as each needs"},
+			&cli.IntFlag{Name: "jobs", Value: runtime.GOMAXPROCS(0), Usage: "treat `N` recordings at once"},
+			&cli.BoolFlag{Name: "again", Usage: "treat again what is already done", DisableDefaultText: true},
+			jsonFlag(),
 		},
 		Action: render,
 	}
@@ -42,7 +45,7 @@ func render(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	chain, phase, err := loadChain(c, c.String("chain"))
+	chain, phase, err := loadChain(c.String("chain"), c.String("phase"))
 	if err != nil {
 		return err
 	}
@@ -54,6 +57,9 @@ func render(c *cli.Context) error {
 	if err := plan.PrepareOut(); err != nil {
 		return err
 	}
+	if err := tryWriting(c.String("json")); err != nil {
+		return err
+	}
 	if err := auditPlan(c, plan); err != nil {
 		return err
 	}
@@ -62,22 +68,34 @@ func render(c *cli.Context) error {
 
 func renderOptions(c *cli.Context) (batch.Options, error) {
 	o := batch.Options{Out: c.String("out"), Jobs: c.Int("jobs"), Again: c.Bool("again"), Version: c.App.Version}
-	if c.NArg() == 0 {
-		return o, errors.New("no input is named; give files, folders or ** patterns")
-	}
-	if o.Jobs < 1 {
-		return o, fmt.Errorf("--jobs is %d; at least 1 recording is treated at a time", o.Jobs)
-	}
-	if name := c.String("format"); name != "" {
-		e, err := pcm.ParseEncoding(name)
-		if err != nil {
-			return o, fmt.Errorf("--format: %w", err)
-		}
-		o.Encoding = &e
+	switch {
+	case c.String("chain") == "":
+		return o, errors.New("--chain: is missing; name the chain file to clean with")
+	case o.Out == "":
+		return o, errors.New("--out: is missing; name the folder for the outputs")
+	case c.NArg() == 0:
+		return o, errors.New("render: no input is named; give files, folders or ** patterns")
+	case o.Jobs < 1:
+		return o, fmt.Errorf("--jobs: %d recordings at once are too few; give 1 or more", o.Jobs)
 	}
 	var err error
+	if o.Encoding, err = encodingOf(c.String("format")); err != nil {
+		return o, err
+	}
 	o.Headroom, err = headroomOf(c.String("headroom"))
 	return o, err
+}
+
+// encodingOf is nil for none.
+func encodingOf(name string) (*pcm.Encoding, error) {
+	if name == "" {
+		return nil, nil
+	}
+	e, err := pcm.ParseEncoding(name)
+	if err != nil {
+		return nil, fmt.Errorf("--format: %w", err)
+	}
+	return &e, nil
 }
 
 func headroomOf(text string) (batch.Headroom, error) {
@@ -91,32 +109,21 @@ func headroomOf(text string) (batch.Headroom, error) {
 	if err != nil {
 		return batch.Headroom{}, fmt.Errorf("--headroom: %w, or fit", err)
 	}
-	if db < 0 {
+	if !(db >= 0) {
 		return batch.Headroom{}, fmt.Errorf("--headroom: %s would raise the recordings; give what is taken off, such as \"3 dB\"", text)
 	}
 	return batch.Headroom{DB: db}, nil
 }
 
-// auditPlan audits the chain at every rate that is about to be treated. A rate
-// that the chain cannot serve is left to fail with its recordings.
+// auditPlan audits the chain at every rate that is about to be treated, and
+// prints and writes the figures.
 func auditPlan(c *cli.Context, plan *batch.Plan) error {
-	var results []*audit.Result
-	for _, rate := range plan.Rates() {
-		f, err := plan.Filter(rate)
-		if errors.Is(err, filter.ErrForRecording) {
-			continue
-		}
-		if err != nil {
-			return err
-		}
-		of, err := audit.Chain(f)
-		if err != nil {
-			return err
-		}
-		results = append(results, of...)
+	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) { return audits(plan) })
+	if err != nil {
+		return err
 	}
 	if len(results) > 0 && c.String("json") != "-" {
-		fmt.Fprintf(c.App.Writer, "audit of %s\n", plan.Chain.Name)
+		fmt.Fprintf(c.App.Writer, "audit of %s\n", plain(plan.Chain.Name))
 		if err := report.Brief(c.App.Writer, results); err != nil {
 			return err
 		}
@@ -125,40 +132,57 @@ func auditPlan(c *cli.Context, plan *batch.Plan) error {
 	return writeJSON(c, results)
 }
 
+// audits leaves out a rate that the chain cannot serve: its recordings fail
+// with the reason when their turn comes.
+func audits(plan *batch.Plan) ([]*audit.Result, error) {
+	var results []*audit.Result
+	for _, rate := range plan.Rates() {
+		f, err := plan.Filter(rate)
+		if errors.Is(err, filter.ErrForRecording) {
+			continue
+		}
+		if err != nil {
+			return nil, err
+		}
+		of, err := audit.Chain(f)
+		if err != nil {
+			return nil, err
+		}
+		results = append(results, of...)
+	}
+	return results, nil
+}
+
 func runPlan(c *cli.Context, plan *batch.Plan) error {
-	show := newProgress(c.App.ErrWriter, plan)
+	show := newProgress(c.Context, c.App.ErrWriter, plan)
 	summary, err := plan.Run(c.Context, show)
 	show.close()
 	if summary != nil {
-		for _, e := range summary.Failures {
-			fmt.Fprintf(c.App.ErrWriter, "fettle: %v\n", e)
+		complain(c.App.ErrWriter, summary.Failures)
+		if c.String("json") != "-" {
+			printSummary(c, plan, summary)
 		}
 	}
-	if err != nil {
-		if errors.Is(err, context.Canceled) {
-			return context.Canceled
-		}
+	switch {
+	case errors.Is(err, context.Canceled):
+		return &failure{exitInterrupted, errors.New("interrupted: what was not finished was left as it was; the same command goes on from there")}
+	case err != nil || summary.Failed() > 0:
 		return &failure{exitSomeFailed, err}
-	}
-	if c.String("json") != "-" {
-		printSummary(c, plan, summary)
-	}
-	if summary.Failed > 0 {
-		return &failure{status: exitSomeFailed}
 	}
 	return nil
 }
 
 func printSummary(c *cli.Context, plan *batch.Plan, s *batch.Summary) {
-	fmt.Fprintf(c.App.Writer, "%s cleaned into %s", count(s.Done, "recording"), plan.Options.Out)
-	if s.Skipped > 0 {
-		fmt.Fprintf(c.App.Writer, ", %d already done", s.Skipped)
-	}
-	if s.Failed > 0 {
-		fmt.Fprintf(c.App.Writer, ", %d failed", s.Failed)
-	}
-	if s.Warnings > 0 {
-		fmt.Fprintf(c.App.Writer, ", %d with warnings in the record", s.Warnings)
+	fmt.Fprintf(c.App.Writer, "%s cleaned into %s", count(s.Done, "recording"), plain(plan.Options.Out))
+	for _, more := range []struct {
+		n    int
+		what string
+	}{
+		{s.Skipped, "already done"}, {s.Failed(), "failed"}, {s.Left, "left"}, {s.Warnings, "with warnings in the record"},
+	} {
+		if more.n > 0 {
+			fmt.Fprintf(c.App.Writer, ", %d %s", more.n, more.what)
+		}
 	}
 	fmt.Fprintln(c.App.Writer)
 }

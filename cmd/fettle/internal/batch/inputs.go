@@ -23,19 +23,29 @@ type Input struct {
 // ErrNoInput says that nothing matched.
 var ErrNoInput = errors.New("no recording matched")
 
+// Problems are several errors of equal rank, such as one a recording.
+type Problems []error
+
+func (p Problems) Error() string   { return errors.Join(p...).Error() }
+func (p Problems) Unwrap() []error { return p }
+
 // Gather finds the recordings that files, folders and ** patterns name,
-// sorted by output path. Of folders it takes files that end in .wav or .wave,
-// hidden ones and anything below out left aside; a file named outright is
-// taken whatever its ending. problems are folders that could not be read.
-func Gather(args []string, out string) (inputs []Input, problems []error, err error) {
+// sorted by output path. Of folders and patterns it takes what ends in .wav or
+// .wave, hidden ones and anything below out left aside; a file named outright
+// is taken whatever its ending. Links are followed to files, and to a folder
+// that is named outright. problems are what is named but cannot be taken. It
+// fails when there is nothing else.
+func Gather(args []string, out string) (inputs []Input, problems Problems, err error) {
 	g := gatherer{seen: map[string]bool{}, out: absolute(out)}
 	for _, arg := range args {
-		if err := g.add(arg); err != nil {
-			return nil, nil, err
-		}
+		g.add(arg)
 	}
-	if len(g.inputs) == 0 && len(g.problems) == 0 {
-		return nil, nil, fmt.Errorf("%w: %s hold no .wav file; check the names, or quote a ** pattern", ErrNoInput, strings.Join(args, ", "))
+	switch {
+	case len(g.inputs) > 0:
+	case len(g.problems) > 0:
+		return nil, nil, g.problems
+	default:
+		return nil, nil, fmt.Errorf("%w: no .wav or .wave file in %s; check the names", ErrNoInput, strings.Join(args, ", "))
 	}
 	slices.SortFunc(g.inputs, func(a, b Input) int { return strings.Compare(a.Rel, b.Rel) })
 	return g.inputs, g.problems, nil
@@ -43,80 +53,116 @@ func Gather(args []string, out string) (inputs []Input, problems []error, err er
 
 type gatherer struct {
 	inputs   []Input
-	problems []error
+	problems Problems
 	seen     map[string]bool
 	out      string
 }
 
-func (g *gatherer) add(arg string) error {
+func (g *gatherer) problem(path string, err error, todo string) {
+	g.problems = append(g.problems, fmt.Errorf("%s: %w; %s", path, cause(err), todo))
+}
+
+func (g *gatherer) add(arg string) {
 	info, err := os.Stat(arg)
 	switch {
 	case err == nil && info.IsDir():
 		g.folder(arg)
-		return nil
 	case err == nil:
 		g.file(arg, filepath.Base(arg))
-		return nil
 	case strings.ContainsAny(arg, "*?[{"):
-		return g.pattern(arg)
+		g.pattern(arg)
+	case errors.Is(err, fs.ErrNotExist):
+		g.problem(arg, errors.New("there is no such file or folder"), "check the name")
+	default:
+		g.problem(arg, err, "check the name and the permissions")
 	}
-	// A missing file is that recording's failure, unless it is all there is.
-	if errors.Is(err, fs.ErrNotExist) {
-		return fmt.Errorf("%s: no such file or folder; check the name", arg)
-	}
-	g.problems = append(g.problems, fmt.Errorf("%s: %w", arg, cause(err)))
-	return nil
 }
 
+// file takes a file once. One that cannot be examined is taken too: its
+// failure is its own.
 func (g *gatherer) file(path, rel string) {
-	if key := absolute(path); !g.seen[key] {
-		g.seen[key] = true
-		g.inputs = append(g.inputs, Input{path, rel})
+	key := absolute(path)
+	if g.seen[key] {
+		return
 	}
+	g.seen[key] = true
+	if info, err := os.Stat(path); err == nil && !info.Mode().IsRegular() {
+		g.problem(path, errors.New("is neither a file nor a folder"), "copy the recording to a file")
+		return
+	}
+	g.inputs = append(g.inputs, Input{path, rel})
 }
 
-// folder walks a folder without following links to folders.
+// folder walks a folder without following links to other folders.
 func (g *gatherer) folder(root string) {
-	_ = filepath.WalkDir(root, func(path string, e fs.DirEntry, err error) error {
+	_ = filepath.WalkDir(linked(root), func(path string, e fs.DirEntry, err error) error {
 		if err != nil {
-			g.problems = append(g.problems, fmt.Errorf("%s: %w", path, cause(err)))
+			g.problem(path, err, "check its permissions; the rest goes on without it")
 			return nil
 		}
-		hidden := path != root && strings.HasPrefix(e.Name(), ".")
-		if e.IsDir() {
-			if hidden || absolute(path) == g.out && path != root {
-				return fs.SkipDir
-			}
-			return nil
-		}
-		if !hidden && isWAV(path) {
-			rel, err := filepath.Rel(root, path)
-			if err != nil {
-				return err
-			}
+		rel, _ := filepath.Rel(root, path) // path is below root
+		hidden := rel != "." && strings.HasPrefix(e.Name(), ".")
+		switch {
+		case e.IsDir() && rel != "." && (hidden || absolute(path) == g.out):
+			return fs.SkipDir
+		case !e.IsDir() && !hidden && isWAV(path) && !isFolder(path):
 			g.file(path, rel)
 		}
 		return nil
 	})
 }
 
-func (g *gatherer) pattern(arg string) error {
+// linked makes a walk begin below root, be root a link or not.
+func linked(root string) string {
+	if info, err := os.Lstat(root); err == nil && info.Mode()&fs.ModeSymlink != 0 {
+		return root + string(filepath.Separator)
+	}
+	return root
+}
+
+func (g *gatherer) pattern(arg string) {
 	base, _ := doublestar.SplitPattern(filepath.ToSlash(arg))
-	paths, err := doublestar.FilepathGlob(arg, doublestar.WithFilesOnly())
-	if err != nil {
-		return fmt.Errorf("the pattern %s: %w", arg, err)
+	aside := g.out
+	if from := absolute(base); from == aside || isBelow(from, aside) {
+		aside = "" // all of it is there; outputs have yet to meet their originals
 	}
-	for _, path := range paths {
+	found := 0
+	for _, path := range g.matches(arg) {
 		rel, err := filepath.Rel(base, path)
-		if err != nil {
-			return err
-		}
-		inOut := strings.HasPrefix(absolute(path), g.out+string(filepath.Separator))
-		if isWAV(path) && !inOut && !strings.HasPrefix(filepath.Base(path), ".") {
+		switch {
+		case err != nil || !filepath.IsLocal(rel):
+			g.problem(path, errors.New("is not below the part of the pattern before its first *"), "write the pattern without .. behind a *")
+		case isWAV(path) && !isFolder(path) && (aside == "" || !isBelow(absolute(path), aside)):
 			g.file(path, rel)
+		default:
+			continue
 		}
+		found++
 	}
-	return nil
+	if found == 0 {
+		g.problem(arg, errors.New("the pattern matches no .wav or .wave file"), "check it")
+	}
+}
+
+// matches does not follow links to folders, which may lead in circles.
+func (g *gatherer) matches(pattern string) []string {
+	options := []doublestar.GlobOption{doublestar.WithNoFollow(), doublestar.WithNoHidden()}
+	paths, err := doublestar.FilepathGlob(pattern, append(options, doublestar.WithFailOnIOErrors())...)
+	if err == nil {
+		return paths
+	}
+	g.problem(pattern, err, "check the pattern and the permissions; the rest goes on without it")
+	paths, _ = doublestar.FilepathGlob(pattern, options...)
+	return paths
+}
+
+func isBelow(path, folder string) bool {
+	return strings.HasPrefix(path, strings.TrimSuffix(folder, string(filepath.Separator))+string(filepath.Separator))
+}
+
+func isFolder(path string) bool {
+	info, err := os.Stat(path)
+	return err == nil && info.IsDir()
 }
 
 func isWAV(path string) bool {
@@ -127,7 +173,7 @@ func isWAV(path string) bool {
 	return false
 }
 
-// absolute is a path's one name, links resolved as far as they exist.
+// absolute is a path's one name, links resolved if it exists.
 func absolute(path string) string {
 	abs, err := filepath.Abs(path)
 	if err != nil {

@@ -9,6 +9,7 @@ import (
 	"slices"
 	"strings"
 	"sync"
+	"unicode/utf8"
 
 	"fettle/audio"
 	"fettle/audio/pcm"
@@ -53,7 +54,7 @@ type Plan struct {
 	Chain    *filter.Chain
 	Options  Options
 	Jobs     []*Job
-	Problems []error // inputs that could not even be listed
+	Problems Problems // inputs that could not even be listed
 
 	once sync.Once
 	made *filters
@@ -99,26 +100,35 @@ func (p *Plan) Rates() []int {
 
 // refuseHarm checks that every output is its own and none is an original.
 func (p *Plan) refuseHarm() error {
-	byOutput := map[string]*Job{}
-	byFile := map[string]*Job{}
+	originals := map[string]*Job{}
 	for _, j := range p.Jobs {
-		byFile[absolute(j.Path)] = j
+		originals[absolute(j.Path)] = j
 	}
+	outputs := map[string]*Job{}
 	for _, j := range p.Jobs {
-		// Folded, since not every file system tells a.wav from A.WAV.
-		key := strings.ToLower(filepath.Clean(j.Output))
-		if other := byOutput[key]; other != nil {
-			return fmt.Errorf("%s and %s would both become %s; treat them in batches of their own", other.Path, j.Path, j.Output)
+		key := folded(filepath.Join(absolute(filepath.Dir(j.Output)), filepath.Base(j.Output)))
+		if other := outputs[key]; other != nil {
+			return fmt.Errorf("%s: %s and %s would both become this output; treat them in batches of their own", j.Output, other.Path, j.Path)
 		}
-		byOutput[key] = j
-		if original := byFile[absolute(j.Output)]; original != nil {
-			return fmt.Errorf("the output %s is the original %s; choose another folder for --out, since originals are never written to", j.Output, original.Path)
+		outputs[key] = j
+		if original := originals[absolute(j.Output)]; original != nil || sameFile(j.Output, j.Path) {
+			return fmt.Errorf("%s: this output would replace an original, which is never written to; choose another folder for --out", j.Output)
 		}
-		if sameFile(j.Output, j.Path) {
-			return fmt.Errorf("the output %s is the original itself; choose another folder for --out, since originals are never written to", j.Output)
+		if strings.EqualFold(j.Rel, RecordName) {
+			return fmt.Errorf("%s: this output would replace the treatment record; give the recording another name", j.Output)
 		}
 	}
 	return nil
+}
+
+// folded makes names alike that differ by case, since not every file system
+// tells a.wav from A.WAV. Those that do take names that are no text, too, and
+// to lower the case of such would make different ones alike.
+func folded(path string) string {
+	if !utf8.ValidString(path) {
+		return path
+	}
+	return strings.ToLower(path)
 }
 
 func sameFile(a, b string) bool {
@@ -143,7 +153,7 @@ func (j *Job) inspect() {
 
 // isDone compares what the record has of an earlier run with what is asked now.
 func (p *Plan) isDone(j *Job, e *Entry) bool {
-	if e == nil || e.Status != StatusDone {
+	if e == nil || e.Status != StatusDone || e.Input != name(absolute(j.Path)) {
 		return false
 	}
 	in, err := os.Stat(j.Path)
@@ -174,11 +184,11 @@ func (p *Plan) recordPath() string { return filepath.Join(p.Options.Out, RecordN
 func (p *Plan) PrepareOut() error {
 	out := p.Options.Out
 	if err := os.MkdirAll(out, 0o777); err != nil {
-		return fmt.Errorf("the output folder %s cannot be made: %w; choose another for --out", out, cause(err))
+		return fmt.Errorf("the output folder %s: cannot be made: %w; choose another for --out", out, cause(err))
 	}
 	probe, err := os.CreateTemp(out, ".fettle-*")
 	if err != nil {
-		return fmt.Errorf("the output folder %s cannot be written to: %w; check its permissions or choose another for --out", out, cause(err))
+		return fmt.Errorf("the output folder %s: cannot be written to: %w; check its permissions or choose another for --out", out, cause(err))
 	}
 	return errors.Join(probe.Close(), os.Remove(probe.Name()))
 }

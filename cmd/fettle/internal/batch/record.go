@@ -11,6 +11,7 @@ import (
 	"os"
 	"path/filepath"
 	"sync"
+	"syscall"
 	"time"
 )
 
@@ -27,20 +28,22 @@ const (
 )
 
 // Entry is one line of the treatment record: what was done to one recording.
-// Levels are null where there is none, as in silence.
+// Levels are
+// null where there is none, as in silence; of a failed recording, what was not
+// found out is empty, 0 or null.
 type Entry struct {
 	Schema  string `json:"schema"`
 	Version string `json:"version"`
 	Status  string `json:"status"`
-	Error   string `json:"error,omitempty"`
+	Error   string `json:"error"`
 
-	Input         string    `json:"input"`
-	Output        string    `json:"output"` // below the output folder
+	Input         name      `json:"input"`
+	Output        name      `json:"output"` // below the output folder
 	InputBytes    int64     `json:"input_bytes"`
 	InputModified time.Time `json:"input_modified"`
 	OutputBytes   int64     `json:"output_bytes"`
-	SHA256In      string    `json:"sha256_in,omitempty"`
-	SHA256Out     string    `json:"sha256_out,omitempty"`
+	SHA256In      string    `json:"sha256_in"`
+	SHA256Out     string    `json:"sha256_out"`
 
 	RateHz    int    `json:"rate_hz"`
 	Channels  int    `json:"channels"`
@@ -75,26 +78,39 @@ type record struct {
 }
 
 func openRecord(path string) (*record, error) {
-	if err := dropTorn(path); err != nil {
-		return nil, fmt.Errorf("%s: %w", path, cause(err))
-	}
-	f, err := os.OpenFile(path, os.O_WRONLY|os.O_APPEND|os.O_CREATE, 0o666)
+	f, err := os.OpenFile(path, os.O_RDWR|os.O_APPEND|os.O_CREATE, 0o666)
 	if err != nil {
-		return nil, fmt.Errorf("the treatment record %s cannot be written: %w; check its permissions", path, cause(err))
+		return nil, unwritableRecord(path, err)
+	}
+	if err := dropTorn(f); err != nil {
+		return nil, errors.Join(unwritableRecord(path, err), f.Close())
 	}
 	return &record{file: f}, nil
 }
 
 // dropTorn cuts a last line that a killed run left without its end.
-func dropTorn(path string) error {
-	raw, err := os.ReadFile(path)
-	if errors.Is(err, fs.ErrNotExist) || err == nil && (len(raw) == 0 || raw[len(raw)-1] == '\n') {
-		return nil
-	}
+func dropTorn(f *os.File) error {
+	info, err := f.Stat()
 	if err != nil {
 		return err
 	}
-	return os.Truncate(path, int64(bytes.LastIndexByte(raw, '\n')+1))
+	end, b := info.Size(), make([]byte, 4096)
+	for end > 0 {
+		from := max(0, end-int64(len(b)))
+		piece := b[:end-from]
+		if _, err := f.ReadAt(piece, from); err != nil {
+			return err
+		}
+		if i := bytes.LastIndexByte(piece, '\n'); i >= 0 {
+			end = from + int64(i) + 1
+			break
+		}
+		end = from
+	}
+	if end == info.Size() {
+		return nil
+	}
+	return f.Truncate(end)
 }
 
 func (r *record) append(e *Entry) error {
@@ -107,9 +123,20 @@ func (r *record) append(e *Entry) error {
 	r.mu.Lock()
 	defer r.mu.Unlock()
 	if _, err := r.file.Write(line.Bytes()); err != nil {
-		return fmt.Errorf("the treatment record: %w", err)
+		return unwritableRecord(r.file.Name(), err)
 	}
-	return r.file.Sync()
+	if err := r.file.Sync(); err != nil {
+		return unwritableRecord(r.file.Name(), err)
+	}
+	return nil
+}
+
+func unwritableRecord(path string, err error) error {
+	return fmt.Errorf("the treatment record %s: cannot be written: %w; check the disk and its permissions", path, cause(err))
+}
+
+func unreadableRecord(path string, err error) error {
+	return fmt.Errorf("the treatment record %s: cannot be read: %w; check its permissions, or move it away to begin a new one", path, cause(err))
 }
 
 func (r *record) close() error { return r.file.Close() }
@@ -119,13 +146,16 @@ func (r *record) close() error { return r.file.Close() }
 func readRecord(path string) (map[string]*Entry, error) {
 	out := map[string]*Entry{}
 	f, err := os.Open(path)
-	if errors.Is(err, fs.ErrNotExist) {
+	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, syscall.ENOTDIR) {
 		return out, nil
 	}
 	if err != nil {
-		return nil, fmt.Errorf("the treatment record %s cannot be read: %w", path, cause(err))
+		return nil, unreadableRecord(path, err)
 	}
 	defer f.Close()
+	if info, err := f.Stat(); err == nil && !info.Mode().IsRegular() {
+		return nil, unreadableRecord(path, errors.New("it is no regular file"))
+	}
 	in := bufio.NewReader(f)
 	for n := 1; ; n++ {
 		line, err := in.ReadBytes('\n')
@@ -133,12 +163,12 @@ func readRecord(path string) (map[string]*Entry, error) {
 			return out, nil // what stands here is torn, or nothing
 		}
 		if err != nil {
-			return nil, fmt.Errorf("the treatment record %s: %w", path, err)
+			return nil, unreadableRecord(path, err)
 		}
 		e := new(Entry)
 		if err := json.Unmarshal(line, e); err != nil || e.Schema != RecordSchema {
-			return nil, fmt.Errorf("%s:%d: not a line of a treatment record; move the file away to begin a new one", path, n)
+			return nil, fmt.Errorf("the treatment record %s: line %d is none of its kind; move the file away to begin a new one", path, n)
 		}
-		out[filepath.FromSlash(e.Output)] = e
+		out[filepath.FromSlash(string(e.Output))] = e
 	}
 }

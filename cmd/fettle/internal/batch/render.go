@@ -26,46 +26,58 @@ func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) 
 	}
 	defer rec.Close()
 	format := rec.Format()
-	e.InputBytes, e.InputModified = rec.Size(), rec.ModTime()
+	e.InputBytes, e.InputModified = rec.Size(), rec.ModTime().UTC()
 	e.RateHz, e.Channels, e.Frames = format.SampleRate, format.NumChannels, rec.Frames()
+	e.FormatIn, e.FormatOut = rec.Encoding().String(), p.encoding(rec).String()
 	e.Warnings = append(e.Warnings, rec.Warnings()...)
 	e.Warnings = append(e.Warnings, notCarried(rec)...)
 	f, err := p.Filter(format.SampleRate)
 	if err != nil {
 		return fmt.Errorf("%s: %w", j.Path, err)
 	}
-	p.describe(e, f, rec)
+	p.describe(e, f)
 	r := &rendering{plan: p, job: j, rec: rec, filter: f, entry: e, progress: progress}
 	r.gain = math.Pow(10, -p.Options.Headroom.DB/20)
-	err = r.pass(ctx)
+	return r.fit(ctx, r.pass(ctx))
+}
+
+// fit makes of an over what the options say: the headroom that is needed
+// in all, or a second pass with it.
+func (r *rendering) fit(ctx context.Context, err error) error {
 	var over *audio.OverError
-	if errors.As(err, &over) {
-		over.HeadroomDB += p.Options.Headroom.DB // what is needed in all
+	if !errors.As(err, &over) {
+		return err
 	}
-	if over != nil && p.Options.Headroom.Fit {
-		if err := rec.Rewind(); err != nil {
-			return err
-		}
-		r.gain, r.progress = math.Pow(10, -roundUp(over.HeadroomDB)/20), nil
-		e.HeadroomDB = roundUp(over.HeadroomDB)
-		err = r.pass(ctx)
+	options := r.plan.Options.Headroom
+	if !options.Fit {
+		over.HeadroomDB += options.DB
+		return err
 	}
-	return err
+	if err := r.rec.Rewind(); err != nil {
+		return err
+	}
+	r.entry.HeadroomDB = roundUp(over.HeadroomDB)
+	r.gain, r.progress = math.Pow(10, -r.entry.HeadroomDB/20), nil
+	return r.pass(ctx)
 }
 
 // roundUp takes a level to the next tenth of a dB, the figure that is written
 // down being the figure that was used.
 func roundUp(db float64) float64 { return math.Ceil(db*10) / 10 }
 
-// describe fills in what is known before the first frame.
-func (p *Plan) describe(e *Entry, f *filter.Filter, rec *audio.Recording) {
+// describe fills in what the filter is.
+func (p *Plan) describe(e *Entry, f *filter.Filter) {
 	paths := f.Paths()
 	l := f.Latency(paths[len(paths)-1])
 	e.Phase = string(f.Phase())
 	e.LatencySamples, e.ResidualSamples = l.Removed, l.Residual
-	e.FormatIn, e.FormatOut = rec.Encoding().String(), p.encoding(rec).String()
-	e.HeadroomDB = p.Options.Headroom.DB
-	e.TruePeakOversampling = audio.TruePeakOversampling
+	for _, path := range paths {
+		for _, w := range path.Warnings {
+			if !slices.Contains(e.Warnings, w) {
+				e.Warnings = append(e.Warnings, w)
+			}
+		}
+	}
 }
 
 // encoding is the output's sample format.
@@ -117,22 +129,31 @@ func (r *rendering) pass(ctx context.Context) error {
 	if err != nil {
 		return fmt.Errorf("%s: %w", r.job.Path, err)
 	}
-	if err := os.MkdirAll(filepath.Dir(r.job.Output), 0o777); err != nil {
-		return fmt.Errorf("%s: the folder cannot be made: %w", r.job.Output, cause(err))
-	}
-	w, err := audio.Create(r.job.Output, r.spec())
+	w, err := r.create()
 	if err != nil {
 		return err
 	}
 	after := audio.NewMeter(format.NumChannels)
-	if err := r.copy(ctx, w, out, after); err != nil {
+	err = r.copy(ctx, w, out, after)
+	if err == nil {
+		r.entry.SHA256In, err = r.rec.SHA256()
+	}
+	if err != nil {
 		return errors.Join(err, w.Abort())
 	}
 	r.entry.PeakIn, r.entry.TruePeakIn = levels(before.meter)
 	r.entry.PeakOut, r.entry.TruePeakOut = levels(after)
-	if r.entry.SHA256In, err = r.rec.SHA256(); err != nil {
-		return errors.Join(err, w.Abort())
+	return r.commit(w)
+}
+
+func (r *rendering) create() (*audio.Writer, error) {
+	if err := os.MkdirAll(filepath.Dir(r.job.Output), 0o777); err != nil {
+		return nil, fmt.Errorf("%s: its folder cannot be made: %w; choose another for --out", r.job.Output, cause(err))
 	}
+	return audio.Create(r.job.Output, r.spec())
+}
+
+func (r *rendering) commit(w *audio.Writer) error {
 	if err := w.Commit(); err != nil {
 		return err
 	}

@@ -4,9 +4,12 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"os"
 	"path/filepath"
+	"slices"
 	"sync"
 
+	"fettle/audio"
 	"fettle/filter"
 )
 
@@ -19,12 +22,16 @@ type Progress interface {
 	Finished(j *Job, err error)
 }
 
-// Summary is what became of a batch.
+// Summary is what became of a batch, in numbers of recordings.
 type Summary struct {
-	Done, Failed, Skipped int
-	Failures              []error // in the order of the plan
-	Warnings              int     // recordings done with warnings
+	Done, Skipped int
+	Left          int      // not begun or not finished when the run was stopped
+	Failures      Problems // what could not be listed, then in the order of the plan
+	Warnings      int      // done, with warnings
 }
+
+// Failed is how many recordings, or places to look for them, failed.
+func (s *Summary) Failed() int { return len(s.Failures) }
 
 // Filter gives the chain realised at a rate, made once and shared.
 func (p *Plan) Filter(rate int) (*filter.Filter, error) { return p.filters().at(rate) }
@@ -43,6 +50,11 @@ func (p *Plan) Run(ctx context.Context, progress Progress) (*Summary, error) {
 	if err != nil {
 		return nil, err
 	}
+	s, err := p.treatAll(ctx, rec, progress)
+	return s, errors.Join(err, rec.close())
+}
+
+func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*Summary, error) {
 	ctx, stop := context.WithCancelCause(ctx)
 	defer stop(nil)
 	results := make([]result, len(p.Jobs))
@@ -51,18 +63,32 @@ func (p *Plan) Run(ctx context.Context, progress Progress) (*Summary, error) {
 	for range max(1, p.Options.Jobs) {
 		wg.Go(func() {
 			for i := range work {
-				results[i] = p.treat(ctx, p.Jobs[i], progress)
-				if err := p.keep(rec, &results[i]); err != nil {
+				var err error
+				if results[i], err = p.treat(ctx, p.Jobs[i], rec, progress); err != nil {
 					stop(err)
 				}
-				progress.Finished(p.Jobs[i], results[i].err)
 			}
 		})
 	}
 	p.feed(ctx, work)
 	wg.Wait()
-	s := p.sum(results)
-	return s, errors.Join(context.Cause(ctx), rec.close())
+	p.removeEmptyFolders(results)
+	return p.sum(results), context.Cause(ctx)
+}
+
+// removeEmptyFolders takes away folders that were made for outputs that did
+// not come about.
+func (p *Plan) removeEmptyFolders(results []result) {
+	for i, r := range results {
+		if p.Jobs[i].Done || r.entry != nil && r.err == nil {
+			continue
+		}
+		for rel := filepath.Dir(p.Jobs[i].Rel); rel != "."; rel = filepath.Dir(rel) {
+			if os.Remove(filepath.Join(p.Options.Out, rel)) != nil {
+				break // not empty, or not there
+			}
+		}
+	}
 }
 
 // feed hands out the jobs in order until the context ends.
@@ -87,27 +113,15 @@ type result struct {
 	err   error
 }
 
-// keep appends a result to the record.
-func (p *Plan) keep(rec *record, r *result) error {
-	if r.entry == nil {
-		return nil
-	}
-	return rec.append(r.entry)
-}
-
 func (p *Plan) sum(results []result) *Summary {
-	s := &Summary{}
-	for _, err := range p.Problems {
-		s.Failed++
-		s.Failures = append(s.Failures, err)
-	}
+	s := &Summary{Failures: slices.Clone(p.Problems)}
 	for i, r := range results {
 		switch {
 		case p.Jobs[i].Done:
 			s.Skipped++
 		case r.entry == nil:
+			s.Left++
 		case r.err != nil:
-			s.Failed++
 			s.Failures = append(s.Failures, r.err)
 		default:
 			s.Done++
@@ -119,25 +133,27 @@ func (p *Plan) sum(results []result) *Summary {
 	return s
 }
 
-// treat renders one job and describes it for the record.
-func (p *Plan) treat(ctx context.Context, j *Job, progress Progress) result {
+// treat renders one job, describes it for the record and appends that. The
+// error is the record's.
+func (p *Plan) treat(ctx context.Context, j *Job, rec *record, progress Progress) (result, error) {
 	e := p.newEntry(j)
 	err := p.render(ctx, j, e, progress)
-	if ctx.Err() != nil && err != nil {
-		return result{}
+	if err != nil && ctx.Err() != nil {
+		return result{}, nil
 	}
 	if err != nil {
 		e.Status, e.Error = StatusFailed, err.Error()
-		err = fmt.Errorf("%w", err)
 	}
-	return result{e, err}
+	progress.Finished(j, err)
+	return result{e, err}, rec.append(e)
 }
 
 func (p *Plan) newEntry(j *Job) *Entry {
 	return &Entry{
 		Schema: RecordSchema, Version: p.Options.Version, Status: StatusDone,
-		Input: absolute(j.Path), Output: filepath.ToSlash(j.Rel),
+		Input: name(absolute(j.Path)), Output: name(filepath.ToSlash(j.Rel)),
 		Chain: p.Chain.Name, ChainSHA256: fmt.Sprintf("%x", p.Chain.SHA256), Settings: p.settings(),
 		Edges: string(p.Chain.Edges), Kernel: filter.KernelName, Warnings: []string{},
+		HeadroomDB: p.Options.Headroom.DB, TruePeakOversampling: audio.TruePeakOversampling,
 	}
 }
