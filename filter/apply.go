@@ -125,6 +125,9 @@ func (p *Path) kernel(channels int) stream.Kernel {
 	if len(p.System.Sections) > 0 {
 		ks = append(ks, stream.NewCascade(p.System.Sections, channels))
 	}
+	if len(p.System.Zero) > 0 {
+		ks = append(ks, stream.NewForwardBackward(p.System.Zero, channels))
+	}
 	return stream.Series(ks...)
 }
 

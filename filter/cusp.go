@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"fettle/filter/design"
+	"fettle/filter/response"
 )
 
 // A cusp is where |H| touches zero at an angle: the centre of a notch, DC
@@ -26,32 +27,37 @@ type depth struct{ db float64 }
 
 const (
 	twinSquare = math.Sqrt2 - 1
-	// twinAllow is the tolerance of a stage with a smooth twin where the twin
-	// strays furthest from the curve, and twinStray that distance; both dB.
-	twinAllow = 0.15
-	twinStray = 0.1313
+	// twinMargin in dB is what is left of 0.15 dB, the tolerance of a stage
+	// with a smooth twin, where the twin strays furthest from the curve.
+	twinMargin = 0.15 - 0.1318
 )
 
-// highpass serves a first-order high-pass, whose zero is at DC.
-func (d *depth) highpass(hz, rate float64) *cusp {
-	corner := math.Tan(math.Pi * hz / rate)
+// of finds the cusps of a stage of sections that each have one: a first-order
+// high-pass, or a second-order band-stop with its zeros on the unit circle.
+func (d *depth) of(sections []response.Section) []*cusp {
+	var out []*cusp
+	for _, s := range sections {
+		if s.B2 == 0 {
+			// The pole at (1-t)/(1+t) tells the corner t.
+			out = append(out, d.highpass((1+s.A1)/(1-s.A1)))
+			continue
+		}
+		// s^2 + width s + square over the bilinear variable, with zeros at
+		// cos omega = -B1/(2 B0).
+		cos := -s.B1 / (2 * s.B0)
+		square := (1 - cos) / (1 + cos)
+		out = append(out, d.band(square, (1+square)*(1-s.A2)/(1+s.A2)))
+	}
+	return out
+}
+
+// highpass serves a zero at DC, -3 dB at corner in the bilinear variable.
+func (d *depth) highpass(corner float64) *cusp {
 	c := d.cusp(func(omega float64) float64 { return math.Tan(omega/2) / corner })
 	for _, x := range c.near() {
 		c.points = append(c.points, 2*math.Atan(corner*x))
 	}
 	return c
-}
-
-// bandstop serves a first-order band-stop with -3 dB points lo and hi.
-func (d *depth) bandstop(lo, hi, rate float64) *cusp {
-	a, b := math.Tan(math.Pi*lo/rate), math.Tan(math.Pi*hi/rate)
-	return d.band(a*b, b-a)
-}
-
-func (d *depth) notch(hz, width, rate float64) *cusp {
-	centre := math.Tan(math.Pi * hz / rate)
-	// The digital width B of a bilinear notch is that of tan(B/2)(1 + centre^2).
-	return d.band(centre*centre, math.Tan(math.Pi*width/rate)*(1+centre*centre))
 }
 
 // band serves a zero at the root of square, in the bilinear variable, with
@@ -87,16 +93,16 @@ func (c *cusp) near() []float64 {
 	return out
 }
 
-// level turns the stage's curve at omega into a target with its one-sided part.
+// level turns the stage's curve at omega into a target with its one-sided
+// part, aimed at by the twin.
 func (c *cusp) level(omega, magnitude float64) design.Level {
 	x := c.distance(omega)
 	if math.IsInf(x, 1) {
-		return design.Level{Aim: magnitude, Low: magnitude, High: magnitude}
+		return curveLevel(magnitude)
 	}
 	twin := x * x / (x*x + twinSquare)
 	if x < 1 {
 		return design.Level{Aim: twin, High: math.Max(magnitude, c.shallow)}
 	}
-	stray := 20 * math.Log10(twin/magnitude)
-	return design.Level{Aim: twin, Low: magnitude, High: magnitude, Allow: twinAllow * stray / twinStray}
+	return design.Level{Aim: twin, Low: magnitude, High: magnitude}
 }

@@ -95,13 +95,13 @@ func TestLoadErrors(t *testing.T) {
 }
 
 func TestParseRealisation(t *testing.T) {
-	for _, want := range []Realisation{Linear, Minimum, IIR, Given} {
+	for _, want := range []Realisation{Linear, Minimum, IIR, Zero, Given} {
 		if got, err := ParseRealisation(string(want)); got != want || err != nil {
 			t.Errorf("%s is %q, %v", want, got, err)
 		}
 	}
-	for _, name := range []string{"", "zero", "Linear"} {
-		if _, err := ParseRealisation(name); err == nil || !strings.Contains(err.Error(), "linear, minimum, iir, given") {
+	for _, name := range []string{"", "mixed", "Linear"} {
+		if _, err := ParseRealisation(name); err == nil || !strings.Contains(err.Error(), "linear, minimum, iir, zero, given") {
 			t.Errorf("%q gave %v", name, err)
 		}
 	}

@@ -35,21 +35,26 @@ func (f *Filter) Paths() []*Path { return f.paths }
 // that went in, moved by whole frames at most: nothing is requantised.
 func (f *Filter) Untouched(channel int) bool {
 	s := f.pathOf(channel).System
-	return s.Taps == nil && len(s.Sections) == 0
+	return s.Taps == nil && len(s.Sections) == 0 && len(s.Zero) == 0
 }
 
 // Reach is how many samples before and after the aligned instant a path's
 // output to a single impulse may be other than negligible.
 func (f *Filter) Reach(p *Path) (before, after int) {
-	tail := p.Delay
+	after = p.Delay + tail(p.System.Sections) + tail(p.System.Zero)
 	if p.System.Taps != nil {
-		tail += len(p.System.Taps) - 1
-	}
-	if len(p.System.Sections) > 0 {
-		tail += stream.NewCascade(p.System.Sections, 1).Tail()
+		after += len(p.System.Taps) - 1
 	}
 	skip := f.align.skip(p)
-	return max(0, skip), max(0, tail-skip)
+	return max(0, skip+p.ahead()), max(0, after-skip)
+}
+
+// ahead is how far a backward run reaches before the instant it answers to.
+func (p *Path) ahead() int {
+	if len(p.System.Zero) == 0 {
+		return 0
+	}
+	return stream.LookAhead(p.System.Zero)
 }
 
 // Shift is how many samples of a path's causal response (Path.Response) come

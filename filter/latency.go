@@ -2,6 +2,7 @@ package filter
 
 import (
 	"math"
+	"slices"
 
 	"fettle/filter/response"
 	"fettle/filter/stream"
@@ -50,11 +51,11 @@ func (f *Filter) alignPaths() alignment {
 
 // latencyBy finds the path's own latency, delay stages left out.
 func (p *Path) latencyBy(to AlignTo, rate float64) float64 {
-	h := p.impulse()
+	h, origin := p.impulse()
 	if to == AlignCentroid {
-		return centroid(h)
+		return centroid(h) - float64(origin)
 	}
-	return response.BulkDelay(h, rate)
+	return response.BulkDelay(h, rate) - float64(origin)
 }
 
 // centroid is the energy's mean instant, sum n h^2 / sum h^2.
@@ -70,20 +71,38 @@ func centroid(h []float64) float64 {
 	return moment / energy
 }
 
-// impulse is the response of System, until what is left is negligible.
-func (p *Path) impulse() []float64 {
-	h := []float64{1}
+// impulse is the response of System until what is left is negligible, and the
+// index of its instant 0: what comes before it is the backward run's.
+func (p *Path) impulse() (h []float64, origin int) {
+	taps := []float64{1}
 	if p.System.Taps != nil {
-		h = p.System.Taps
+		taps = p.System.Taps
 	}
-	if len(p.System.Sections) == 0 {
-		return h
+	zero := p.System.Zero
+	ahead, behind := p.ahead(), tail(p.System.Sections)+tail(zero)
+	h = make([]float64, ahead+len(taps)+behind)
+	copy(h[ahead:], taps)
+	run(append(append([]response.Section(nil), p.System.Sections...), zero...), h)
+	if len(zero) > 0 {
+		slices.Reverse(h)
+		run(zero, h)
+		slices.Reverse(h)
 	}
-	cascade := stream.NewCascade(p.System.Sections, 1)
-	out := make([]float64, len(h)+cascade.Tail())
-	copy(out, h)
-	cascade.Process([][]float64{out}, [][]float64{out})
-	return out
+	return h, ahead
+}
+
+func run(sections []response.Section, h []float64) {
+	if len(sections) > 0 {
+		stream.NewCascade(sections, 1).Process([][]float64{h}, [][]float64{h})
+	}
+}
+
+// tail is how long a cascade rings.
+func tail(sections []response.Section) int {
+	if len(sections) == 0 {
+		return 0
+	}
+	return stream.NewCascade(sections, 1).Tail()
 }
 
 // fraction is the part of a sample to be removed from a path.
@@ -109,6 +128,6 @@ func (f *Filter) Latency(p *Path) Latency {
 		Exact:     exact,
 		Removed:   removed,
 		Residual:  exact - removed,
-		LookAhead: max(0, f.align.skip(p)-p.Delay),
+		LookAhead: max(0, f.align.skip(p)-p.Delay+p.ahead()),
 	}
 }

@@ -75,11 +75,14 @@ var brokenKeys = []broken{
 	{"»stagez: []", []string{`no key "stagez"`, "stages"}}, // before: stages are missing
 	{"»name: x", []string{"lacks 'stages'"}},
 	{"stages: []\n»limits: [audibility]", []string{`"limits"`}},
-	{in("highpass: {at: 70 Hz, order: 4, »slope: 2}"), []string{"stage highpass", `"slope"`, "family, at, order, phase, when, channels"}},
+	{in("highpass: {at: 70 Hz, order: 4, »slope: 2}"), []string{"stage highpass", `"slope"`, "family, at, pass, order, phase, when, channels"}},
 	{in("highpass:\n      at: 70 Hz\n      order: 4\n      »slope: 2"), []string{`"slope"`}},
-	{in("highpass: {»att: 70 Hz, order: 4}"), []string{`"att"`, "at, order"}},
-	{in("»wobble: {at: 70 Hz}"), []string{`no stage "wobble"`, "allpass, bandpass, bandstop, bell, biquads, dc, delay, fir, gain, highpass, highshelf, lowpass, lowshelf, notch"}},
-	{in("»hum: {mains: 50 Hz}"), []string{`"hum"`}},
+	{in("highpass: {»att: 70 Hz, order: 4}"), []string{`"att"`, "at, pass, order"}},
+	{in("»wobble: {at: 70 Hz}"), []string{`no stage "wobble"`, "allpass, bandpass, bandstop, bell, biquads, dc, delay, fir, gain, highpass, highshelf, hum, lowpass, lowshelf, notch"}},
+	{in("»hum: {mains: 50 Hz}"), []string{"lacks 'harmonics'"}},
+	{in("»hum: {mains: 50 Hz, harmonics: 8}"), []string{"'width' or 'ring'"}},
+	{in("hum: {mains: 50 Hz, harmonics: 8, width: »0 %}"), []string{"0 % and 100 %"}},
+	{in("hum: {mains: 50 Hz, harmonics: 8, ring: »500 Hz}"), []string{"ms"}},
 	{in("»größe: {at: 70 Hz}"), []string{`"größe"`}},
 	{"name: Überfahrt – Fähre\nstages: [{gain: {by: 1 dB, »größe: 2}}]", []string{`"größe"`, "by"}},
 	{in("»highpass: {at: 70 Hz}"), []string{"lacks 'order'", "order: 4"}},
@@ -118,7 +121,10 @@ var brokenValues = []broken{
 	{in("highpass: {at: 70 Hz, order: »-1}"), []string{`"-1"`, "1 to 32"}},
 	{in("highpass: {at: 70 Hz, order: »4 Hz}"), []string{`"4 Hz"`, "without a unit"}},
 	{in("highpass: {at: 70 Hz, order: »four}"), []string{`"four"`, "number"}},
-	{in("highpass: {at: 70 Hz, order: 4, family: »elliptic}"), []string{`"elliptic"`, "butterworth, kaiser"}},
+	{in("highpass: {at: 70 Hz, order: 4, family: »cauer}"), []string{`"cauer"`, "butterworth, chebyshev1", "least-squares"}},
+	{in("»highpass: {at: 70 Hz, order: 4, family: elliptic, ripple: 1 dB}"), []string{"family elliptic", "'reject'"}},
+	{in("highpass: {at: 70 Hz, order: 4, family: chebyshev2, reject: 40 dB, »ripple: 1 dB}"), []string{"'ripple' describes a mask"}},
+	{in("highpass: {at: 70 Hz, order: 4, family: bessel, scale: »both}"), []string{`"both"`, "corner, delay"}},
 	{in("highpass: {at: 70 Hz, order: 4, »depth: 30 dB}"), []string{`"depth"`}}, // only order 1 has a one-sided part
 	{in("bell: {at: 1 kHz, gain: 3 dB, q: »0}"), []string{`"0"`, "above 0"}},
 	{in("bell: {at: 1 kHz, gain: 3 dB, q: »-1}"), []string{`"-1"`, "above 0"}},
@@ -145,7 +151,7 @@ var brokenValues = []broken{
 	{in("delay: {by: »1e300 samples}"), []string{"at most 16777216 samples"}},
 	{in("delay: {by: »1 h}"), []string{`unit "h"`}},
 	{in("delay: {by: »61 s}"), []string{"at most 60 s"}},
-	{in("gain: {by: 1 dB, phase: »zero}"), []string{`"zero"`, "linear, minimum, iir, given"}},
+	{in("gain: {by: 1 dB, phase: »mixed}"), []string{`"mixed"`, "linear, minimum, iir, zero, given"}},
 }
 
 var brokenFrequencies = []broken{
@@ -168,7 +174,9 @@ var brokenFrequencies = []broken{
 }
 
 var brokenMasks = []broken{
-	{in("lowpass: {»pass: 12 kHz, stop: 14 kHz, reject: 80 dB}"), []string{"'pass' describes a mask", "family: kaiser", "'order'"}},
+	{in("»lowpass: {pass: 12 kHz, stop: 14 kHz, reject: 80 dB}"), []string{"order above 32", "elliptic (order"}},
+	{in("lowpass: {at: 12 kHz, order: 4, »stop: 14 kHz}"), []string{"'stop' describes a mask", "'pass'"}},
+	{in("lowpass: {»pass: 12 kHz, at: 13 kHz, stop: 14 kHz, reject: 80 dB}"), []string{"exclude each other"}},
 	{in("»lowpass: {pass: 12 kHz, stop: 14 kHz, family: kaiser}"), []string{"lacks 'reject'", "80 dB"}},
 	{in("»lowpass: {pass: 12 kHz, reject: 80 dB, family: kaiser}"), []string{"lacks 'stop'"}},
 	{in("»lowpass: {reject: 80 dB, family: kaiser}"), []string{"lacks 'pass' or 'at'"}},
@@ -203,7 +211,7 @@ var brokenConditions = []broken{
 }
 
 var brokenTop = []broken{
-	{"stages: []\nphase: »zero", []string{`"zero"`, "linear, minimum, iir, given"}},
+	{"stages: []\nphase: »mixed", []string{`"mixed"`, "linear, minimum, iir, zero, given"}},
 	{"stages: []\nphase: »Linear", []string{`"Linear"`, "linear"}},
 	{"stages: []\n»phase:", []string{"'phase' is empty"}},
 	{"stages: []\ntolerance: »0 dB", []string{`"0 dB"`, "above 0 dB"}},

@@ -19,6 +19,7 @@ var chains = map[string]string{
 	"bandstop 2":  "stages: [{bandstop: {at: [900 Hz, 1100 Hz], order: 2}}]",
 	"notch":       "stages: [{notch: {at: 100 Hz, width: 8 Hz}}]",
 	"two notches": "stages: [{notch: {at: 100 Hz, width: 8 Hz}}, {notch: {at: 112 Hz, width: 8 Hz, depth: 30 dB}}]",
+	"hum":         "stages: [{hum: {mains: 50 Hz, harmonics: 4, width: 12 %}}]",
 	"dc":          "stages: [{dc: {at: 10 Hz}}]",
 	"tone":        "stages: [{bell: {at: 1 kHz, gain: 6 dB, q: 2}}, {lowshelf: {at: 200 Hz, gain: -4 dB}}, {highshelf: {at: 4 kHz, gain: 3 dB, q: 0.6}}, {gain: {by: -3 dB}}]",
 	"mixed":       "stages: [{highpass: {at: 70 Hz, order: 3}}, {notch: {at: 50 Hz, width: 6 Hz}}, {bell: {at: 3.2 kHz, gain: -2.5 dB, q: 1.1}}, {gain: {by: 2 dB}}]",
@@ -83,17 +84,17 @@ func checkTarget(t *testing.T, name string, iir, p *Path) {
 
 func cusps(g group) (n int) {
 	for _, m := range g {
-		if m.cusp != nil {
-			n++
-		}
+		n += len(m.cusps)
 	}
 	return n
 }
 
 func insideCusp(g group, omega float64) bool {
 	for _, m := range g {
-		if m.cusp != nil && m.cusp.distance(omega) < 1 {
-			return true
+		for _, c := range m.cusps {
+			if c.distance(omega) < 1 {
+				return true
+			}
 		}
 	}
 	return false
@@ -108,8 +109,10 @@ func cuspDepth(g group, omega float64) float64 {
 		if m.sections == nil {
 			a = m.gain
 		}
-		if m.cusp != nil && m.cusp.distance(omega) < 1 {
-			a = math.Max(a, m.cusp.shallow)
+		for _, c := range m.cusps {
+			if c.distance(omega) < 1 {
+				a = math.Max(a, c.shallow)
+			}
 		}
 		d *= a
 	}

@@ -21,10 +21,11 @@ const (
 	Linear  Realisation = "linear"
 	Minimum Realisation = "minimum"
 	IIR     Realisation = "iir"
+	Zero    Realisation = "zero"
 	Given   Realisation = "given"
 )
 
-var realisations = []string{string(Linear), string(Minimum), string(IIR), string(Given)}
+var realisations = []string{string(Linear), string(Minimum), string(IIR), string(Zero), string(Given)}
 
 // ParseRealisation reads a realisation's name.
 func ParseRealisation(name string) (Realisation, error) {
@@ -64,12 +65,18 @@ type kind struct {
 
 // plan is a stage at one rate. At most one of sections, taps and mask is set.
 type plan struct {
-	gain     float64            // linear factor
-	delay    float64            // samples
-	sections []response.Section // recursive form; the curve of a classical stage
-	taps     []float64          // given kernel
-	mask     *design.Mask       // bounds to be met
-	cusp     *cusp              // where a curve's target is one-sided
+	gain     float64                              // linear factor
+	delay    float64                              // samples
+	sections []response.Section                   // recursive form; the curve of a classical stage
+	taps     []float64                            // given kernel
+	mask     *design.Mask                         // bounds to be met
+	kernel   func(design.Mask) ([]float64, error) // the method for a mask
+	cusps    []*cusp                              // one a section where the curve's target is one-sided, nil: nowhere
+	notes    []string                             // what the user should know of this stage at this rate
+	warnings []string                             // what was asked for and is left out at this rate
+	// half designs what is run forward and backward under zero: sections
+	// whose |H|^2 comes near to the stage's magnitude. Nil: there are none.
+	half func() ([]response.Section, error)
 }
 
 // kinds is every stage that a chain can hold.
@@ -89,6 +96,7 @@ func init() { // breaks the cycle between the table and the readers that list it
 		"gain":      {read: readGain, tone: true, intent: true},
 		"delay":     {read: readDelay, intent: true},
 		"dc":        {read: readDC},
+		"hum":       {read: readHum},
 		"fir":       {read: readFIR, coefficients: true},
 		"biquads":   {read: readBiquads, coefficients: true},
 	}

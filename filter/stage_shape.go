@@ -20,16 +20,34 @@ func biquad(make func(rate float64) (response.Section, error)) func(float64) (pl
 	}
 }
 
+// tone makes a stage of one section with a gain in dB, of which each way of a
+// forward and backward run takes half.
+func tone(gain float64, make func(rate, gainDB float64) (response.Section, error)) func(float64) (plan, error) {
+	return func(rate float64) (plan, error) {
+		s, err := make(rate, gain)
+		if err != nil {
+			return plan{}, err
+		}
+		p := curve([]response.Section{s})
+		p.half = func() ([]response.Section, error) { return one(make(rate, gain/2)) }
+		return p, nil
+	}
+}
+
+func one(s response.Section, err error) ([]response.Section, error) {
+	return []response.Section{s}, err
+}
+
 func readBell(f *fields, _ *Chain) func(float64) (plan, error) {
 	at, gain := f.hz("at"), f.gain("gain")
 	if f.oneOf("q", "width", "1.1") == "width" {
 		width := f.octaves("width")
-		return biquad(func(rate float64) (response.Section, error) {
+		return tone(gain, func(rate, gain float64) (response.Section, error) {
 			return design.Bell(rate, at, gain, design.BandwidthQ(rate, at, width))
 		})
 	}
 	q := f.positive("q")
-	return biquad(func(rate float64) (response.Section, error) { return design.Bell(rate, at, gain, q) })
+	return tone(gain, func(rate, gain float64) (response.Section, error) { return design.Bell(rate, at, gain, q) })
 }
 
 // octaves reads a bandwidth.
@@ -57,7 +75,7 @@ func shelfReader(byQ, bySlope shelf) func(*fields, *Chain) func(float64) (plan, 
 		case "slope":
 			steepness = f.positive("slope")
 		}
-		return biquad(func(rate float64) (response.Section, error) { return make(rate, at, gain, steepness) })
+		return tone(gain, func(rate, gain float64) (response.Section, error) { return make(rate, at, gain, steepness) })
 	}
 }
 
@@ -76,7 +94,8 @@ func readNotch(f *fields, _ *Chain) func(float64) (plan, error) {
 			return plan{}, err
 		}
 		p := curve([]response.Section{s})
-		p.cusp = c.notch(at, width, rate)
+		p.cusps = c.of(p.sections)
+		p.half = func() ([]response.Section, error) { return one(design.NotchWidth(rate, at, width*design.HalfWidth)) }
 		return p, nil
 	}
 }
@@ -107,7 +126,8 @@ func readDC(f *fields, _ *Chain) func(float64) (plan, error) {
 			return plan{}, err
 		}
 		p := curve([]response.Section{s})
-		p.cusp = c.highpass(at, rate)
+		p.cusps = c.of(p.sections)
+		p.half = func() ([]response.Section, error) { return one(design.DC(rate, at*design.HalfWidth)) }
 		return p, nil
 	}
 }

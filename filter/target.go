@@ -44,18 +44,28 @@ func (m member) level(omega float64) design.Level {
 	case m.taps != nil:
 		l = curveLevel(cmplx.Abs(response.TapsAt(m.taps, omega)))
 	default:
-		l = curveLevel(cmplx.Abs(response.SectionsAt(m.sections, omega)))
-		if m.cusp != nil {
-			l = m.cusp.level(omega, l.Aim)
-		}
+		l = m.sectionsLevel(omega)
 	}
 	return scale(l, math.Abs(m.gain))
+}
+
+// sectionsLevel is the product of the sections' curves, those with a cusp
+// one-sided near it.
+func (m member) sectionsLevel(omega float64) design.Level {
+	if m.cusps == nil {
+		return curveLevel(cmplx.Abs(response.SectionsAt(m.sections, omega)))
+	}
+	l := curveLevel(1)
+	for i, c := range m.cusps {
+		l = product(l, c.level(omega, cmplx.Abs(response.SectionsAt(m.sections[i:i+1], omega))))
+	}
+	return l
 }
 
 func curveLevel(a float64) design.Level { return design.Level{Aim: a, Low: a, High: a} }
 
 func scale(l design.Level, by float64) design.Level {
-	return design.Level{Aim: l.Aim * by, Low: l.Low * by, High: l.High * by, Allow: l.Allow}
+	return design.Level{Aim: l.Aim * by, Low: l.Low * by, High: l.High * by}
 }
 
 // finest is the width of the stage's narrowest feature in radians a sample.
@@ -85,16 +95,38 @@ func (g group) finest() float64 {
 	return f
 }
 
-// target is the product of the members' targets. Where smooth twins stray,
-// their allowances add, and the chain's tolerance holds where it is more.
+// target is the product of the members' targets, each point with the chain's
+// tolerance. Errors are measured against it.
 func (g group) target(tolerance float64) design.Target {
+	return g.targetBy(func(l design.Level) design.Level {
+		l.Allow = tolerance
+		return l
+	})
+}
+
+// aim is the target that kernels are designed for: the same where all members
+// have curves. Where smooth twins stray above theirs, the twin is allowed, and
+// what is left of the tolerance, or the twins' own margin if that is more.
+func (g group) aim(tolerance float64) design.Target {
+	return g.targetBy(func(l design.Level) design.Level {
+		stray := math.Max(0, 20*math.Log10(l.Aim/l.High))
+		l.Allow = tolerance
+		if stray > 0 {
+			l.Allow = math.Max(tolerance-stray, math.Min(tolerance, twinMargin))
+			l.High = l.Aim
+			l.Low *= math.Pow(10, (l.Allow-tolerance)/20)
+		}
+		return l
+	})
+}
+
+func (g group) targetBy(finish func(design.Level) design.Level) design.Target {
 	t := design.Target{At: func(omega float64) design.Level {
 		l := curveLevel(1)
 		for _, m := range g {
 			l = product(l, m.level(omega))
 		}
-		l.Allow = math.Max(l.Allow, tolerance)
-		return l
+		return finish(l)
 	}}
 	t.Grid = func(size int) []design.Level {
 		out := make([]design.Level, size/2+1)
@@ -107,7 +139,7 @@ func (g group) target(tolerance float64) design.Target {
 			}
 		}
 		for k := range out {
-			out[k].Allow = math.Max(out[k].Allow, tolerance)
+			out[k] = finish(out[k])
 		}
 		return out
 	}
@@ -122,8 +154,8 @@ func (g group) target(tolerance float64) design.Target {
 // its part in phase within a hundredth of the width.
 func (m member) points() []float64 {
 	var out []float64
-	if m.cusp != nil {
-		out = append(out, m.cusp.points...)
+	for _, c := range m.cusps {
+		out = append(out, c.points...)
 	}
 	width := m.finest()
 	for _, s := range m.sections {
@@ -150,5 +182,5 @@ func (m member) points() []float64 {
 const onCircle = 1e-6
 
 func product(a, b design.Level) design.Level {
-	return design.Level{Aim: a.Aim * b.Aim, Low: a.Low * b.Low, High: a.High * b.High, Allow: a.Allow + b.Allow}
+	return design.Level{Aim: a.Aim * b.Aim, Low: a.Low * b.Low, High: a.High * b.High}
 }

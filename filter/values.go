@@ -146,3 +146,26 @@ func (f *fields) positive(key string) float64 {
 	}
 	return v
 }
+
+// seconds reads a stretch of time above 0 that does not depend on the rate.
+func (f *fields) seconds(key string) float64 {
+	n := f.need(key, "500 ms")
+	v := f.d.quantity(n, key, dimension{duration.name, duration.units, "500 ms"})
+	if f.d.err == nil && !(v > 0 && v <= maxSeconds) {
+		f.d.fail(n, "'%s' is %s; it must be above 0 s and at most %d s", key, describe(n), maxSeconds)
+	}
+	return v
+}
+
+// hzOrShare reads a width: a frequency, or per cent of one.
+func (f *fields) hzOrShare(key string) (hz, share float64) {
+	n := f.need(key, "2 Hz")
+	text := f.d.text(n, key)
+	if percent, unit, err := splitQuantity(text); err == nil && unit == "%" {
+		if !(percent > 0 && percent < 100) {
+			f.d.fail(n, "'%s' is %s; it lies between 0 %% and 100 %%", key, describe(n))
+		}
+		return 0, percent / 100
+	}
+	return f.d.hz(n, key), 0
+}

@@ -99,6 +99,25 @@ func HighShelfSlope(rate, f0, gainDB, slope float64) (response.Section, error) {
 	return shelf("high shelf", rate, f0, gainDB, quantity{"slope", slope}, -1)
 }
 
+// ShelfQ returns the q of a shelf of gainDB with the cookbook's slope S:
+// 1/q^2 = (A + 1/A)(1/S - 1) + 2. It fails for a slope that is not positive or
+// too steep to exist, and for a gain beyond 200 dB.
+func ShelfQ(gainDB, slope float64) (q float64, err error) {
+	if err := (quantity{"slope", slope}).check(); err != nil {
+		return 0, err
+	}
+	if err := checkGain(gainDB); err != nil {
+		return 0, err
+	}
+	a := fromDB(gainDB / 2)
+	square := (a+1/a)*(1/slope-1) + 2
+	if !(square > 0) {
+		return 0, fmt.Errorf("a slope of %g is too steep for %g dB; the limit is %.4g, and 1 is the steepest without overshoot",
+			slope, gainDB, (a+1/a)/(a+1/a-2))
+	}
+	return 1 / math.Sqrt(square), nil
+}
+
 // shelf serves both: a high shelf is a low shelf with z replaced by -z, which
 // turns the sign of the cosine and of the odd coefficients (side = -1).
 func shelf(name string, rate, f0, gainDB float64, steepness quantity, side float64) (response.Section, error) {
@@ -109,17 +128,14 @@ func shelf(name string, rate, f0, gainDB float64, steepness quantity, side float
 	if err != nil {
 		return response.Section{}, fmt.Errorf("%s: %w", name, err)
 	}
-	a := fromDB(gainDB / 2)
-	inverseQ := 1 / steepness.value
+	q := steepness.value
 	if steepness.name == "slope" {
-		square := (a+1/a)*(1/steepness.value-1) + 2
-		if !(square > 0) {
-			return response.Section{}, fmt.Errorf("%s: a slope of %g is too steep for %g dB; the limit is %.4g, and 1 is the steepest without overshoot",
-				name, steepness.value, gainDB, (a+1/a)/(a+1/a-2))
+		if q, err = ShelfQ(gainDB, q); err != nil {
+			return response.Section{}, fmt.Errorf("%s: %w", name, err)
 		}
-		inverseQ = math.Sqrt(square)
 	}
-	k := math.Sqrt(a) * c.sin * inverseQ
+	a := fromDB(gainDB / 2)
+	k := math.Sqrt(a) * c.sin / q
 	cos := side * c.cos
 	return normalised(
 		a*((a+1)-(a-1)*cos+k), side*2*a*((a-1)-(a+1)*cos), a*((a+1)-(a-1)*cos-k),

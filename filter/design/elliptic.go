@@ -32,8 +32,8 @@ func Elliptic(kind Kind, order int, rate, rippleDB, rejectDB float64, edges ...f
 // discrimination returns the modulus k1 of the ripples, the ratio of the
 // passband's to the stopband's deviation, with that of the passband.
 func discrimination(rippleDB, rejectDB float64) (epsilon, k1 float64) {
-	epsilon = math.Sqrt(math.Expm1(rippleDB * math.Ln10 / 10))
-	return epsilon, epsilon / math.Sqrt(math.Expm1(rejectDB*math.Ln10/10))
+	epsilon = deviation(rippleDB)
+	return epsilon, epsilon / deviation(rejectDB)
 }
 
 // complementOf returns sqrt(1 - k^2).
@@ -112,8 +112,8 @@ func EllipticFor(m Mask) (f ZPK, order int, err error) {
 	if err := m.Validate(); err != nil {
 		return ZPK{}, 0, fmt.Errorf("elliptic %v: %w", m.Kind, err)
 	}
-	ripple := 2 * m.RippleDB * (1 - 1e-4)
-	reject := m.RejectDB + ripple/2 + 1e-4
+	ripple := 2 * m.RippleDB * (1 - tighter)
+	reject := m.RejectDB + ripple/2 + tighter
 	warped, selectivity := m.selectivity()
 	start := math.Ceil(ellipticOrder(ripple, reject, selectivity) - 1e-9)
 	for n := start; n <= MaxOrder; n++ {

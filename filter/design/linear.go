@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
-	"sync"
 
 	"fettle/filter/response"
 
@@ -27,27 +26,28 @@ func (e *LengthError) Error() string {
 // a taper. More windows than these bought less than 2 % of length.
 var kaiserBetas = []float64{0, 1, 2, 3, 4.5}
 
+// manyPoints is the transform size above which only the square cut is tried:
+// kernels that long belong to narrow resonances, whose tails decay as they are.
+const manyPoints = 1 << 18
+
 // LinearPhase returns the shortest odd-length symmetric kernel that the
 // frequency-sampling and window method finds for a target: the zero-phase
 // response of the target's Aim, cut to N taps under a Kaiser window, with N
 // and the window's beta found by search. The kernel's latency is (N-1)/2.
 //
 // finest is the width in radians a sample of the target's narrowest feature.
-// The search measures on a grid at least eight times as dense as that and as
-// the kernel is long, so that no notch is missed between two points.
-// It fails with *LengthError beyond MaxTaps.
+// The search measures on a grid of at least eight points to that and four to a
+// ripple of the kernel. It fails with *LengthError beyond MaxTaps.
 //
 // Source: Rabiner and Gold 1975, ch. 3 (frequency sampling, windows).
 func LinearPhase(t Target, finest float64) ([]float64, error) {
-	for size := GridFor(finest); ; size *= 2 {
+	for size := GridFor(finest); size/4 <= 2*MaxTaps; size *= 2 {
 		s := newCutSearch(t, size)
-		if half, beta, ok := s.shortest(size / 16); ok {
+		if half, beta, ok := s.shortest(); ok && 2*half < MaxTaps {
 			return s.kernel(half, beta), nil
 		}
-		if size/16 > MaxTaps {
-			return nil, &LengthError{"linear"}
-		}
 	}
+	return nil, &LengthError{"linear"}
 }
 
 // GridFor is the transform size whose points stand at least eight to a
@@ -64,65 +64,103 @@ func GridFor(finest float64) int {
 type cutSearch struct {
 	grid *Grid
 	size int
-	fft  *fourier.FFT
-	zero []float64 // zero-phase response: zero[n] at lags n and -n
+	dct  *fourier.DCT // the transform of an even sequence, at half the cost
+	zero []float64    // zero-phase response: zero[n] at lags n and -n
 	buf  []float64
-	spec []complex128
+	spec []float64
 }
 
 func newCutSearch(t Target, size int) *cutSearch {
-	s := &cutSearch{grid: t.Sample(size), size: size, fft: fourier.NewFFT(size), buf: make([]float64, size)}
-	s.spec = make([]complex128, size/2+1)
-	for k := range s.spec {
-		s.spec[k] = complex(s.grid.levels[k].Aim, 0)
-	}
-	s.zero = s.fft.Sequence(nil, s.spec)[:size/2+1]
+	grid, aims := t.sample(size)
+	s := &cutSearch{grid: grid, size: size, dct: fourier.NewDCT(size/2 + 1), buf: make([]float64, size/2+1)}
+	s.spec = aims
+	s.zero = s.dct.Transform(nil, aims)
 	for n := range s.zero {
 		s.zero[n] /= float64(size)
 	}
 	return s
 }
 
-// shortest finds the least half length up to limit under any window.
-func (s *cutSearch) shortest(limit int) (half int, beta float64, ok bool) {
+// shortest finds the least half length under any window that the grid can
+// judge, which has four points to a ripple.
+func (s *cutSearch) shortest() (half int, beta float64, ok bool) {
+	limit := s.size / 8
+	if enough := negligible(s.zero, guard*s.grid.floor/2); enough < limit {
+		limit = enough
+	}
 	best := limit + 1
 	for _, b := range kaiserBetas {
-		// A window that fails at the best length so far can't beat it.
-		if !s.met(min(best-1, limit), b) {
-			continue
+		n, found := leastLength(min(best-1, limit), s.size > manyPoints, func(n int) float64 { return s.excess(n, b) })
+		if found {
+			best, beta, ok = n, b, true
 		}
-		lo, hi := -1, min(best-1, limit) // lo fails (or is no length), hi is met
-		for hi-lo > 1 {
-			if mid := (lo + hi) / 2; s.met(mid, b) {
-				hi = mid
-			} else {
-				lo = mid
-			}
-		}
-		best, beta = hi, b
-		if best == 0 {
+		if s.size > manyPoints || best == 0 {
 			break
 		}
 	}
-	return best, beta, best <= limit
+	return best, beta, ok
 }
 
-func (s *cutSearch) met(half int, beta float64) bool {
-	if half < 0 {
-		return false
+// negligible is the index from which on the sum of |h| is at most allowed: no
+// spectrum changes by more than that if the rest is cut.
+func negligible(h []float64, allowed float64) int {
+	n, sum := len(h), 0.0
+	for n > 0 {
+		if sum += math.Abs(h[n-1]); sum > allowed {
+			break
+		}
+		n--
 	}
+	return n
+}
+
+// leastLength finds the least n from 0 to most whose excess is within guard;
+// ok is false when that of most is not. The excess falls about exponentially
+// with n, so its logarithm is interpolated, every other step halving the
+// bracket instead. Coarsely, the search ends at 0.2 % of the length.
+func leastLength(most int, coarsely bool, excess func(n int) float64) (n int, ok bool) {
+	if most < 0 {
+		return 0, false
+	}
+	lo, hi := -1, most // lo fails, or is no length; hi is within
+	atHi := excess(hi)
+	if !(atHi <= guard) {
+		return 0, false
+	}
+	atLo := math.Inf(1)
+	for step := 0; ; step++ {
+		resolution := 1
+		if coarsely {
+			resolution = max(1, hi/500)
+		}
+		if hi-lo <= resolution {
+			return hi, true
+		}
+		mid := (lo + hi) / 2
+		if share := math.Log(atLo/guard) / math.Log(atLo/math.Max(atHi, 1e-9)); step%2 == 1 && share > 0 && share < 1 {
+			mid = min(max(lo+int(math.Ceil(share*float64(hi-lo)*1.001)), lo+1), hi-1)
+		}
+		if e := excess(mid); e <= guard {
+			hi, atHi = mid, e
+		} else {
+			lo, atLo = mid, e
+		}
+	}
+}
+
+// excess measures the kernel of a half length under a window.
+func (s *cutSearch) excess(half int, beta float64) float64 {
 	clear(s.buf)
 	w := newTaper(half, beta)
-	s.buf[0] = s.zero[0]
-	for n := 1; n <= half; n++ {
-		v := s.zero[n] * w.at(n)
-		s.buf[n], s.buf[s.size-n] = v, v
+	for n := 0; n <= half; n++ {
+		s.buf[n] = s.zero[n] * w.at(n)
 	}
-	s.fft.Coefficients(s.spec, s.buf)
-	taps := sync.OnceValue(func() []float64 { return s.kernel(half, beta) })
-	return s.grid.Met(Magnitude{
-		Bin: func(k int) float64 { return math.Abs(real(s.spec[k])) },
-		At:  func(omega float64) float64 { return cmplx.Abs(response.TapsAt(taps(), omega)) },
+	s.dct.Transform(s.spec, s.buf)
+	return s.grid.Excess(Magnitude{
+		Bin: func(k int) float64 { return math.Abs(s.spec[k]) },
+		At: func(omega float64) float64 { // both sides of the kernel from one
+			return math.Abs(2*real(response.TapsAt(s.buf[:half+1], omega)) - s.buf[0])
+		},
 	})
 }
 
@@ -159,31 +197,24 @@ func (w taper) at(n int) float64 {
 // finest is as for LinearPhase.
 func CutTail(h []float64, t Target, finest float64) (cut []float64, ok bool) {
 	size := GridFor(finest)
-	for size < 8*len(h) {
+	for size < 4*len(h) {
 		size *= 2
 	}
 	grid := t.Sample(size)
+	most := min(len(h), negligible(h, guard*grid.floor))
+	if most == len(h) {
+		return nil, false // the end of h is still too loud to be left out unseen
+	}
 	fft := fourier.NewFFT(size)
 	buf, spec := make([]float64, size), make([]complex128, size/2+1)
-	met := func(n int) bool {
+	n, ok := leastLength(most, size > manyPoints, func(n int) float64 {
 		clear(buf)
 		copy(buf, h[:n])
 		fft.Coefficients(spec, buf)
-		return grid.Met(Magnitude{
+		return grid.Excess(Magnitude{
 			Bin: func(k int) float64 { return math.Hypot(real(spec[k]), imag(spec[k])) },
 			At:  func(omega float64) float64 { return cmplx.Abs(response.TapsAt(h[:n], omega)) },
 		})
-	}
-	if !met(len(h)) {
-		return nil, false
-	}
-	lo, hi := 0, len(h)
-	for hi-lo > 1 {
-		if mid := (lo + hi) / 2; met(mid) {
-			hi = mid
-		} else {
-			lo = mid
-		}
-	}
-	return h[:hi], true
+	})
+	return h[:max(n, 1)], ok
 }

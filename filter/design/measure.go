@@ -90,6 +90,10 @@ func vertex(left, middle, right float64) float64 {
 // spaced evenly and as many by octaves from 1e-5 of the rate up, on the edges,
 // and beside every pole, where a narrow extreme may hide.
 func MeasureSections(s []response.Section, m Mask) Measured {
+	return tallySections(s, m).measured()
+}
+
+func tallySections(s []response.Section, m Mask) *tally {
 	const points = 1 << 14
 	t := newTally(m)
 	at := func(omega float64) complex128 { return response.SectionsAt(s, omega) }
@@ -101,7 +105,7 @@ func MeasureSections(s []response.Section, m Mask) Measured {
 	}
 	t.addNearPoles(s, at)
 	t.addEdges(at)
-	return t.measured()
+	return t
 }
 
 func (t *tally) addNearPoles(s []response.Section, at func(float64) complex128) {

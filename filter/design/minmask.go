@@ -3,21 +3,21 @@ package design
 import "fmt"
 
 // MinimumPhaseMask returns a minimum-phase kernel that meets a mask: the
-// magnitude of the Kaiser kernel that meets it, converted by the cepstrum. The
-// conversion strays a little, so the Kaiser kernel is designed for a mask
-// tightened until the converted kernel, as measured, is within the mask asked
-// for.
+// magnitude of a linear-phase kernel that meets it, such as Kaiser designs,
+// converted by the cepstrum. The conversion strays a little, so the kernel is
+// designed for a mask tightened until the converted kernel, as measured, is
+// within the mask asked for.
 //
-// Errors: those of Kaiser and MinimumPhase.
-func MinimumPhaseMask(m Mask) ([]float64, error) {
+// Errors: those of linear and of MinimumPhase.
+func MinimumPhaseMask(m Mask, linear func(Mask) ([]float64, error)) ([]float64, error) {
 	var got Measured
 	tight := m
 	for range 12 {
-		linear, err := Kaiser(tight)
+		symmetric, err := linear(tight)
 		if err != nil {
 			return nil, err
 		}
-		taps, _, err := MinimumPhase(linear, m.RippleDB/20)
+		taps, _, err := MinimumPhase(symmetric, m.RippleDB/20)
 		if err != nil {
 			return nil, err
 		}

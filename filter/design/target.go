@@ -32,24 +32,42 @@ const FloorDB = -80
 
 // Grid is a Target sampled: the grid's points, then the target's own.
 type Grid struct {
-	levels []Level
-	size   int
-	points []float64
-	floor  float64
+	high, low []float64 // bounds before any tolerance
+	allow     []float64 // tolerance as a share of the bound, 10^(Allow/20) - 1
+	size      int
+	points    []float64
+	floor     float64
 }
 
 // Sample puts a target on the grid of a size-point transform.
 func (t Target) Sample(size int) *Grid {
-	g := &Grid{levels: t.Grid(size), size: size, points: t.Points}
-	for _, omega := range t.Points {
-		g.levels = append(g.levels, t.At(omega))
-	}
-	top := 0.0
-	for _, l := range g.levels {
-		top = math.Max(top, l.High)
-	}
-	g.floor = math.Pow(10, FloorDB/20.0) * top
+	g, _ := t.sample(size)
 	return g
+}
+
+// sample also gives the aims on the grid proper.
+func (t Target) sample(size int) (g *Grid, aims []float64) {
+	levels := t.Grid(size)
+	bins := len(levels)
+	for _, omega := range t.Points {
+		levels = append(levels, t.At(omega))
+	}
+	n := len(levels)
+	g = &Grid{make([]float64, n), make([]float64, n), make([]float64, n), size, t.Points, 0}
+	aims = make([]float64, bins)
+	db, share := math.NaN(), 0.0
+	for i, l := range levels {
+		if l.Allow != db { // mostly the same from point to point
+			db, share = l.Allow, math.Pow(10, l.Allow/20)-1
+		}
+		g.high[i], g.low[i], g.allow[i] = l.High, l.Low, share
+		g.floor = math.Max(g.floor, l.High)
+		if i < bins {
+			aims[i] = l.Aim
+		}
+	}
+	g.floor *= math.Pow(10, FloorDB/20.0)
+	return g, aims
 }
 
 // Magnitude is |H| where a Grid asks for it: at bin k of its transform, and at
@@ -67,10 +85,10 @@ func (g *Grid) at(m Magnitude, i int) float64 {
 	return m.Bin(i)
 }
 
-// guard is the share of a tolerance that a design may use. On a grid of eight
+// guard is the share of a tolerance that a design may use. On a grid of four
 // points to a ripple of the error, the crest of one can stand between two
-// points, 1 - cos(pi/16) = 1.9 % above them.
-const guard = 0.97
+// points, 1 - cos(pi/8) = 7.6 % above them.
+const guard = 0.92
 
 // Met tells whether a magnitude keeps, with something in hand for what stands
 // between the points (guard),
@@ -78,31 +96,42 @@ const guard = 0.97
 //	Low - a Low - floor <= |H| <= High + a High + floor
 //
 // at every point, with a = 10^(Allow/20) - 1. NaN fails.
-func (g *Grid) Met(magnitude Magnitude) bool {
-	for i, l := range g.levels {
-		a := guard * (math.Pow(10, l.Allow/20) - 1)
+func (g *Grid) Met(magnitude Magnitude) bool { return g.Excess(magnitude) <= guard }
+
+// Excess is the error over the tolerance at the worst point: 1 uses all of it.
+// NaN counts as without bound.
+func (g *Grid) Excess(magnitude Magnitude) float64 {
+	worst := 0.0
+	for i, high := range g.high {
 		m := g.at(magnitude, i)
-		if !(m <= l.High+a*l.High+guard*g.floor && m >= l.Low-a*l.Low-guard*g.floor) {
-			return false
+		if m <= high && m >= g.low[i] {
+			continue
+		}
+		over, under := (m-high)/(g.allow[i]*high+g.floor), (g.low[i]-m)/(g.allow[i]*g.low[i]+g.floor)
+		if e := math.Max(over, under); !(e <= worst) {
+			worst = e
 		}
 	}
-	return true
+	if math.IsNaN(worst) {
+		return math.Inf(1)
+	}
+	return worst
 }
 
 // ErrorDB is the least tolerance in dB, the same at every frequency, under
 // which the magnitude would be met: the error that was actually reached.
 func (g *Grid) ErrorDB(magnitude Magnitude) float64 {
 	worst := 0.0
-	for i, l := range g.levels {
+	for i, high := range g.high {
 		m := g.at(magnitude, i)
 		if math.IsNaN(m) {
 			return math.NaN()
 		}
-		if over := m - l.High - g.floor; over > 0 {
-			worst = math.Max(worst, ratio(over, l.High))
+		if over := m - high - g.floor; over > 0 {
+			worst = math.Max(worst, ratio(over, high))
 		}
-		if under := l.Low - m - g.floor; under > 0 {
-			worst = math.Max(worst, ratio(under, l.Low))
+		if under := g.low[i] - m - g.floor; under > 0 {
+			worst = math.Max(worst, ratio(under, g.low[i]))
 		}
 	}
 	return 20 * math.Log10(1+worst)

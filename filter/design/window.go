@@ -61,19 +61,35 @@ func KaiserOrder(attenuationDB, width float64) float64 {
 }
 
 // WindowedSinc returns n taps of the ideal kind cut at the edges (Hz, -6 dB)
-// and weighted with a Kaiser window. With scale, the gain is exactly 1 at 0 Hz
-// for a low-pass and band-stop, at half the rate for a high-pass and midway
-// between the edges for a band-pass. The delay is (n-1)/2 samples.
+// and weighted with a Kaiser window of shape beta, 0 to 500. See SincUnder.
 //
-// Errors: n < 1; beta negative; edges as for Butterworth; an even n for a
-// high-pass or band-stop, whose forced zero at half the rate (linear-phase type
-// II) contradicts the kind.
+// Errors: beta outside 0..500; those of SincUnder.
 func WindowedSinc(kind Kind, n int, beta float64, scale bool, rate float64, edges ...float64) ([]float64, error) {
-	if err := checkSinc(kind, n, beta, rate, edges); err != nil {
+	if !(beta >= 0 && beta <= 500) {
+		return nil, fmt.Errorf("windowed %v: a window beta of %g is not between 0 and 500", kind, beta)
+	}
+	return SincUnder(KaiserWindow(max(n, 0), beta), kind, scale, rate, edges...)
+}
+
+// SincUnder returns the ideal kind cut at the edges (Hz, -6 dB) and weighted
+// with a symmetric window, one tap for each of its points. With scale, the gain
+// is exactly 1 at 0 Hz for a low-pass and band-stop, at half the rate for a
+// high-pass and midway between the edges for a band-pass. The delay is (n-1)/2
+// samples.
+//
+// Errors: an empty window; edges as for Butterworth; an even length for a
+// high-pass or band-stop, whose forced zero at half the rate (linear-phase type
+// II) contradicts the kind. Source: Oppenheim & Schafer, section on filter
+// design by windowing.
+func SincUnder(window []float64, kind Kind, scale bool, rate float64, edges ...float64) ([]float64, error) {
+	err := checkEdges(kind, rate, edges)
+	if err == nil {
+		err = CheckForcedZeros(kind, len(window), false)
+	}
+	if err != nil {
 		return nil, fmt.Errorf("windowed %v: %w", kind, err)
 	}
-	window := KaiserWindow(n, beta)
-	taps := make([]float64, n)
+	taps := make([]float64, len(window))
 	for _, band := range passbands(kind, rate, edges) {
 		addIdeal(taps, window, band[1], 1)
 		addIdeal(taps, window, band[0], -1)
@@ -82,21 +98,6 @@ func WindowedSinc(kind Kind, n int, beta float64, scale bool, rate float64, edge
 		divide(taps, gainAt(taps, scalingFrequency(kind, rate, edges)))
 	}
 	return taps, nil
-}
-
-func checkSinc(kind Kind, n int, beta, rate float64, edges []float64) error {
-	if err := checkEdges(kind, rate, edges); err != nil {
-		return err
-	}
-	switch {
-	case n < 1:
-		return fmt.Errorf("%d taps is not a kernel; ask for at least 1", n)
-	case !(beta >= 0 && beta <= 500):
-		return fmt.Errorf("a window beta of %g is not between 0 and 500", beta)
-	case n%2 == 0 && (kind == Highpass || kind == Bandstop):
-		return fmt.Errorf("%d taps, an even number, force a zero at half the rate, where a %v must pass; ask for %d", n, kind, n+1)
-	}
-	return nil
 }
 
 // passbands lists the bands passed, as fractions of half the rate.

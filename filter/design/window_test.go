@@ -81,8 +81,8 @@ func TestWindowedSincErrors(t *testing.T) {
 		_, err := WindowedSinc(kind, n, beta, false, 48000, edges...)
 		return err
 	}
-	wantError(t, try(Highpass, 128, 5, 1000), "128 taps, an even number", "ask for 129")
-	wantError(t, try(Bandstop, 128, 5, 1000, 2000), "force a zero")
+	wantError(t, try(Highpass, 128, 5, 1000), "highpass of even length", "forced zero at half the sample rate (type II)", "129 in place of 128")
+	wantError(t, try(Bandstop, 128, 5, 1000, 2000), "forced zero")
 	wantError(t, try(Lowpass, 0, 5, 1000), "0 taps")
 	wantError(t, try(Lowpass, 11, -1, 1000), "beta of -1")
 	wantError(t, try(Lowpass, 11, 1, 24000), "24000 Hz is not below half the sample rate")

@@ -2,11 +2,13 @@ package response
 
 import "math"
 
-// System is a causal filter: a kernel followed by a cascade. Nil taps stand
-// for a kernel of the one tap 1.
+// System is a kernel, a cascade, and a cascade that runs forward and backward
+// in time, one after another. Nil taps stand for a kernel of the one tap 1.
+// With Zero sections the system is not causal.
 type System struct {
 	Taps     []float64
 	Sections []Section
+	Zero     []Section // response |H|^2, with no phase and no delay
 }
 
 // Spectrum gives H at omega = 2 pi k/size, k = 0 to size/2: the kernel's
@@ -20,17 +22,22 @@ func (s System) Spectrum(size int) []complex128 {
 	if s.Taps != nil {
 		h = Spectrum(s.Taps, size)
 	}
-	if len(s.Sections) > 0 {
+	if len(s.Sections) > 0 || len(s.Zero) > 0 {
 		for k := range h {
-			h[k] *= SectionsAt(s.Sections, 2*math.Pi*float64(k)/float64(size))
+			h[k] *= s.recursiveAt(2 * math.Pi * float64(k) / float64(size))
 		}
 	}
 	return h
 }
 
+// recursiveAt is H without the kernel.
+func (s System) recursiveAt(omega float64) complex128 {
+	return SectionsAt(s.Sections, omega) * complex(power(SectionsAt(s.Zero, omega)), 0)
+}
+
 // At is H at omega radians a sample, summed directly.
 func (s System) At(omega float64) complex128 {
-	h := SectionsAt(s.Sections, omega)
+	h := s.recursiveAt(omega)
 	if s.Taps != nil {
 		h *= TapsAt(s.Taps, omega)
 	}
