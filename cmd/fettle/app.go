@@ -85,7 +85,7 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 		Version:   version(),
 		Writer:    stdout,
 		ErrWriter: stderr,
-		Commands:  []*cli.Command{renderCommand(), auditCommand()},
+		Commands:  []*cli.Command{renderCommand(), auditCommand(), exportCommand()},
 		// Errors are printed in one place, by finish.
 		ExitErrHandler:  func(*cli.Context, error) {},
 		OnUsageError:    usageError,

@@ -40,12 +40,16 @@ func auditChainCommand() *cli.Command {
 			"played. Delay spread, smear and rings are defined in the README.\n\n" +
 			"EXIT STATUS\n   0 done; 1 could not start (usage, chain); 130 interrupted",
 		Flags: []cli.Flag{
-			&cli.StringFlag{Name: "rate", Value: "48k", Usage: "audit at sample rate `RATE`, such as 44.1k"},
+			rateFlag(),
 			phaseFlag(),
 			jsonFlag(),
 		},
 		Action: auditChain,
 	}
+}
+
+func rateFlag() cli.Flag {
+	return &cli.StringFlag{Name: "rate", Value: "48k", Usage: "realise at sample rate `RATE`, such as 44.1k"}
 }
 
 func phaseFlag() cli.Flag {
@@ -57,14 +61,7 @@ func jsonFlag() cli.Flag {
 }
 
 func auditChain(c *cli.Context) error {
-	if c.NArg() != 1 {
-		return fmt.Errorf("audit chain: takes one chain file, not %d; see fettle audit chain --help", c.NArg())
-	}
-	rate, err := rateOf(c.String("rate"))
-	if err != nil {
-		return err
-	}
-	chain, phase, err := loadChain(c.Args().First(), c.String("phase"))
+	realise, err := oneChain(c)
 	if err != nil {
 		return err
 	}
@@ -72,7 +69,7 @@ func auditChain(c *cli.Context) error {
 		return err
 	}
 	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) {
-		f, err := chain.Realise(rate, phase)
+		f, err := realise()
 		if err != nil {
 			return nil, err
 		}
@@ -85,6 +82,23 @@ func auditChain(c *cli.Context) error {
 		return err
 	}
 	return writeJSON(c, results)
+}
+
+// oneChain reads the one chain that is named, the rate and the phase; realising
+// it, which may take seconds, is left to the caller.
+func oneChain(c *cli.Context) (realise func() (*filter.Filter, error), err error) {
+	if c.NArg() != 1 {
+		return nil, fmt.Errorf("%s: takes one chain file, not %d; see fettle %s --help", c.Command.FullName(), c.NArg(), c.Command.FullName())
+	}
+	rate, err := rateOf(c.String("rate"))
+	if err != nil {
+		return nil, err
+	}
+	chain, phase, err := loadChain(c.Args().First(), c.String("phase"))
+	if err != nil {
+		return nil, err
+	}
+	return func() (*filter.Filter, error) { return chain.Realise(rate, phase) }, nil
 }
 
 // printTables prints the figures, unless standard output is for JSON.
