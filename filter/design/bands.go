@@ -98,6 +98,17 @@ func (s BandSpec) highest() float64 {
 	return top
 }
 
+// constantGain tells whether all bands want one gain, and which.
+func (s BandSpec) constantGain() (float64, bool) {
+	g := s.Bands[0].GainFrom
+	for _, b := range s.Bands {
+		if b.GainFrom != g || b.GainTo != g {
+			return 0, false
+		}
+	}
+	return g, true
+}
+
 // width of all bands together, in radians.
 func (s BandSpec) width() float64 {
 	sum := 0.0

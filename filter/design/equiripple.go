@@ -4,6 +4,8 @@ import (
 	"errors"
 	"fmt"
 	"math"
+
+	"fettle/filter/response"
 )
 
 // MaxEquiripple is the longest kernel that ParksMcClellan designs; the work
@@ -35,9 +37,10 @@ var (
 // bands is the least possible, and that deviation: in a band of weight w the
 // gain errs by at most deviation/w. All four linear-phase types are designed.
 //
-// The method is the Remez exchange with barycentric interpolation. Long
-// kernels start from the extrema of one half as long. The taps are measured
-// again, transitions included, before they are returned.
+// The method is the Remez exchange with barycentric interpolation. It starts
+// from Leja points, runs on a coarse grid first, and seeks each extremum
+// between the grid's points. The taps are measured again, transitions included,
+// before they are returned.
 //
 // Errors: what BandSpec.Validate reports; bands that touch; more than
 // MaxEquiripple taps; a band narrower than one step of the grid; a
@@ -47,8 +50,7 @@ var (
 // Sources: Parks & McClellan, IEEE Trans. Circuit Theory CT-19 (1972) 189-194;
 // McClellan, Parks & Rabiner, IEEE Trans. Audio Electroacoust. AU-21 (1973)
 // 506-526; Berrut & Trefethen, Barycentric Lagrange interpolation, SIAM Review
-// 46 (2004) 501-517; starting from a shorter kernel: Filip, ACM Trans. Math.
-// Softw. 43 (2016) 7.
+// 46 (2004) 501-517.
 func ParksMcClellan(s BandSpec, o RemezOptions) (taps []float64, deviation float64, err error) {
 	taps, deviation, err = parksMcClellan(s, o)
 	if err != nil {
@@ -61,8 +63,8 @@ func parksMcClellan(s BandSpec, o RemezOptions) ([]float64, float64, error) {
 	if err := s.checkRemez(o); err != nil {
 		return nil, 0, err
 	}
-	if s.highest() == 0 {
-		return nil, 0, fmt.Errorf("every gain asked for is 0; give at least one band a gain")
+	if g, constant := s.constantGain(); constant && (g == 0 || s.Type() == response.TypeI) {
+		return nil, 0, fmt.Errorf("every band asks for a gain of %g, which one tap has; give the bands different gains", g)
 	}
 	d, err := exchange(s, o, false)
 	if err != nil {

@@ -33,6 +33,9 @@ func through(ref []gridPoint) *curve {
 		sign = -sign
 	}
 	c.delta = above / below
+	if c.delta == 0 {
+		c.delta = 1e-300 // a reference that a polynomial meets still alternates, so that it can be exchanged
+	}
 	sign = 1.0
 	values := make([]float64, n)
 	for k, p := range ref {
@@ -144,19 +147,25 @@ func (c *curve) errorAt(p *gridPoint) float64 { return p.weight * (p.want - c.at
 //
 // Across a wide transition interpolation magnifies rounding a million times
 // and more. So the kernel is read at the reference, where it is known, and the
-// difference interpolated and added: its own error is as much smaller.
+// difference interpolated and added, until it does not shrink any more.
 func (s BandSpec) tapsOf(d *solution) []float64 {
-	cosine := d.curve.cosineKernel()
-	missing := make([]float64, len(d.ref))
-	for k, p := range d.ref {
-		missing[k] = d.curve.value[k] - amplitude(cosine, p.omega)
-	}
+	cosine := make([]float64, 2*s.cosines()-1)
 	rest := *d.curve
-	rest.set(missing)
-	for i, h := range rest.cosineKernel() {
-		cosine[i] += h
+	for before := math.Inf(1); ; {
+		for i, h := range rest.cosineKernel() {
+			cosine[i] += h
+		}
+		missing, largest := make([]float64, len(d.ref)), 0.0
+		for k, p := range d.ref {
+			missing[k] = d.curve.value[k] - amplitude(cosine, p.omega)
+			largest = math.Max(largest, math.Abs(missing[k]))
+		}
+		if !(largest < before/4) {
+			return mirrored(convolve(cosine, factorTaps(s.Type())), s.Antisymmetric)
+		}
+		before = largest
+		rest.set(missing)
 	}
-	return mirrored(convolve(cosine, factorTaps(s.Type())), s.Antisymmetric)
 }
 
 // amplitude reads a kernel of type I.

@@ -10,7 +10,7 @@ const (
 	converged  = 1e-9 // spread of the extrema's heights at which the exchange ends
 	acceptable = 1e-6 // spread still good when rounding allows no better
 	settled    = 1e-7 // spread that, reached twice, is the most rounding allows
-	roughly    = 1e-2 // spread that is enough of a start for a longer kernel
+	roughly    = 1e-2 // spread that is enough of a start on a finer grid
 )
 
 // solution is where an exchange has arrived.

@@ -21,8 +21,14 @@ func (x *exchanger) extrema(c *curve, ref []gridPoint) []extremum {
 		if left && !beyond(p.height, points[i-1].height, true) || right && !beyond(p.height, points[i+1].height, false) {
 			continue
 		}
-		if x.parabolas > 0 && left && right {
+		switch {
+		case x.parabolas == 0:
+		case left && right:
 			p = x.refined(c, points[i-1], p, points[i+1])
+		case left:
+			p = x.besideEdge(c, p, points[i-1])
+		case right:
+			p = x.besideEdge(c, p, points[i+1])
 		}
 		all = append(all, p)
 	}
@@ -56,6 +62,24 @@ func beyond(e, neighbour float64, orEqual bool) bool {
 	return e > neighbour || orEqual && e == neighbour
 }
 
+// besideEdge looks whether the error rises from a band's edge inwards, and if so
+// seeks the top between the edge and its neighbour.
+func (x *exchanger) besideEdge(c *curve, edge, neighbour extremum) extremum {
+	inner := x.at(c, edge.omega+1e-3*(neighbour.omega-edge.omega), edge.band)
+	switch {
+	case inner.height*edge.height < 0 || !beyond(inner.height, edge.height, false):
+		return edge
+	case edge.omega < neighbour.omega:
+		return x.refined(c, edge, inner, neighbour)
+	}
+	return x.refined(c, neighbour, inner, edge)
+}
+
+func (x *exchanger) at(c *curve, omega float64, band int) extremum {
+	p := x.spec.pointAt(omega, band)
+	return extremum{p, c.errorAt(&p)}
+}
+
 // refined seeks the top between the neighbours of a point: a parabola
 // through the three, then another through three points eight times closer
 // about its summit, and so on. One alone is not enough next to an edge, where a
@@ -64,8 +88,7 @@ func (x *exchanger) refined(c *curve, left, top, right extremum) extremum {
 	from, to := left.omega, right.omega
 	sign := math.Copysign(1, top.height)
 	at := func(omega float64) extremum {
-		p := x.spec.pointAt(math.Max(from, math.Min(to, omega)), top.band)
-		return extremum{p, c.errorAt(&p)}
+		return x.at(c, math.Max(from, math.Min(to, omega)), top.band)
 	}
 	for n := 1; ; n++ {
 		if now := at(summit(left, top, right)); now.height*sign > top.height*sign {

@@ -52,7 +52,8 @@ type gridder struct {
 
 // grid returns the points of all bands in ascending order: each band from its
 // lower edge by equal steps, the last moved to its upper edge, as McClellan,
-// Parks & Rabiner (1973) do. An edge on a forced zero moves in by a step.
+// Parks & Rabiner (1973) do. An edge on a forced zero moves in by a step; on
+// their own grid one within a step does, too.
 func (g gridder) grid() ([]gridPoint, error) {
 	zeroDC, zeroHalf := ForcedZeros(g.spec.Type())
 	var all []gridPoint
@@ -62,10 +63,10 @@ func (g gridder) grid() ([]gridPoint, error) {
 		if err != nil {
 			return nil, err
 		}
-		if zeroDC {
+		if zeroDC && (from == 0 || !g.crowded) {
 			from = math.Max(from, step)
 		}
-		if zeroHalf {
+		if zeroHalf && (to == math.Pi || !g.crowded) {
 			to = math.Min(to, math.Pi-step)
 		}
 		for _, omega := range g.band(from, to, step) {

@@ -69,7 +69,7 @@ func TestEqualRipple(t *testing.T) {
 }
 
 // TestPublishedGrid compares taps with scipy.signal.remez at grid density 16:
-// the same grid, so the same kernel, to the reference's own stopping rule.
+// the same grid, so the same kernel to rounding.
 func TestPublishedGrid(t *testing.T) {
 	worst := 0.0
 	for _, c := range loadFIR(t).Equiripple {
@@ -80,8 +80,8 @@ func TestPublishedGrid(t *testing.T) {
 		noError(t, err)
 		d := worstTap(t, taps, c.Taps16)
 		worst = math.Max(worst, d)
-		if !(d <= 1e-6) {
-			t.Errorf("%d taps, antisymmetric %v, %v: taps off by %.3g, allowed 1e-6", c.N, c.Antisymmetric, c.Bands, d)
+		if !(d <= 1e-12) {
+			t.Errorf("%d taps, antisymmetric %v, %v: taps off by %.3g, allowed 1e-12", c.N, c.Antisymmetric, c.Bands, d)
 		}
 	}
 	t.Logf("taps within %.2g", worst)
@@ -145,7 +145,8 @@ func TestRemezRefuses(t *testing.T) {
 	wantError(t, try(101, 20000, Flat(0, 990, 0, 1), Flat(1000, 1011.5, 1, 1), Flat(1021.5, 10000, 0, 1)), "band 1000 to 1011.5 Hz is narrower than one step of the grid", "Hz at 101 taps", "take more taps")
 	wantError(t, try(4097, 48000, Flat(0, 1000, 1, 1), Flat(1100, 24000, 0, 1)), "more than 4095 taps", "kaiser")
 	wantError(t, try(33, 48000, Flat(0, 1000, 1, 1), Flat(1000, 24000, 0, 1)), "touch", "leave a transition")
-	wantError(t, try(33, 48000, Flat(0, 1000, 0, 1), Flat(2000, 24000, 0, 1)), "every gain asked for is 0")
+	wantError(t, try(33, 48000, Flat(0, 1000, 0, 1), Flat(2000, 24000, 0, 1)), "every band asks for a gain of 0")
+	wantError(t, try(33, 48000, Flat(0, 24000, 2, 1)), "every band asks for a gain of 2, which one tap has")
 	_, _, err := ParksMcClellan(BandSpec{Taps: 1, Antisymmetric: true, Rate: 8, Bands: []Band{Flat(1, 3, 1, 1)}}, RemezOptions{})
 	wantError(t, err, "one tap cannot be antisymmetric")
 	_, _, err = ParksMcClellan(loadFIR(t).Equiripple[0].spec(), RemezOptions{Grid: 2})
@@ -160,7 +161,7 @@ func TestRemezRefuses(t *testing.T) {
 // shrinks.
 func TestRemezConverges(t *testing.T) {
 	designs := 0
-	for _, n := range []int{63, 64, 511} {
+	for _, n := range []int{63, 64, 255} {
 		for _, edge := range []float64{0.002, 0.05, 0.2, 0.46} {
 			for _, weight := range []float64{1, 100, 0.01} {
 				last := 0.0
