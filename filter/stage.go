@@ -89,14 +89,15 @@ func init() { // breaks the cycle between the table and the readers that list it
 		"bandpass":  {read: passReader(design.Bandpass)},
 		"bandstop":  {read: passReader(design.Bandstop)},
 		"bell":      {read: readBell, tone: true},
-		"lowshelf":  {read: shelfReader(design.LowShelf, design.LowShelfSlope), tone: true},
-		"highshelf": {read: shelfReader(design.HighShelf, design.HighShelfSlope), tone: true},
+		"lowshelf":  {read: shelfReader(design.LowShelf, design.LowShelfSlope, design.MatchedLowShelf), tone: true},
+		"highshelf": {read: shelfReader(design.HighShelf, design.HighShelfSlope, design.MatchedHighShelf), tone: true},
 		"notch":     {read: readNotch},
 		"allpass":   {read: readAllpass, intent: true},
 		"gain":      {read: readGain, tone: true, intent: true},
 		"delay":     {read: readDelay, intent: true},
 		"dc":        {read: readDC},
 		"hum":       {read: readHum},
+		"replay":    {read: readReplay, tone: true},
 		"fir":       {read: readFIR, coefficients: true},
 		"biquads":   {read: readBiquads, coefficients: true},
 	}
@@ -137,16 +138,25 @@ func (c *Chain) readStage(d *decoder, n ast.Node) *Stage {
 	f.done()
 	s.plan = planner(build, d.highest)
 	if d.err == nil {
-		if _, err := build(ampleRate); err != nil {
+		if _, err := build(ampleFor(d.highest)); err != nil {
 			d.fail(entry.Key, "stage %s: %s", name, strings.TrimPrefix(err.Error(), name+": "))
 		}
 	}
 	return s
 }
 
-// ampleRate holds every frequency that a chain may name: what cannot be
-// designed at this rate cannot be at any.
+// ampleRate suits what names no frequency.
 const ampleRate = 4 * maxHz
+
+// ampleFor is a rate that holds the highest frequency of a stage with room to
+// spare, and not so much that its designs would lose digits: what cannot be
+// designed at this rate cannot be at any.
+func ampleFor(highest float64) float64 {
+	if highest == 0 {
+		return ampleRate
+	}
+	return 16 * highest
+}
 
 // planner makes a stage's design refuse rates that do not suit it: highest is
 // the highest frequency that the stage names.

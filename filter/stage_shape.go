@@ -40,15 +40,23 @@ func one(s response.Section, err error) ([]response.Section, error) {
 
 func readBell(f *fields, _ *Chain) func(float64) (plan, error) {
 	at, gain := f.hz("at"), f.gain("gain")
+	bell := design.Bell
+	if f.matched() {
+		bell = design.MatchedBell
+	}
 	if f.oneOf("q", "width", "1.1") == "width" {
 		width := f.octaves("width")
 		return tone(gain, func(rate, gain float64) (response.Section, error) {
-			return design.Bell(rate, at, gain, design.BandwidthQ(rate, at, width))
+			return bell(rate, at, gain, design.BandwidthQ(rate, at, width))
 		})
 	}
 	q := f.positive("q")
-	return tone(gain, func(rate, gain float64) (response.Section, error) { return design.Bell(rate, at, gain, q) })
+	return tone(gain, func(rate, gain float64) (response.Section, error) { return bell(rate, at, gain, q) })
 }
+
+// matched tells whether a stage follows its analogue prototype up to half the
+// rate, where the bilinear transform cramps it.
+func (f *fields) matched() bool { return f.word("matched", "false", "true", "false") == "true" }
 
 // octaves reads a bandwidth.
 func (f *fields) octaves(key string) float64 {
@@ -65,9 +73,13 @@ type shelf func(rate, hz, gainDB, steepness float64) (response.Section, error)
 
 // shelfReader reads a shelf, by q or by slope; slope 1, the steepest that does
 // not overshoot, unless said.
-func shelfReader(byQ, bySlope shelf) func(*fields, *Chain) func(float64) (plan, error) {
+func shelfReader(byQ, bySlope, matched shelf) func(*fields, *Chain) func(float64) (plan, error) {
 	return func(f *fields, _ *Chain) func(float64) (plan, error) {
 		at, gain := f.hz("at"), f.gain("gain")
+		byQ, bySlope := byQ, bySlope
+		if f.matched() {
+			byQ, bySlope = matched, matched.bySlope
+		}
 		make, steepness := bySlope, 1.0
 		switch f.either("q", "slope") {
 		case "q":
@@ -77,6 +89,15 @@ func shelfReader(byQ, bySlope shelf) func(*fields, *Chain) func(float64) (plan, 
 		}
 		return tone(gain, func(rate, gain float64) (response.Section, error) { return make(rate, at, gain, steepness) })
 	}
+}
+
+// bySlope makes a shelf of a slope by one that takes a q.
+func (s shelf) bySlope(rate, hz, gainDB, slope float64) (response.Section, error) {
+	q, err := design.ShelfQ(gainDB, slope)
+	if err != nil {
+		return response.Section{}, err
+	}
+	return s(rate, hz, gainDB, q)
 }
 
 func readNotch(f *fields, _ *Chain) func(float64) (plan, error) {
