@@ -8,6 +8,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"io/fs"
 	"math"
 	"path/filepath"
 	"strconv"
@@ -64,7 +65,10 @@ func readFile[T any](c *Chain, d *decoder, n ast.Node, path string, as formats[T
 	default:
 		out, digest, err = fromBytes(path, as.text)
 	}
-	if err != nil {
+	switch {
+	case errors.Is(err, fs.ErrNotExist):
+		d.fail(n, "'file': %s: there is no such file; a relative name counts from the chain's own folder", path)
+	case err != nil:
 		d.fail(n, "'file': %v", err)
 	}
 	c.digests = append(c.digests, digest...)

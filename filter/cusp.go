@@ -17,9 +17,9 @@ import (
 // x^2/(x^2 + sqrt 2 - 1) has the same -3 dB width, never less attenuation
 // inside it and at most 0.132 dB less outside.
 type cusp struct {
-	distance func(omega float64) float64 // x; -3 dB at 1
-	shallow  float64                     // 10^(-depth/20)
-	points   []float64                   // omega where the depth begins and ends to bind
+	distance func(w float64) float64 // x at w = tan(omega/2); -3 dB at 1
+	shallow  float64                 // 10^(-depth/20)
+	points   []float64               // omega where the depth begins and ends to bind
 }
 
 // depth is how many dB a one-sided part must reach.
@@ -53,7 +53,7 @@ func (d *depth) of(sections []response.Section) []*cusp {
 
 // highpass serves a zero at DC, -3 dB at corner in the bilinear variable.
 func (d *depth) highpass(corner float64) *cusp {
-	c := d.cusp(func(omega float64) float64 { return math.Tan(omega/2) / corner })
+	c := d.cusp(func(w float64) float64 { return w / corner })
 	for _, x := range c.near() {
 		c.points = append(c.points, 2*math.Atan(corner*x))
 	}
@@ -63,8 +63,7 @@ func (d *depth) highpass(corner float64) *cusp {
 // band serves a zero at the root of square, in the bilinear variable, with
 // -3 dB points width apart.
 func (d *depth) band(square, width float64) *cusp {
-	c := d.cusp(func(omega float64) float64 {
-		w := math.Tan(omega / 2)
+	c := d.cusp(func(w float64) float64 {
 		if w == 0 {
 			return math.Inf(1)
 		}
@@ -87,20 +86,20 @@ func (d *depth) cusp(distance func(float64) float64) *cusp {
 // levels round the depth, where a grid fit for the whole would see nothing.
 func (c *cusp) near() []float64 {
 	out := []float64{0}
-	for x := c.shallow / 4; x < 1; x *= math.Sqrt2 {
+	for x := c.shallow / 2; x < 1; x *= 2 {
 		out = append(out, x)
 	}
 	return out
 }
 
-// level turns the stage's curve at omega into a target with its one-sided
-// part, aimed at by the twin.
-func (c *cusp) level(omega, magnitude float64) design.Level {
-	x := c.distance(omega)
+// level is the stage's target at w = tan(omega/2), one-sided near its zero and
+// aimed at by the twin.
+func (c *cusp) level(w float64) design.Level {
+	x := c.distance(w)
 	if math.IsInf(x, 1) {
-		return curveLevel(magnitude)
+		return curveLevel(1)
 	}
-	twin := x * x / (x*x + twinSquare)
+	magnitude, twin := x/math.Sqrt(x*x+1), x*x/(x*x+twinSquare)
 	if x < 1 {
 		return design.Level{Aim: twin, High: math.Max(magnitude, c.shallow)}
 	}

@@ -17,6 +17,8 @@ func (d *decoder) open(text []byte) ast.Node {
 	// The lexer counts some lines that end in CR LF twice.
 	text = bytes.ReplaceAll(bytes.ReplaceAll(text, []byte("\r\n"), []byte("\n")), []byte("\r"), []byte("\n"))
 	switch {
+	case bytes.HasPrefix(text, []byte("RIFF")), bytes.HasPrefix(text, []byte("RF64")):
+		d.failAt(0, 0, "is a recording and not a chain; name a chain file")
 	case len(text) > maxText:
 		d.failAt(0, 0, "is longer than the %d bytes that a chain may have; put long kernels into files of their own", maxText)
 	case !utf8.Valid(text):

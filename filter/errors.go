@@ -50,3 +50,6 @@ var ErrForRecording = errors.New("the chain cannot serve this recording")
 type recordingError struct{ ChainError }
 
 func (e *recordingError) Unwrap() error { return ErrForRecording }
+
+// own is a copy of the error that is of the chain and not of one recording.
+func (e ChainError) own() error { return &e }

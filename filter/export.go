@@ -143,6 +143,7 @@ func (f *Filter) exportJSON(w io.Writer, p *Path) error {
 	}
 	enc := json.NewEncoder(w)
 	enc.SetEscapeHTML(false)
+	enc.SetIndent("", " ")
 	return enc.Encode(doc)
 }
 

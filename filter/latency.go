@@ -25,24 +25,25 @@ type Latency struct {
 
 // alignment is how a filter's paths are brought in line. All channels of a
 // recording are shifted alike: what a stage costs one channel delays the
-// others by as many whole samples, then one figure is removed from all.
+// others by as many whole samples, then one figure is removed from all. It is
+// rounded once: two channels half a sample apart stay so.
 type alignment struct {
 	to       Align
-	greatest int // round(bulk) of the latest path
-	removed  int // whole samples removed from every channel
+	greatest float64 // bulk latency of the latest path
+	removed  int     // whole samples removed from every channel
 }
 
 func (f *Filter) alignPaths() alignment {
 	a := alignment{to: f.chain.Align}
 	for i, p := range f.paths {
 		p.bulk = p.latencyBy(a.to.To, float64(f.rate))
-		if whole := int(math.Round(p.bulk)); i == 0 || whole > a.greatest {
-			a.greatest = whole
+		if i == 0 || p.bulk > a.greatest {
+			a.greatest = p.bulk
 		}
 	}
 	switch a.to.To {
 	case AlignAuto, AlignCentroid:
-		a.removed = a.greatest
+		a.removed = int(math.Round(a.greatest))
 	case AlignBy:
 		a.removed = a.to.By
 	}
@@ -105,24 +106,25 @@ func tail(sections []response.Section) int {
 	return stream.NewCascade(sections, 1).Tail()
 }
 
-// fraction is the part of a sample to be removed from a path.
+// wait is by how many samples a path is delayed to keep the latest company.
+func (a alignment) wait(p *Path) int { return int(math.Round(a.greatest - p.bulk)) }
+
+// fraction is the part of a sample to be removed from a path, 0 unless the
+// chain asks for it.
 func (a alignment) fraction(p *Path) float64 {
 	if !a.to.Fraction {
 		return 0
 	}
-	return p.bulk - math.Round(p.bulk)
+	return p.bulk + float64(a.wait(p)-a.removed)
 }
 
 // skip is how many samples of System's output precede the aligned instant;
 // negative: the output has to wait.
-func (a alignment) skip(p *Path) int {
-	others := a.greatest - int(math.Round(p.bulk)) // delayed alike
-	return a.removed - others + p.lag
-}
+func (a alignment) skip(p *Path) int { return a.removed - a.wait(p) + p.lag }
 
 // Latency tells what is delayed and removed on a path.
 func (f *Filter) Latency(p *Path) Latency {
-	exact := p.bulk + float64(f.align.greatest) - math.Round(p.bulk)
+	exact := p.bulk + float64(f.align.wait(p))
 	removed := float64(f.align.removed) + f.align.fraction(p)
 	return Latency{
 		Exact:     exact,

@@ -116,13 +116,17 @@ func (s Span) check() error {
 }
 
 // ParseFrequency reads a frequency in Hz from text such as "48 kHz", or, as
-// command lines have it, "48k" or "44100". The error says what was read; the
+// command lines have it, "48k" or "44100"; a bare number under 1000 is more
+// likely one of kHz, so it needs its unit. The error says what was read; the
 // sign is the caller's to check.
 func ParseFrequency(text string) (float64, error) {
 	number, unit, err := splitQuantity(text)
 	if err == nil {
 		switch unit {
 		case "":
+			if number > 0 && number < 1000 {
+				return 0, fmt.Errorf("%q has no unit; write %gk or %g Hz", text, number, number)
+			}
 			return number, nil
 		case "k":
 			return number * 1e3, nil

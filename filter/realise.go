@@ -121,6 +121,9 @@ func (c *Chain) realisePath(channel int, rate float64, as Realisation) (*Path, e
 		default:
 			minimum = append(minimum, m)
 		}
+		if errors.Is(err, errPhase) {
+			return nil, c.stageError(i, err).ChainError.own()
+		}
 		if err != nil {
 			return nil, c.stageError(i, err)
 		}
@@ -142,12 +145,24 @@ func (p *Path) remark(linear group) {
 	if slices.ContainsFunc(linear, func(m member) bool { return m.cusps != nil }) {
 		p.Notes = append(p.Notes, "beside its zeros the linear kernel follows smooth twins, which stray by up to 0.13 dB each")
 	}
+	if slices.ContainsFunc(p.members, func(m member) bool { return m.mask != nil && (m.phase == IIR || m.phase == Zero) }) {
+		p.Notes = append(p.Notes, "a mask is met by an elliptic filter, whose curve inside the mask is another than a kernel's")
+	}
 	if slices.ContainsFunc(p.members, func(m member) bool { return m.phase == Zero && !m.stage.kind.intent }) {
 		p.Notes = append(p.Notes, "run forward and backward, filters of half the order or gain come near to the target only")
 	}
 }
 
-func (c *Chain) stageError(i int, err error) error {
+// errPhase marks what no rate could help: a stage that has no such realisation.
+var errPhase = errors.New("no such realisation")
+
+// phaseError says so in the user's terms.
+type phaseError string
+
+func (e phaseError) Error() string        { return string(e) }
+func (e phaseError) Is(target error) bool { return target == errPhase }
+
+func (c *Chain) stageError(i int, err error) *recordingError {
 	s := c.Stages[i]
 	return &recordingError{ChainError{c.File, s.at.line, s.at.column, fmt.Sprintf("stage %d, %s: %v", i+1, s.Kind, err)}}
 }
@@ -168,7 +183,7 @@ type parts struct {
 // forwardBackward adds a stage as sections to be run both ways.
 func (b *parts) forwardBackward(m member) error {
 	if m.half == nil {
-		return errors.New("given coefficients cannot be run both ways without squaring their magnitude; ask for linear, or write phase: given at this stage to keep it")
+		return phaseError("given coefficients cannot be run both ways without squaring their magnitude; ask for linear, or write phase: given at this stage to keep it")
 	}
 	sections, err := m.half()
 	if err == nil {
@@ -186,7 +201,7 @@ func (b *parts) asGiven(m member) error {
 	b.sections = append(b.sections, m.sections...)
 	switch {
 	case m.taps != nil && m.phase == IIR:
-		return errors.New("a given kernel has no recursive form; ask for linear or minimum, or write phase: given at this stage to keep it")
+		return phaseError("a given kernel has no recursive form; ask for linear or minimum, or write phase: given at this stage to keep it")
 	case m.taps != nil:
 		b.convolve(m.taps)
 	case m.mask != nil && m.phase == IIR:
@@ -357,6 +372,7 @@ func (p *Path) shiftFraction(removed float64) error {
 		return err
 	}
 	p.lag = centre
+	p.Notes = append(p.Notes, "a fraction of a sample is exact up to 0.45 of the rate; above, the level falls towards half the rate")
 	if p.System.Taps == nil {
 		p.System.Taps = taps
 	} else {

@@ -139,12 +139,12 @@ func (r recursive) design(rate float64) (design.ZPK, error) {
 // ripple and the rejection.
 func (r recursive) half(rate float64) (design.ZPK, error) {
 	switch {
+	case r.family == design.FamilyBessel:
+		return design.ZPK{}, phaseError("a bessel filter is chosen for its group delay, which running both ways takes away; use butterworth, or linear")
+	case r.order%2 == 1:
+		return design.ZPK{}, phaseError(fmt.Sprintf("order %d is odd, and half of it runs each way; use order %d", r.order, r.order+1))
 	case r.family == design.FamilyButterworth:
 		return design.HalfButterworth(r.kind, r.order, rate, r.at...)
-	case r.family == design.FamilyBessel:
-		return design.ZPK{}, fmt.Errorf("a bessel filter is chosen for its group delay, which running both ways takes away; use butterworth, or linear")
-	case r.order%2 == 1:
-		return design.ZPK{}, fmt.Errorf("order %d is odd, and half of it runs each way; use order %d", r.order, r.order+1)
 	case r.family == design.FamilyLinkwitzRiley: // which is a Butterworth twice
 		return design.Butterworth(r.kind, r.order/2, rate, r.at...)
 	}

@@ -1,7 +1,6 @@
 package filter
 
 import (
-	"errors"
 	"fmt"
 
 	"fettle/filter/design"
@@ -37,7 +36,7 @@ func readReplay(f *fields, _ *Chain) func(float64) (plan, error) {
 		}
 		p := curve(sections)
 		p.half = func() ([]response.Section, error) {
-			return nil, errors.New("half the decibels of a replay curve are no filter with few sections; use linear, or write phase: given at this stage to keep it")
+			return nil, phaseError("half the decibels of a replay curve are no filter with few sections; use linear, or write phase: given at this stage to keep it")
 		}
 		p.notes = []string{replayNote(c, inverse, worst)}
 		return p, nil

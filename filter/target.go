@@ -55,9 +55,10 @@ func (m member) sectionsLevel(omega float64) design.Level {
 	if m.cusps == nil {
 		return curveLevel(cmplx.Abs(response.SectionsAt(m.sections, omega)))
 	}
+	w := math.Tan(omega / 2)
 	l := curveLevel(1)
-	for i, c := range m.cusps {
-		l = product(l, c.level(omega, cmplx.Abs(response.SectionsAt(m.sections[i:i+1], omega))))
+	for _, c := range m.cusps {
+		l = product(l, c.level(w))
 	}
 	return l
 }
@@ -157,6 +158,9 @@ func (m member) points() []float64 {
 	for _, c := range m.cusps {
 		out = append(out, c.points...)
 	}
+	if out != nil {
+		return out
+	}
 	width := m.finest()
 	for _, s := range m.sections {
 		for _, z := range s.Zeros() {
@@ -183,4 +187,25 @@ const onCircle = 1e-6
 
 func product(a, b design.Level) design.Level {
 	return design.Level{Aim: a.Aim * b.Aim, Low: a.Low * b.Low, High: a.High * b.High}
+}
+
+// upTo is a target that allows less of everything above a share of the rate.
+func upTo(t design.Target, share float64) design.Target {
+	free := func(omega float64, l design.Level) design.Level {
+		if omega > 2*math.Pi*share {
+			l.Low = 0
+		}
+		return l
+	}
+	return design.Target{
+		Grid: func(size int) []design.Level {
+			levels := t.Grid(size)
+			for k := range levels {
+				levels[k] = free(2*math.Pi*float64(k)/float64(size), levels[k])
+			}
+			return levels
+		},
+		At:     func(omega float64) design.Level { return free(omega, t.At(omega)) },
+		Points: t.Points,
+	}
 }

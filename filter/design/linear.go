@@ -36,12 +36,12 @@ const manyPoints = 1 << 18
 // and the window's beta found by search. The kernel's latency is (N-1)/2.
 //
 // finest is the width in radians a sample of the target's narrowest feature.
-// The search measures on a grid of at least eight points to that and four to a
+// The search measures on a grid of at least 22 points to that and four to a
 // ripple of the kernel. It fails with *LengthError beyond MaxTaps.
 //
 // Source: Rabiner and Gold 1975, ch. 3 (frequency sampling, windows).
 func LinearPhase(t Target, finest float64) ([]float64, error) {
-	for size := GridFor(finest); size/4 <= 2*MaxTaps; size *= 2 {
+	for size := GridFor(finest); size/4 <= 2*MaxTaps; size = larger(size) {
 		s := newCutSearch(t, size)
 		if half, beta, ok := s.shortest(); ok && 2*half < MaxTaps {
 			return s.kernel(half, beta), nil
@@ -50,14 +50,23 @@ func LinearPhase(t Target, finest float64) ([]float64, error) {
 	return nil, &LengthError{"linear"}
 }
 
-// GridFor is the transform size whose points stand at least eight to a
-// feature of the given width.
+// GridFor is the transform size, 2^n or 3 2^n, whose points stand at least 22 to
+// a feature of the given width: as many as a kernel needs that follows such a
+// feature to a tolerance of 0.1 dB (its length is about 34 over the width).
 func GridFor(finest float64) int {
 	size := 1 << 12
-	for float64(size)*finest < 8*2*math.Pi && size < 32*MaxTaps {
-		size *= 2
+	for float64(size)*finest < 22*2*math.Pi && size < 32*MaxTaps {
+		size = larger(size)
 	}
 	return size
+}
+
+// larger is the next of the sizes 2^n and 3 2^n, for which transforms are fast.
+func larger(size int) int {
+	if size&(size-1) == 0 {
+		return size / 2 * 3
+	}
+	return size / 3 * 4
 }
 
 // cutSearch looks for the shortest cut of one zero-phase response.
@@ -198,7 +207,7 @@ func (w taper) at(n int) float64 {
 func CutTail(h []float64, t Target, finest float64) (cut []float64, ok bool) {
 	size := GridFor(finest)
 	for size < 4*len(h) {
-		size *= 2
+		size = larger(size)
 	}
 	grid := t.Sample(size)
 	most := min(len(h), negligible(h, guard*grid.floor))

@@ -99,10 +99,14 @@ const guard = 0.92
 func (g *Grid) Met(magnitude Magnitude) bool { return g.Excess(magnitude) <= guard }
 
 // Excess is the error over the tolerance at the worst point: 1 uses all of it.
-// NaN counts as without bound.
+// NaN counts as without bound. The target's own points, which cost most, are
+// only looked at when the grid is within bounds.
 func (g *Grid) Excess(magnitude Magnitude) float64 {
 	worst := 0.0
 	for i, high := range g.high {
+		if i == g.size/2+1 && worst > 1 {
+			break
+		}
 		m := g.at(magnitude, i)
 		if m <= high && m >= g.low[i] {
 			continue

@@ -1,6 +1,9 @@
 package response
 
-import "math"
+import (
+	"math"
+	"math/cmplx"
+)
 
 // System is a kernel, a cascade, and a cascade that runs forward and backward
 // in time, one after another. Nil taps stand for a kernel of the one tap 1.
@@ -58,4 +61,29 @@ func (s System) GroupDelay(size int) []float64 {
 		}
 	}
 	return tau
+}
+
+// PhaseDelay gives -arg H/omega in samples on the grid of Spectrum, the phase
+// unwrapped from the lowest bin that is stated, where it is taken between -pi
+// and pi: for a system whose phase there is 0, as that of every low-pass of
+// positive gain is at 0 Hz, it is the delay of a steady tone. NaN at 0 Hz and
+// where |H| is more than 60 dB under its maximum. size must be at least 8 times
+// the kernel's length, so that no turn is missed between two bins.
+func (s System) PhaseDelay(size int) []float64 {
+	h := s.Spectrum(size)
+	least := Stated * maxModulus(h)
+	out := make([]float64, len(h))
+	phase, last := 0.0, complex(1, 0)
+	for k, v := range h {
+		out[k] = math.NaN()
+		if modulus := cmplx.Abs(v); !(modulus > 0 && modulus >= least) {
+			continue
+		}
+		phase += cmplx.Phase(v * cmplx.Conj(last))
+		last = v
+		if k > 0 {
+			out[k] = -phase / (2 * math.Pi * float64(k) / float64(size))
+		}
+	}
+	return out
 }

@@ -27,8 +27,8 @@ func TapsAt(taps []float64, omega float64) complex128 {
 }
 
 // Spectrum returns bins 0..k/2 of the k-point transform of taps padded with
-// zeros: bin i is H(2 pi i/k), not normalised. It panics unless k is a power of
-// two, at least 2 and at least len(taps).
+// zeros: bin i is H(2 pi i/k), not normalised. It panics unless k is even, at
+// least 2 and at least len(taps). A k of small prime factors is fast.
 func Spectrum(taps []float64, k int) []complex128 {
 	return newPaddedFFT(k).transform(taps)
 }
@@ -71,8 +71,8 @@ type paddedFFT struct {
 }
 
 func newPaddedFFT(k int) *paddedFFT {
-	if k < 2 || k&(k-1) != 0 {
-		panic(fmt.Sprintf("response: transform length %d is not a power of two from 2 up", k))
+	if k < 2 || k%2 != 0 {
+		panic(fmt.Sprintf("response: transform length %d is not an even number from 2 up", k))
 	}
 	return &paddedFFT{fft: fourier.NewFFT(k), padded: make([]float64, k)}
 }
