@@ -71,7 +71,7 @@ func TestAuditJSON(t *testing.T) {
 // TestAuditJSONFile is the same document, and the table is printed too.
 func TestAuditJSONFile(t *testing.T) {
 	b := newBench(t)
-	chain, file := b.chain(filterChain), b.file("old.json", []byte("old"))
+	chain, file := b.chain(filterChain), b.file("old.json", []byte("{\n \"schema\": \"fettle.audit/1\",\n"))
 	dashed := fettle("audit", "chain", chain, "--rate", "8k", "--json", "-")
 	filed := fettle("audit", "chain", chain, "--rate", "8k", "--json", file)
 	filed.must(t, exitDone)

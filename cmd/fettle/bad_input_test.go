@@ -63,7 +63,7 @@ func TestTruncatedData(t *testing.T) {
 	b := newBench(t)
 	b.file("cut.wav", wav{tag: tagPCM, channels: 2, rate: rate, bits: 16, data: make([]byte, 4*50+3), claimed: 4 * 90}.bytes())
 	got := b.render(identityChain, b.path("cut.wav"))
-	got.must(t, exitDone)
+	got.must(t, exitDone, "cut.wav: warning: ", "200 bytes to the last whole frame", "50 frames")
 	b.mustHold("cut.wav")
 	entry := b.last()
 	mustEqual(t, "frames", entry["frames"], any(50.0))
@@ -130,6 +130,7 @@ func TestCannotStart(t *testing.T) {
 		{"--headroom without unit", render("--headroom", "3"), []string{"--headroom", `"3" has no unit`}},
 		{"--headroom that raises", render("--headroom", "-3 dB"), []string{"--headroom", "-3 dB", "raise"}},
 		{"bad --format", render("--format", "pcm12"), []string{"--format", "pcm12", "pcm24"}},
+		{"a phase that no rate helps", append(from(wrong("odd.yaml", "stages:\n  - highpass: {at: 70 Hz, order: 3}\n")), "--phase", "zero"), []string{"odd.yaml:2:5", "use order 4"}},
 		{"bad --phase", render("--phase", "sideways"), []string{"--phase", "sideways", "minimum"}},
 		{"bad --jobs", render("--jobs", "many"), []string{"jobs", "many"}},
 		{"--jobs 0", render("--jobs", "0"), []string{"--jobs", "0"}},
@@ -142,7 +143,13 @@ func TestCannotStart(t *testing.T) {
 		{"audit of nothing", []string{"audit", "chain"}, []string{"one chain file, not 0"}},
 		{"audit of two", []string{"audit", "chain", chain, chain}, []string{"one chain file, not 2"}},
 		{"audit of a missing chain", []string{"audit", "chain", b.path("gone.yaml")}, []string{"gone.yaml"}},
-		{"audit beyond half the rate", []string{"audit", "chain", "--rate", "150", chain}, []string{"chain.yaml:2:", "half"}},
+		{"audit beyond half the rate", []string{"audit", "chain", "--rate", "150 Hz", chain}, []string{"chain.yaml:2:", "half"}},
+		{"a rate without its k", []string{"audit", "chain", "--rate", "48", chain}, []string{"--rate", "48k or 48 Hz"}},
+		{"a recording for a chain", []string{"audit", "chain", in}, []string{"a.wav", "is a recording and not a chain"}},
+		{"a report over a recording", []string{"audit", "chain", "--json", in, chain}, []string{"a.wav", "no report of fettle's"}},
+		{"a report over the chain", []string{"audit", "chain", "--json", chain, chain}, []string{"chain.yaml", "no report of fettle's"}},
+		{"a report over an input", render("--json", in), []string{"a.wav", "no report of fettle's"}},
+		{"coefficients over a recording", []string{"export", "--as", "json", "--out", in, chain}, []string{"a.wav", "no report of fettle's"}},
 		{"audit --json below a file", []string{"audit", "chain", chain, "--json", chain + "/x"}, []string{"chain.yaml/x", "cannot be written"}},
 		{"--rate in words", []string{"audit", "chain", "--rate", "fast", chain}, []string{"--rate", "fast"}},
 		{"--rate of nothing", []string{"audit", "chain", "--rate", "0", chain}, []string{"--rate", "whole number"}},

@@ -137,3 +137,27 @@ func TestFlagsAnywhere(t *testing.T) {
 	b.mustHold("-b.wav", "a.wav")
 	mustEqual(t, "recorded input", b.record()[0]["input"], any(filepath.Join(b.path("in"), "-b.wav")))
 }
+
+// TestStrangers: what stands under an output's name in a folder without a
+// treatment record is somebody else's, unless --again says otherwise; with a
+// record the folder is fettle's.
+func TestStrangers(t *testing.T) {
+	b := newBench(t)
+	b.plain("a.wav")
+	mustDo(t, os.MkdirAll(b.Out, 0o777), os.WriteFile(filepath.Join(b.Out, "a.wav"), []byte("precious"), 0o666))
+	b.render(identityChain, b.path("a.wav")).must(t, exitNotStarted, "a.wav", "is there already", "--again")
+	mustEqual(t, "the file", string(read(t, filepath.Join(b.Out, "a.wav"))), "precious")
+	b.render(identityChain, "--again", b.path("a.wav")).must(t, exitDone)
+	mustDo(t, os.WriteFile(filepath.Join(b.Out, "a.wav"), []byte("edited"), 0o666))
+	b.render(identityChain, b.path("a.wav")).must(t, exitDone)
+	mustEqual(t, "the output", string(read(t, filepath.Join(b.Out, "a.wav"))), string(read(t, b.path("a.wav"))))
+}
+
+// TestTreatedFolders: outputs of an earlier batch below the inputs are no inputs.
+func TestTreatedFolders(t *testing.T) {
+	b := newBench(t)
+	b.plain("in/a.wav")
+	fettle("render", "--chain", b.chain(identityChain), "--out", b.path("in/first"), b.path("in")).must(t, exitDone)
+	b.render(identityChain, b.path("in")).must(t, exitDone)
+	b.mustHold("a.wav")
+}

@@ -17,19 +17,43 @@ import (
 	"github.com/urfave/cli/v2"
 )
 
+// ours is how a file begins that fettle wrote and may replace; a recording, a
+// chain or anybody's notes named by mistake must not be lost.
+var ours = []byte("{\n \"schema\": \"fettle.")
+
 // tryWriting proves before any work is done that writeTo will succeed.
 func tryWriting(name string) error {
 	if name == "" || name == "-" {
 		return nil
 	}
-	if info, err := os.Stat(name); err == nil && !info.Mode().IsRegular() {
-		return fmt.Errorf("%s: is not a file that can be replaced; choose another file", name)
+	if err := mayReplace(name); err != nil {
+		return err
 	}
 	f, err := renameio.NewPendingFile(name, beside(name))
 	if err != nil {
 		return unwritable(name, err)
 	}
 	return f.Cleanup()
+}
+
+func mayReplace(name string) error {
+	info, err := os.Stat(name)
+	switch {
+	case err != nil:
+		return nil // is not there, or writing will say what is wrong
+	case !info.Mode().IsRegular():
+		return fmt.Errorf("%s: is not a file that can be replaced; choose another file", name)
+	}
+	f, err := os.Open(name)
+	if err != nil {
+		return unwritable(name, err)
+	}
+	defer f.Close()
+	start := make([]byte, len(ours))
+	if n, _ := io.ReadFull(f, start); n > 0 && !bytes.Equal(start, ours) {
+		return fmt.Errorf("%s: is there already and is no report of fettle's; choose another file, or remove it", name)
+	}
+	return nil
 }
 
 // writeTo gives write a named file, which appears whole or not at all, or
@@ -40,6 +64,9 @@ func writeTo(c *cli.Context, name string, write func(io.Writer) error) error {
 		return nil
 	case "-":
 		return write(c.App.Writer)
+	}
+	if err := mayReplace(name); err != nil {
+		return err
 	}
 	var buf bytes.Buffer
 	if err := write(&buf); err != nil {

@@ -21,7 +21,7 @@ func renderCommand() *cli.Command {
 		Usage:     "clean recordings, aligned, with a treatment record",
 		UsageText: "fettle render [options] --chain CHAIN --out FOLDER INPUT...",
 		Description: "An input is a file, a folder or a quoted ** pattern; of folders and patterns,\n" +
-			".wav and .wave files are taken, hidden ones left aside.\n\n" +
+			".wav and .wave files are taken; hidden ones and output folders are not.\n\n" +
 			"Each recording keeps its length, rate, channels and sample format, and its\n" +
 			"name, below FOLDER. Originals are never written to. What was done is appended\n" +
 			"to FOLDER/" + batch.RecordName + "; a second run treats only what is new or changed.\n\n" +
@@ -158,6 +158,7 @@ func runPlan(c *cli.Context, plan *batch.Plan) error {
 	summary, err := plan.Run(c.Context, show)
 	show.close()
 	if summary != nil {
+		complain(c.App.ErrWriter, summary.Warnings)
 		complain(c.App.ErrWriter, summary.Failures)
 		if c.String("json") != "-" {
 			printSummary(c, plan, summary)
@@ -178,7 +179,7 @@ func printSummary(c *cli.Context, plan *batch.Plan, s *batch.Summary) {
 		n    int
 		what string
 	}{
-		{s.Skipped, "already done"}, {s.Failed(), "failed"}, {s.Left, "left"}, {s.Warnings, "with warnings in the record"},
+		{s.Skipped, "already done"}, {s.Failed(), "failed"}, {s.Left, "left"}, {len(s.Warnings), "warnings"}, {s.Uncarried, "without chunks that the record names"},
 	} {
 		if more.n > 0 {
 			fmt.Fprintf(c.App.Writer, ", %d %s", more.n, more.what)

@@ -31,7 +31,7 @@ func (p Problems) Unwrap() []error { return p }
 
 // Gather finds the recordings that files, folders and ** patterns name,
 // sorted by output path. Of folders and patterns it takes what ends in .wav or
-// .wave, hidden ones and anything below out left aside; a file named outright
+// .wave, hidden ones, other output folders and anything below out left aside; a file named outright
 // is taken whatever its ending. Links are followed to files, and to a folder
 // that is named outright. problems are what is named but cannot be taken. It
 // fails when there is nothing else.
@@ -103,13 +103,19 @@ func (g *gatherer) folder(root string) {
 		rel, _ := filepath.Rel(root, path) // path is below root
 		hidden := rel != "." && strings.HasPrefix(e.Name(), ".")
 		switch {
-		case e.IsDir() && rel != "." && (hidden || absolute(path) == g.out):
+		case e.IsDir() && rel != "." && (hidden || absolute(path) == g.out || isTreated(path)):
 			return fs.SkipDir
 		case !e.IsDir() && !hidden && isWAV(path) && !isFolder(path):
 			g.file(path, rel)
 		}
 		return nil
 	})
+}
+
+// isTreated tells an output folder: what is in it has been treated already.
+func isTreated(path string) bool {
+	_, err := os.Stat(filepath.Join(path, RecordName))
+	return err == nil
 }
 
 // linked makes a walk begin below root, be root a link or not.

@@ -79,6 +79,9 @@ func New(chain *filter.Chain, args []string, o Options) (*Plan, error) {
 	if err != nil {
 		return nil, err
 	}
+	if err := p.refuseStrangers(); err != nil {
+		return nil, err
+	}
 	for _, j := range p.Jobs {
 		j.inspect()
 		j.Done = !o.Again && p.isDone(j, past[j.Rel])
@@ -116,6 +119,20 @@ func (p *Plan) refuseHarm() error {
 		}
 		if strings.EqualFold(j.Rel, RecordName) {
 			return fmt.Errorf("%s: this output would replace the treatment record; give the recording another name", j.Output)
+		}
+	}
+	return nil
+}
+
+// refuseStrangers stops a batch from replacing files that are not fettle's own:
+// without a treatment record the output folder is somebody else's.
+func (p *Plan) refuseStrangers() error {
+	if _, err := os.Stat(p.recordPath()); err == nil || p.Options.Again {
+		return nil
+	}
+	for _, j := range p.Jobs {
+		if _, err := os.Lstat(j.Output); err == nil {
+			return fmt.Errorf("%s: is there already, and the folder has no %s that says it is an output; choose another folder for --out, or replace it with --again", j.Output, RecordName)
 		}
 	}
 	return nil

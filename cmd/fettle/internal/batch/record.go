@@ -28,14 +28,15 @@ const (
 )
 
 // Entry is one line of the treatment record: what was done to one recording.
-// Levels are
-// null where there is none, as in silence; of a failed recording, what was not
-// found out is empty, 0 or null.
+// Levels are null where there is none, as in silence; of a failed recording,
+// what was not found out is empty, 0 or null.
 type Entry struct {
 	Schema  string `json:"schema"`
 	Version string `json:"version"`
 	Status  string `json:"status"`
 	Error   string `json:"error"`
+
+	Treated time.Time `json:"treated"` // when it was begun
 
 	Input         name      `json:"input"`
 	Output        name      `json:"output"` // below the output folder
@@ -69,6 +70,8 @@ type Entry struct {
 	Dither               string   `json:"dither"`
 
 	Warnings []string `json:"warnings"`
+
+	loud int // how many of Warnings are said aloud; the last is of chunks left behind
 }
 
 // record appends entries to the treatment record, each flushed to disk.

@@ -30,12 +30,13 @@ func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) 
 	e.RateHz, e.Channels, e.Frames = format.SampleRate, format.NumChannels, rec.Frames()
 	e.FormatIn, e.FormatOut = rec.Encoding().String(), p.encoding(rec).String()
 	e.Warnings = append(e.Warnings, rec.Warnings()...)
-	e.Warnings = append(e.Warnings, notCarried(rec)...)
 	f, err := p.Filter(format.SampleRate)
 	if err != nil {
 		return fmt.Errorf("%s: %w", j.Path, err)
 	}
 	p.describe(e, f)
+	e.loud = len(e.Warnings)
+	e.Warnings = append(e.Warnings, notCarried(rec)...)
 	r := &rendering{plan: p, job: j, rec: rec, filter: f, entry: e, progress: progress}
 	r.gain = math.Pow(10, -p.Options.Headroom.DB/20)
 	return r.fit(ctx, r.pass(ctx))
@@ -68,10 +69,12 @@ func roundUp(db float64) float64 { return math.Ceil(db*10) / 10 }
 // describe fills in what the filter is.
 func (p *Plan) describe(e *Entry, f *filter.Filter) {
 	paths := f.Paths()
-	l := f.Latency(paths[len(paths)-1])
 	e.Phase = string(f.Phase())
-	e.LatencySamples, e.ResidualSamples = l.Removed, l.Residual
-	for _, path := range paths {
+	for i, path := range paths {
+		// Removed alike from all; what is left, of the channel that is worst off.
+		if l := f.Latency(path); i == 0 || math.Abs(l.Residual) > math.Abs(e.ResidualSamples) {
+			e.LatencySamples, e.ResidualSamples = l.Removed, l.Residual
+		}
 		for _, w := range path.Warnings {
 			if !slices.Contains(e.Warnings, w) {
 				e.Warnings = append(e.Warnings, w)

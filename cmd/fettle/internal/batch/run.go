@@ -8,6 +8,7 @@ import (
 	"path/filepath"
 	"slices"
 	"sync"
+	"time"
 
 	"fettle/audio"
 	"fettle/filter"
@@ -27,7 +28,8 @@ type Summary struct {
 	Done, Skipped int
 	Left          int      // not begun or not finished when the run was stopped
 	Failures      Problems // what could not be listed, then in the order of the plan
-	Warnings      int      // done, with warnings
+	Warnings      Problems // of those done, but for chunks that were not carried over
+	Uncarried     int      // done, with chunks that were not carried over
 }
 
 // Failed is how many recordings, or places to look for them, failed.
@@ -125,8 +127,11 @@ func (p *Plan) sum(results []result) *Summary {
 			s.Failures = append(s.Failures, r.err)
 		default:
 			s.Done++
-			if len(r.entry.Warnings) > 0 {
-				s.Warnings++
+			for _, w := range r.entry.Warnings[:r.entry.loud] {
+				s.Warnings = append(s.Warnings, fmt.Errorf("%s: warning: %s", p.Jobs[i].Path, w))
+			}
+			if len(r.entry.Warnings) > r.entry.loud {
+				s.Uncarried++
 			}
 		}
 	}
@@ -151,7 +156,8 @@ func (p *Plan) treat(ctx context.Context, j *Job, rec *record, progress Progress
 func (p *Plan) newEntry(j *Job) *Entry {
 	return &Entry{
 		Schema: RecordSchema, Version: p.Options.Version, Status: StatusDone,
-		Input: name(absolute(j.Path)), Output: name(filepath.ToSlash(j.Rel)),
+		Treated: time.Now().UTC().Truncate(time.Second),
+		Input:   name(absolute(j.Path)), Output: name(filepath.ToSlash(j.Rel)),
 		Chain: p.Chain.Name, ChainSHA256: fmt.Sprintf("%x", p.Chain.SHA256), Settings: p.settings(),
 		Edges: string(p.Chain.Edges), Kernel: filter.KernelName, Warnings: []string{},
 		HeadroomDB: p.Options.Headroom.DB, TruePeakOversampling: audio.TruePeakOversampling,
