@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"strconv"
 	"testing"
 
 	"fettle/filter/response"
@@ -163,14 +164,18 @@ func TestMinimumPhaseErrors(t *testing.T) {
 	wantError(t, try(make([]float64, 1<<20+1), 0.1), "shorten the kernel")
 }
 
-func BenchmarkMinimumPhase4095(b *testing.B) {
-	taps, err := WindowedSinc(Lowpass, 4095, KaiserBeta(100), true, 48000, 12000)
-	if err != nil {
-		b.Fatal(err)
-	}
-	for b.Loop() {
-		if _, _, err := MinimumPhase(taps, 0.1); err != nil {
+func BenchmarkMinimumPhase(b *testing.B) {
+	for _, n := range []int{4095, 16383} {
+		taps, err := WindowedSinc(Lowpass, n, KaiserBeta(100), true, 48000, 12000)
+		if err != nil {
 			b.Fatal(err)
 		}
+		b.Run(strconv.Itoa(n), func(b *testing.B) {
+			for b.Loop() {
+				if _, _, err := MinimumPhase(taps, 0.1); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
 	}
 }
