@@ -21,6 +21,11 @@ type Result struct {
 	// Taps, Sections and ZeroSections (run forward and backward) are what the
 	// path is made of.
 	Taps, Sections, ZeroSections int
+	// Operations is about how many multiplications a sample costs.
+	Operations float64
+	// Character says what kind of filter the path is; "" for a kernel too long
+	// to be told.
+	Character string
 	// Notes and Warnings are the path's.
 	Notes, Warnings []string
 	// TargetErrorDB and ToleranceDB: how far the magnitude strays from the
@@ -53,8 +58,11 @@ func auditPath(f *filter.Filter, p *filter.Path) (*Result, error) {
 		Channel: p.Channel, Shared: len(f.Paths()) == 1,
 		Latency: f.Latency(p), Delay: p.Delay,
 		Taps: len(p.System.Taps), Sections: len(p.System.Sections), ZeroSections: len(p.System.Zero),
-		Notes: p.Notes, Warnings: p.Warnings,
+		Operations: p.Operations(), Notes: p.Notes, Warnings: p.Warnings,
 		TargetErrorDB: p.TargetErrorDB(), ToleranceDB: f.Chain().Tolerance,
+	}
+	if c, ok := p.Character(); ok {
+		r.Character = c.String()
 	}
 	rate := float64(f.Rate())
 	b := newBench(f, p)

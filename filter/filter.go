@@ -6,6 +6,7 @@ import (
 	"slices"
 
 	"fettle/filter/design"
+	"fettle/filter/response"
 	"fettle/filter/stream"
 )
 
@@ -56,6 +57,34 @@ func (p *Path) ahead() int {
 	}
 	return stream.LookAhead(p.System.Zero)
 }
+
+// Operations is about how many multiplications a sample costs on a path: five a
+// section, and for sections run both ways that and half as much again backward.
+func (p *Path) Operations() float64 {
+	n := 5*float64(len(p.System.Sections)) + 5*2.5*float64(len(p.System.Zero))
+	if p.fir != nil {
+		n += p.fir.Operations()
+	}
+	return n
+}
+
+// Character says what kind of filter a path is; kernels of more than
+// longCharacter taps are only looked at for symmetry, ok is false then unless
+// they have it.
+func (p *Path) Character() (c response.Character, ok bool) {
+	s := p.System
+	if len(s.Taps) > longCharacter && response.Symmetry(s.Taps, symmetryTolerance) == response.None {
+		return response.Character{}, false
+	}
+	if len(s.Taps) > longCharacter {
+		return response.Character{Linear: response.Symmetry(s.Taps, symmetryTolerance), Margin: 1, Causal: len(s.Zero) == 0}, len(s.Sections) == 0
+	}
+	return s.Character(symmetryTolerance), true
+}
+
+// longCharacter bounds what counting a kernel's zeros may cost: two transforms
+// of 64 times its length.
+const longCharacter = 1 << 13
 
 // Shift is how many samples of a path's causal response (Path.Response) come
 // before the aligned instant.

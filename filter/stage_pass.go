@@ -26,6 +26,9 @@ var (
 // passReader reads highpass, lowpass, bandpass and bandstop.
 func passReader(k design.Kind) func(f *fields, _ *Chain) func(float64) (plan, error) {
 	return func(f *fields, _ *Chain) func(float64) (plan, error) {
+		if k == design.Bandpass && f.keys["q"] != nil {
+			return readResonator(f)
+		}
 		name := f.word("family", "butterworth", families...)
 		if kernel, ok := kernels[name]; ok {
 			f.owner += " of family " + name
@@ -43,6 +46,12 @@ func passReader(k design.Kind) func(f *fields, _ *Chain) func(float64) (plan, er
 		}
 		return readClassical(f, k, family)
 	}
+}
+
+// readResonator reads a band-pass by its one centre and its q.
+func readResonator(f *fields) func(float64) (plan, error) {
+	at, q := f.hz("at"), f.positive("q")
+	return biquad(func(rate float64) (response.Section, error) { return design.BandPass(rate, at, q) })
 }
 
 // edges reads one frequency, or two for a band filter.

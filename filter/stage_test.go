@@ -101,6 +101,7 @@ func TestFamilies(t *testing.T) {
 	}{
 		{"highpass: {at: 500 Hz, order: 5}", 500, -3.0103},
 		{"highpass: {at: 500 Hz, order: 5, family: bessel}", 500, -3.0103},
+		{"bandpass: {at: 500 Hz, q: 4}", 500, 0},
 		{"lowpass: {at: 500 Hz, order: 4, family: linkwitz-riley}", 500, -6.0206},
 		{"lowpass: {at: 500 Hz, order: 5, family: chebyshev1, ripple: 0.5 dB}", 500, -0.5},
 		{"lowpass: {at: 500 Hz, order: 5, family: chebyshev2, reject: 50 dB}", 500, -50},

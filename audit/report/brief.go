@@ -38,6 +38,7 @@ var briefRows = []struct {
 	{"", place},
 	{"realised as", func(r *audit.Result) string { return string(r.Phase) }},
 	{"taps / sections", func(r *audit.Result) string { return fmt.Sprintf("%d / %d", r.Taps, r.Sections+r.ZeroSections) }},
+	{"multiplications a sample", func(r *audit.Result) string { return decimal(r.Operations, 0) }},
 	{"off target, dB", func(r *audit.Result) string { return decimal(r.TargetErrorDB, 3) }},
 	{"latency removed, samples", func(r *audit.Result) string { return decimal(r.Latency.Removed, 2) }},
 	{"latency left, samples", func(r *audit.Result) string { return decimal(r.Latency.Residual, 2) }},

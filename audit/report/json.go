@@ -34,6 +34,8 @@ type result struct {
 	Taps              int               `json:"taps"`
 	Sections          int               `json:"sections"`
 	ZeroSections      int               `json:"zero_sections"` // run forward and backward
+	Operations        number            `json:"operations"`    // multiplications a sample, about
+	Character         *string           `json:"character"`
 	Notes             []string          `json:"notes"`
 	Warnings          []string          `json:"warnings"`
 	LeadMS            number            `json:"lead_ms"`
@@ -134,7 +136,7 @@ func resultOf(r *audit.Result) result {
 		LatencySamples: number(r.Latency.Removed), ResidualSamples: number(r.Latency.Residual),
 		DelaySamples: r.Delay, LookAheadSamples: r.Latency.LookAhead,
 		Taps: r.Taps, Sections: r.Sections, ZeroSections: r.ZeroSections,
-		Notes: append([]string{}, r.Notes...), Warnings: append([]string{}, r.Warnings...),
+		Operations: number(r.Operations), Notes: append([]string{}, r.Notes...), Warnings: append([]string{}, r.Warnings...),
 		LeadMS: ms(f.Lead), DelaySpreadMS: ms(f.DelaySpread),
 		PhaseDeviationDeg: number(f.PhaseDeviation), SumTestDB: number(f.SumTest),
 		TargetErrorDB: number(r.TargetErrorDB), ToleranceDB: number(r.ToleranceDB),
@@ -147,6 +149,9 @@ func resultOf(r *audit.Result) result {
 	}
 	for figure, reason := range f.NotStated {
 		out.NotStated[keyOf(figure)] = reason
+	}
+	if r.Character != "" {
+		out.Character = &r.Character
 	}
 	if r.Channel > 0 {
 		out.Channel = &r.Channel

@@ -31,9 +31,15 @@ func heading(b *strings.Builder, r *audit.Result) {
 	title := fmt.Sprintf("%s, %s, %s", clip(r.Chain, 48), r.Phase, place(r))
 	fmt.Fprintf(b, "%s\n%s\n", title, strings.Repeat("=", len([]rune(title))))
 	fmt.Fprintf(b, "  %-22s %s\n", "built as", builtOf(r))
+	if r.Character != "" {
+		fmt.Fprintf(b, "  %-22s %s\n", "which is", r.Character)
+	}
+	fmt.Fprintf(b, "  %-22s about %.0f multiplications a sample\n", "at a cost of", r.Operations)
+	label := "notes"
 	for _, note := range append(slices.Clone(r.Notes), r.Warnings...) {
 		for _, line := range wrapped(note, Width-25) {
-			fmt.Fprintf(b, "  %-22s %s\n", "", line)
+			fmt.Fprintf(b, "  %-22s %s\n", label, line)
+			label = ""
 		}
 	}
 	fmt.Fprintf(b, "  %-22s %s dB (tolerance %g dB)\n", "off target by at most", decimal(r.TargetErrorDB, 3), r.ToleranceDB)

@@ -172,6 +172,17 @@ func notch(c corner, alpha float64) response.Section {
 	return normalised(1, -2*c.cos, 1, 1+alpha, -2*c.cos, 1-alpha)
 }
 
+// BandPass returns the cookbook's band-pass of 0 dB at f0, whose -3 dB width is
+// f0/q in the limit of low f0.
+func BandPass(rate, f0, q float64) (response.Section, error) {
+	c, err := newCorner(rate, f0, quantity{"q", q})
+	if err != nil {
+		return response.Section{}, fmt.Errorf("bandpass: %w", err)
+	}
+	alpha := c.sin / (2 * q)
+	return normalised(alpha, 0, -alpha, 1+alpha, -2*c.cos, 1-alpha), nil
+}
+
 // AllPass returns the cookbook's second-order all-pass: gain 1 everywhere, phase
 // -180 degrees at f0, group delay 4 q/sin(w0) samples there.
 func AllPass(rate, f0, q float64) (response.Section, error) {

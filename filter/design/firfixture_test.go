@@ -1,11 +1,8 @@
 package design
 
 import (
-	"encoding/json"
 	"math"
 	"math/cmplx"
-	"os"
-	"sync"
 	"testing"
 
 	"fettle/filter/response"
@@ -35,21 +32,7 @@ func (c firCase) spec() BandSpec {
 	return BandSpec{Taps: c.N, Antisymmetric: c.Antisymmetric, Rate: c.Rate, Bands: c.Bands}
 }
 
-var firFixtures = sync.OnceValues(func() (*firFixture, error) {
-	text, err := os.ReadFile("testdata/fir.json")
-	if err != nil {
-		return nil, err
-	}
-	f := &firFixture{}
-	return f, json.Unmarshal(text, f)
-})
-
-func loadFIR(t *testing.T) *firFixture {
-	t.Helper()
-	f, err := firFixtures()
-	noError(t, err)
-	return f
-}
+var loadFIR = fixtureFile[firFixture]("fir.json")
 
 // worstTap returns the largest difference between kernels of one length.
 func worstTap(t *testing.T, got, want []float64) float64 {

@@ -84,21 +84,25 @@ type tapsCase struct {
 	Taps  []float64
 }
 
-var fixtures = sync.OnceValues(func() (*fixture, error) {
-	text, err := os.ReadFile("testdata/fixtures.json")
-	if err != nil {
-		return nil, err
+// fixtureFile reads a JSON file of testdata once, whoever asks.
+func fixtureFile[T any](name string) func(t *testing.T) *T {
+	read := sync.OnceValues(func() (*T, error) {
+		text, err := os.ReadFile("testdata/" + name)
+		if err != nil {
+			return nil, err
+		}
+		f := new(T)
+		return f, json.Unmarshal(text, f)
+	})
+	return func(t *testing.T) *T {
+		t.Helper()
+		f, err := read()
+		noError(t, err)
+		return f
 	}
-	f := &fixture{}
-	return f, json.Unmarshal(text, f)
-})
-
-func loadFixtures(t *testing.T) *fixture {
-	t.Helper()
-	f, err := fixtures()
-	noError(t, err)
-	return f
 }
+
+var loadFixtures = fixtureFile[fixture]("fixtures.json")
 
 func kindNamed(t *testing.T, name string) Kind {
 	t.Helper()

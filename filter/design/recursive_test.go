@@ -1,12 +1,9 @@
 package design
 
 import (
-	"encoding/json"
 	"fmt"
 	"math"
 	"math/cmplx"
-	"os"
-	"sync"
 	"testing"
 
 	"fettle/filter/response"
@@ -25,21 +22,7 @@ type recursiveFixture struct {
 	}
 }
 
-var recursiveFixtures = sync.OnceValues(func() (*recursiveFixture, error) {
-	text, err := os.ReadFile("testdata/recursive.json")
-	if err != nil {
-		return nil, err
-	}
-	f := &recursiveFixture{}
-	return f, json.Unmarshal(text, f)
-})
-
-func loadRecursive(t *testing.T) *recursiveFixture {
-	t.Helper()
-	f, err := recursiveFixtures()
-	noError(t, err)
-	return f
-}
+var loadRecursive = fixtureFile[recursiveFixture]("recursive.json")
 
 // familyNamesInTests are those byOrder knows.
 var familyNamesInTests = []string{"butterworth", "chebyshev1", "chebyshev2", "elliptic", "bessel", "bessel by delay", "linkwitz-riley"}

@@ -45,6 +45,9 @@ func (c Character) Phase() string {
 // String is a phrase for a report.
 func (c Character) String() string {
 	s := c.Phase() + " phase"
+	if c.Phase() == "mixed" {
+		s += fmt.Sprintf(", %d of %d zeros outside the unit circle", c.Outside, c.Inside+c.On+c.Outside)
+	}
 	if c.Linear != None {
 		s += " of " + c.Linear.String()
 	}

@@ -1,6 +1,9 @@
 package stream
 
-import "math/bits"
+import (
+	"math"
+	"math/bits"
+)
 
 // FIR is a filter of finite impulse response h[0] to h[len-1]:
 //
@@ -66,6 +69,19 @@ func blockSize(taps int) int {
 
 // Taps returns how many taps there are.
 func (f *FIR) Taps() int { return len(f.taps) }
+
+// Operations returns about how many multiplications a sample of one channel
+// costs: the taps themselves where they are summed directly; else, of a block of
+// N points that gives a hop of two signals, two transforms of 3/4 N log4 N complex
+// multiplications and N for the spectrum, four real ones each.
+func (f *FIR) Operations() float64 {
+	n := float64(len(f.spectrum))
+	if n == 0 {
+		return float64(len(f.taps))
+	}
+	hop := n - float64(len(f.taps)) + 1
+	return 4 * n * (2*0.75*math.Log2(n)/2 + 1) / (2 * hop)
+}
 
 // Kernel returns a kernel for one stream of so many channels, one or more; it
 // panics if there are none. Its Tail is Taps()-1. Its Delay is 0 where the
