@@ -8,12 +8,14 @@
 //     ring before the event, and a latency of half the kernel.
 //   - Minimum: one kernel whose energy comes as early as the magnitude lets it.
 //   - IIR: each stage's classical recursive design, as second-order sections.
+//   - Zero: sections run forward and backward, each way half of the magnitude: no
+//     phase, and a deviation from the target that is stated.
 //   - Given: every stage as its coefficients say; a stage with a specification
 //     takes its natural form, recursive for the classical families, a linear
 //     kernel for a mask.
 //
-// All realisations meet the same target magnitude (see Filter.TargetErrorDB),
-// so a comparison between them changes phase and nothing else. Stages delay
+// All realisations but Zero meet the same target magnitude (see
+// Path.TargetErrorDB), so a comparison between them changes phase only. Stages delay
 // and allpass are intent: every realisation keeps them.
 //
 // A Filter is immutable and shared by all workers; state lives in the Source

@@ -51,5 +51,11 @@ type recordingError struct{ ChainError }
 
 func (e *recordingError) Unwrap() error { return ErrForRecording }
 
-// own is a copy of the error that is of the chain and not of one recording.
-func (e ChainError) own() error { return &e }
+// errPhase marks what no rate could help: a stage that has no such realisation.
+var errPhase = errors.New("no such realisation")
+
+// phaseError says so in the user's terms.
+type phaseError string
+
+func (e phaseError) Error() string        { return string(e) }
+func (e phaseError) Is(target error) bool { return target == errPhase }

@@ -10,8 +10,6 @@ import (
 	"fettle/filter/design"
 	"fettle/filter/response"
 	"fettle/filter/stream"
-
-	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // Filter is a chain realised at one rate.
@@ -68,7 +66,7 @@ func (c *Chain) Realise(rate int, as Realisation) (*Filter, error) {
 	f.align = f.alignPaths()
 	for _, p := range f.paths {
 		if err := p.shiftFraction(f.align.fraction(p)); err != nil {
-			return nil, c.groupError(err)
+			return nil, &recordingError{ChainError{File: c.File, Msg: err.Error()}}
 		}
 		if p.System.Taps != nil {
 			p.fir = stream.NewFIR(p.System.Taps)
@@ -95,8 +93,7 @@ func (c *Chain) namedChannels() []int {
 // realisePath builds what one channel goes through.
 func (c *Chain) realisePath(channel int, rate float64, as Realisation) (*Path, error) {
 	p := &Path{Channel: channel}
-	var linear, minimum group
-	b := parts{gain: 1}
+	b := parts{gain: 1, tolerance: c.Tolerance}
 	for i, s := range c.Stages {
 		if !s.serves(channel) || !s.When.Holds(rate) {
 			continue
@@ -106,35 +103,17 @@ func (c *Chain) realisePath(channel int, rate float64, as Realisation) (*Path, e
 			return nil, c.stageError(i, err)
 		}
 		m := member{s, s.phaseUnder(c.Phase, as), planned}
+		if err := b.add(m); err != nil {
+			return nil, c.stageError(i, err)
+		}
 		p.members = append(p.members, m)
 		p.Notes = append(p.Notes, m.notes...)
 		p.Warnings = append(p.Warnings, m.warnings...)
-		switch {
-		case s.kind.intent, m.phase == Given, m.phase == IIR:
-			err = b.asGiven(m)
-		case m.phase == Zero:
-			err = b.forwardBackward(m)
-		case m.mask != nil || m.taps != nil:
-			err = b.kernel(m, c.Tolerance)
-		case m.phase == Linear:
-			linear = append(linear, m)
-		default:
-			minimum = append(minimum, m)
-		}
-		if errors.Is(err, errPhase) {
-			return nil, c.stageError(i, err).ChainError.own()
-		}
-		if err != nil {
-			return nil, c.stageError(i, err)
-		}
 	}
-	if err := b.linear(linear, c.Tolerance); err != nil {
-		return nil, c.groupError(err)
+	if err := b.finish(); err != nil {
+		return nil, &recordingError{ChainError{File: c.File, Msg: err.Error()}}
 	}
-	if err := b.minimum(minimum, c.Tolerance); err != nil {
-		return nil, c.groupError(err)
-	}
-	p.remark(linear)
+	p.remark(b.linear)
 	p.take(b)
 	p.target = sync.OnceValue(func() float64 { return p.measureTarget(c.Tolerance) })
 	return p, nil
@@ -153,184 +132,16 @@ func (p *Path) remark(linear group) {
 	}
 }
 
-// errPhase marks what no rate could help: a stage that has no such realisation.
-var errPhase = errors.New("no such realisation")
-
-// phaseError says so in the user's terms.
-type phaseError string
-
-func (e phaseError) Error() string        { return string(e) }
-func (e phaseError) Is(target error) bool { return target == errPhase }
-
-func (c *Chain) stageError(i int, err error) *recordingError {
+// stageError puts an error in a stage's place: of the chain itself where no
+// rate could help, else of recordings at this rate.
+func (c *Chain) stageError(i int, err error) error {
 	s := c.Stages[i]
-	return &recordingError{ChainError{c.File, s.at.line, s.at.column, fmt.Sprintf("stage %d, %s: %v", i+1, s.Kind, err)}}
+	e := ChainError{c.File, s.at.line, s.at.column, fmt.Sprintf("stage %d, %s: %v", i+1, s.Kind, err)}
+	if errors.Is(err, errPhase) {
+		return &e
+	}
+	return &recordingError{e}
 }
-
-func (c *Chain) groupError(err error) error {
-	return &recordingError{ChainError{File: c.File, Msg: err.Error()}}
-}
-
-// parts gathers a path while its stages are realised.
-type parts struct {
-	gain     float64
-	delay    float64
-	taps     []float64
-	sections []response.Section
-	zero     []response.Section
-}
-
-// forwardBackward adds a stage as sections to be run both ways.
-func (b *parts) forwardBackward(m member) error {
-	if m.half == nil {
-		return phaseError("given coefficients cannot be run both ways without squaring their magnitude; ask for linear, or write phase: given at this stage to keep it")
-	}
-	sections, err := m.half()
-	if err == nil {
-		b.zero = append(b.zero, sections...)
-		b.gain *= m.gain
-	}
-	return err
-}
-
-// asGiven adds a stage in its own form: recursive, a given kernel, or, for a
-// mask, a linear kernel; under iir a mask becomes an elliptic filter.
-func (b *parts) asGiven(m member) error {
-	b.gain *= m.gain
-	b.delay += m.delay
-	b.sections = append(b.sections, m.sections...)
-	switch {
-	case m.taps != nil && m.phase == IIR:
-		return phaseError("a given kernel has no recursive form; ask for linear or minimum, or write phase: given at this stage to keep it")
-	case m.taps != nil:
-		b.convolve(m.taps)
-	case m.mask != nil && m.phase == IIR:
-		zpk, _, err := design.EllipticFor(*m.mask)
-		if err != nil {
-			return err
-		}
-		b.sections = append(b.sections, zpk.Sections()...)
-	case m.mask != nil:
-		return b.maskKernel(m)
-	}
-	return nil
-}
-
-func (b *parts) maskKernel(m member) error {
-	taps, err := m.kernel(*m.mask)
-	if err == nil {
-		b.convolve(taps)
-	}
-	return err
-}
-
-// kernel adds a mask or a given kernel as linear or minimum phase.
-func (b *parts) kernel(m member, tolerance float64) error {
-	switch {
-	case m.mask != nil && m.phase == Linear:
-		return b.maskKernel(m)
-	case m.mask != nil:
-		taps, err := design.MinimumPhaseMask(*m.mask, m.kernel)
-		if err == nil {
-			b.convolve(taps)
-		}
-		return err
-	case m.phase == Linear && response.Symmetry(m.taps, symmetryTolerance) != response.None:
-		b.convolve(m.taps)
-		return nil
-	case m.phase == Linear:
-		return b.linear(group{m}, tolerance)
-	}
-	taps, _, err := design.MinimumPhase(m.taps, tolerance)
-	if err == nil {
-		b.convolve(taps)
-	}
-	return err
-}
-
-// symmetryTolerance, relative to the greatest tap, allows for taps printed
-// with twelve digits.
-const symmetryTolerance = 1e-11
-
-// linear adds stages as one symmetric kernel.
-func (b *parts) linear(g group, tolerance float64) error {
-	if len(g) == 0 {
-		return nil
-	}
-	taps, err := design.LinearPhase(g.aim(tolerance), g.finest())
-	if err == nil {
-		b.convolve(taps)
-	}
-	return err
-}
-
-// minimum adds stages that have poles and zeros as one minimum-phase kernel:
-// their own impulse response, zeros reflected, cut below the tolerance.
-func (b *parts) minimum(g group, tolerance float64) error {
-	if len(g) == 0 {
-		return nil
-	}
-	var sections []response.Section
-	gain := 1.0
-	for _, m := range g {
-		reflected, err := design.ReflectSections(m.sections)
-		if err != nil {
-			return err
-		}
-		sections = append(sections, reflected...)
-		gain *= m.gain
-	}
-	target := g.target(tolerance)
-	for n := 1024; n <= 2*design.MaxTaps; n *= 2 {
-		h := response.Impulse(sections, n)
-		if cut, ok := design.CutTail(h, target, g.finest()); ok && len(cut) <= design.MaxTaps {
-			b.convolve(scaled(cut, gain))
-			return nil
-		}
-	}
-	return &design.LengthError{Realisation: "minimum-phase"}
-}
-
-func scaled(taps []float64, by float64) []float64 {
-	out := make([]float64, len(taps))
-	for i, v := range taps {
-		out[i] = v * by
-	}
-	return out
-}
-
-// convolve makes taps follow the kernel so far.
-func (b *parts) convolve(taps []float64) {
-	if b.taps == nil {
-		b.taps = append([]float64(nil), taps...)
-		return
-	}
-	b.taps = convolve(b.taps, taps)
-}
-
-// convolve is the full linear convolution of two kernels. Two symmetric
-// kernels give one that is symmetric to the last bit, so that rounding can't
-// cost linear phase its name.
-func convolve(x, y []float64) []float64 {
-	n := len(x) + len(y) - 1
-	size := response.NextPow2(n)
-	fft := fourier.NewFFT(size)
-	a := fft.Coefficients(nil, append(append(make([]float64, 0, size), x...), make([]float64, size-len(x))...))
-	c := fft.Coefficients(nil, append(append(make([]float64, 0, size), y...), make([]float64, size-len(y))...))
-	for k := range a {
-		a[k] *= c[k] / complex(float64(size), 0)
-	}
-	out := fft.Sequence(nil, a)[:n]
-	if isSymmetric(x) && isSymmetric(y) {
-		for i, j := 0, n-1; i < j; i, j = i+1, j-1 {
-			mean := (out[i] + out[j]) / 2
-			out[i], out[j] = mean, mean
-		}
-	}
-	return out
-}
-
-func isSymmetric(h []float64) bool { return response.Symmetry(h, 0).Symmetric() }
 
 // take turns the gathered parts into the path, the gain folded into whatever
 // is there to hold it.
