@@ -78,7 +78,7 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 	app := &cli.App{
 		Name:      "fettle",
 		Usage:     "clean recordings, aligned to the sample",
-		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN",
+		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN\nfettle export CHAIN",
 		Description: "Puts recordings through one chain of filters and hands them back aligned\n" +
 			"to the sample, with a record of what was done; and says in numbers what\n" +
 			"the chain does to time. Flags may stand before or after arguments.",

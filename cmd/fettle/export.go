@@ -23,7 +23,7 @@ func exportCommand() *cli.Command {
 			rateFlag(),
 			phaseFlag(),
 			&cli.StringFlag{Name: "as", Value: string(filter.FormJSON), Usage: "write `FORM`: taps, biquads, json or wav"},
-			&cli.IntFlag{Name: "channel", Usage: "of channel `N`, where the chain treats channels apart"},
+			&cli.IntFlag{Name: "channel", Usage: "of channel `N`, where the chain treats channels apart", DefaultText: "any"},
 			&cli.StringFlag{Name: "out", Value: "-", Usage: "write to `FILE` (-: standard output)"},
 		},
 		Action: export,
