@@ -107,7 +107,7 @@ func TestZeroPhaseCorners(t *testing.T) {
 func TestZeroPhaseKeepsFrames(t *testing.T) {
 	f := realised(t, "phase: zero\nstages: [{highpass: {at: 120 Hz, order: 2}}, {bell: {at: 2 kHz, gain: 3 dB, q: 1}}]", 16000, Written)
 	for _, frames := range []int{1, 500, 30000} {
-		x := clicks(frames, 400)
+		x, _ := clicks(frames, 400)
 		y := applied(t, f, 1, x, 777)
 		if lag := correlationPeak(x, y); lag != 0 || len(y) != frames {
 			t.Errorf("%d frames: %d came out, best at lag %d", frames, len(y), lag)

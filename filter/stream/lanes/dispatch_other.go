@@ -1,0 +1,35 @@
+//go:build !amd64 || purego
+
+package lanes
+
+func (k Kernel) available() bool { return k == Portable }
+
+// The methods of engine are the passes.
+
+func (e engine) split2(x []float64, step, n, count int, w []twiddle) {
+	split2Generic(x, e.lanes, step, n, count, w)
+}
+
+func (e engine) join2(x []float64, step, n, count int, w []twiddle) {
+	join2Generic(x, e.lanes, step, n, count, w)
+}
+
+func (e engine) split4(x []float64, step, n, count int, w []twiddle) {
+	split4Generic(x, e.lanes, step, n, count, w)
+}
+
+func (e engine) join4(x []float64, step, n, count int, w []twiddle) {
+	join4Generic(x, e.lanes, step, n, count, w)
+}
+
+func (e engine) product(x []float64, count int, spectrum []complex128, w []twiddle) {
+	productGeneric(x, e.lanes, count, spectrum, w)
+}
+
+func (e engine) interleave4(x []float64, step int, signals *[4][]float64) {
+	interleave4Generic(x, step, signals)
+}
+
+func (e engine) deinterleave4(signals *[4][]float64, x []float64, step int) {
+	deinterleave4Generic(signals, x, step)
+}

@@ -1,0 +1,2 @@
+// Package lanes convolves.
+package lanes
