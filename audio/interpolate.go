@@ -30,9 +30,7 @@ var interpolator = newInterpolator()
 type interpolate struct {
 	middle    half // phase 2, of the sums
 	even, odd half // phase 1 = even of the sums + odd of the differences; phase 3 = even - odd
-	// norm bounds |output| / max |input|: the largest sum of magnitudes of a
-	// phase's taps, raised by more than rounding can add.
-	norm float64
+	bounds
 }
 
 func newInterpolator() (h interpolate) {
@@ -43,7 +41,7 @@ func newInterpolator() (h interpolate) {
 		h.odd[k] = (quarter[k] - mirrored) / 2
 		h.middle[k] = middle[k]
 	}
-	h.norm = max(magnitudes(quarter), magnitudes(middle)) * (1 + 1e-12)
+	h.bounds = newBounds(quarter, middle)
 	return h
 }
 
@@ -61,24 +59,34 @@ func designPhase(t float64) (h window) {
 	return h
 }
 
-func magnitudes(h window) float64 {
-	sum := 0.
-	for _, c := range h {
-		sum += math.Abs(c)
-	}
-	return sum
-}
-
 // peak is the largest magnitude of the three points.
 func (h *interpolate) peak(x *window) float64 {
-	var middle, even, odd float64
-	for k := range h.middle {
-		sum, difference := x[k]+x[len(x)-1-k], x[k]-x[len(x)-1-k]
-		middle += h.middle[k] * sum
-		even += h.even[k] * sum
-		odd += h.odd[k] * difference
-	}
-	return max(math.Abs(middle), math.Abs(even)+math.Abs(odd))
+	return max(h.middlePeak(x), h.sidePeak(x))
+}
+
+// middlePeak is the magnitude at n + 2/4. Written out, here and below, the sums
+// take three quarters of the time of a loop.
+func (h *interpolate) middlePeak(x *window) float64 {
+	m := &h.middle
+	middle := m[0]*(x[0]+x[23]) + m[1]*(x[1]+x[22]) + m[2]*(x[2]+x[21]) +
+		m[3]*(x[3]+x[20]) + m[4]*(x[4]+x[19]) + m[5]*(x[5]+x[18]) +
+		m[6]*(x[6]+x[17]) + m[7]*(x[7]+x[16]) + m[8]*(x[8]+x[15]) +
+		m[9]*(x[9]+x[14]) + m[10]*(x[10]+x[13]) + m[11]*(x[11]+x[12])
+	return math.Abs(middle)
+}
+
+// sidePeak is the larger magnitude at n + 1/4 and n + 3/4.
+func (h *interpolate) sidePeak(x *window) float64 {
+	e, o := &h.even, &h.odd
+	even := e[0]*(x[0]+x[23]) + e[1]*(x[1]+x[22]) + e[2]*(x[2]+x[21]) +
+		e[3]*(x[3]+x[20]) + e[4]*(x[4]+x[19]) + e[5]*(x[5]+x[18]) +
+		e[6]*(x[6]+x[17]) + e[7]*(x[7]+x[16]) + e[8]*(x[8]+x[15]) +
+		e[9]*(x[9]+x[14]) + e[10]*(x[10]+x[13]) + e[11]*(x[11]+x[12])
+	odd := o[0]*(x[0]-x[23]) + o[1]*(x[1]-x[22]) + o[2]*(x[2]-x[21]) +
+		o[3]*(x[3]-x[20]) + o[4]*(x[4]-x[19]) + o[5]*(x[5]-x[18]) +
+		o[6]*(x[6]-x[17]) + o[7]*(x[7]-x[16]) + o[8]*(x[8]-x[15]) +
+		o[9]*(x[9]-x[14]) + o[10]*(x[10]-x[13]) + o[11]*(x[11]-x[12])
+	return math.Abs(even) + math.Abs(odd)
 }
 
 func sinc(t float64) float64 {

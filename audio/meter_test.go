@@ -3,6 +3,7 @@ package audio
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -39,18 +40,32 @@ func slowTruePeak(x []float64) float64 {
 	return peak
 }
 
+// everyWindow runs the interpolator at every frame, and passes nothing over.
+func everyWindow(x []float64) float64 {
+	silence := make([]float64, interpolatorTaps)
+	padded := slices.Concat(silence, x, silence)
+	peak := largest(x)
+	for i := range len(padded) - interpolatorTaps + 1 {
+		peak = max(peak, interpolator.peak((*window)(padded[i:])))
+	}
+	return peak
+}
+
 // TestTruePeakTwin: 24 products of samples up to 1 and taps whose magnitudes
 // sum to 2.4 round to within 24*2.4*2^-53 = 6e-15.
 func TestTruePeakTwin(t *testing.T) {
 	const tolerance = 1e-14
 	rapid.Check(t, func(t *rapid.T) {
 		x := rapid.SliceOfN(rapid.Float64Range(-1, 1), 0, 120).Draw(t, "x")
+		if rapid.Bool().Draw(t, "hard") {
+			x = drawHard(t, rapid.SampledFrom([]int{5, 40, 120}).Draw(t, "frames"))
+		}
 		if rapid.Bool().Draw(t, "quiet in parts") {
 			for i := range x {
 				x[i] *= math.Pow(0.5, float64(i/16))
 			}
 		}
-		channels := rapid.SampledFrom([]int{1, meterBlock / piece}).Draw(t, "channels") // blocks of 4096 and of 8 frames
+		channels := rapid.SampledFrom([]int{1, 2, 3, 8, meterBlock / piece}).Draw(t, "channels") // the last: blocks of 8 frames
 		spread := make([]float64, len(x)*channels)
 		for i, v := range x {
 			spread[(i+1)*channels-1] = v
@@ -58,6 +73,31 @@ func TestTruePeakTwin(t *testing.T) {
 		got, want := metered(spread, channels).TruePeak(), slowTruePeak(x)
 		if !(math.Abs(got-want) <= tolerance) {
 			t.Fatalf("true peak %.17g, twin %.17g, allowed %g", got, want, tolerance)
+		}
+	})
+}
+
+// TestSparingChangesNothing: the same bits as without passing anything over, in
+// several blocks, for channels of different signals, in any split.
+func TestSparingChangesNothing(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		channels := rapid.SampledFrom([]int{1, 2, 3, 8}).Draw(t, "channels")
+		frames := rapid.SampledFrom([]int{1, 20, 333, meterBlock / channels, 3*meterBlock/channels + 5}).Draw(t, "frames")
+		each := make([][]float64, channels)
+		sample, truePeak := 0., 0.
+		for c := range each {
+			each[c] = drawHard(t, frames)
+			sample = max(sample, slices.Max(each[c]), -slices.Min(each[c]))
+			truePeak = max(truePeak, everyWindow(each[c]))
+		}
+		m := NewMeter(channels)
+		for x := interleave(each); len(x) > 0; {
+			n := min(len(x), channels*rapid.IntRange(1, 2000).Draw(t, "call"))
+			m.Add(x[:n])
+			x = x[n:]
+		}
+		if m.TruePeak() != truePeak || m.SamplePeak() != sample {
+			t.Fatalf("true peak %.17g, sample peak %.17g; of every window %.17g, %.17g", m.TruePeak(), m.SamplePeak(), truePeak, sample)
 		}
 	})
 }
@@ -89,11 +129,7 @@ func TestMeterSplit(t *testing.T) {
 // TestChannelsDoNotMix: several channels give the largest of each alone.
 func TestChannelsDoNotMix(t *testing.T) {
 	a, b := sine(500, 0.11, 0.5), sine(500, 0.37, 0.6)
-	x := make([]float64, 0, 1000)
-	for i := range a {
-		x = append(x, a[i], b[i])
-	}
-	both, alone := metered(x, 2), max(metered(a, 1).TruePeak(), metered(b, 1).TruePeak())
+	both, alone := metered(interleave([][]float64{a, b}), 2), max(metered(a, 1).TruePeak(), metered(b, 1).TruePeak())
 	if both.TruePeak() != alone {
 		t.Errorf("true peak %v, of the channels alone %v", both.TruePeak(), alone)
 	}
@@ -190,11 +226,35 @@ func TestNothingIsPassedOver(t *testing.T) {
 	h := designPhase(2. / 4)
 	x := append([]float64{1}, make([]float64, 50)...)
 	for _, c := range h {
-		x = append(x, math.Copysign(want/magnitudes(h), c))
+		x = append(x, math.Copysign(want/magnitudes(h[:]), c))
 	}
 	// As many roundings as in TestTruePeakTwin.
 	if got := metered(x, 1).TruePeak(); !(math.Abs(got-want) <= 1e-14) {
 		t.Errorf("true peak %.17g, want %g", got, want)
+	}
+}
+
+// TestEveryPlaceCounts: two equal samples swing over between them wherever they
+// are, at the ends of blocks too.
+func TestEveryPlaceCounts(t *testing.T) {
+	want := everyWindow([]float64{1, 1})
+	for _, channels := range []int{1, meterBlock / piece} {
+		block := meterBlock / channels
+		for at := range 3 * block {
+			if at%block > 40 && at%block < block-40 {
+				continue
+			}
+			m := metered(make([]float64, at*channels), channels)
+			for _, v := range []float64{1, 1, 0, 0, 0, 0, 0} {
+				frame := make([]float64, channels)
+				frame[0] = v
+				m.Add(frame)
+			}
+			m.Add(make([]float64, 2*meterBlock)) // the end is not what is looked at
+			if m.TruePeak() != want {
+				t.Fatalf("%d channels, at frame %d: true peak %v, want %v", channels, at, m.TruePeak(), want)
+			}
+		}
 	}
 }
 
