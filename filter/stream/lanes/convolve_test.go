@@ -131,6 +131,18 @@ func TestTwinsAgree(t *testing.T) {
 	})
 }
 
+// TestLargeBlock goes three levels deep in two passes at once.
+func TestLargeBlock(t *testing.T) {
+	const size = 1 << 20
+	p := newPlan([]float64{0, 0, 1}, size, engine{Best(), Best().Lanes()})
+	x := p.noise(9)
+	y := slices.Clone(x)
+	p.Convolve(y)
+	shift := 2 * 2 * p.lanes
+	want := slices.Concat(x[len(x)-shift:], x[:len(x)-shift])
+	compare(t, "shift by 2", y, want, blockError(size, []float64{1}, norm(signal(x, p.lanes, 0))))
+}
+
 // TestLanesAreIndependent: whatever stands in the other blocks, be it NaN, a
 // block gives the same bits; and so it does in another place.
 func TestLanesAreIndependent(t *testing.T) {
@@ -160,9 +172,7 @@ func (p *Plan) convolveAmong(block []float64, lane int, other float64) []float64
 	return slices.Concat(signal(x, p.lanes, lane), signal(x, p.lanes, p.lanes+lane))
 }
 
-// TestConvolveIsExactOnFewBits: with integers and a size of 4 x 8 the factors
-// are no longer exact, so an impulse of taps at 0 is the only exact case: every
-// spectrum point is 1/N, and zeros stay zeros.
+// TestSilenceStaysSilent, exactly.
 func TestSilenceStaysSilent(t *testing.T) {
 	atEachSize(t, func(t *testing.T, e engine, size int) {
 		p := newPlan(noise(70, size), size, e)

@@ -13,7 +13,7 @@ func (k Kernel) available() bool {
 	case AVX2:
 		return cpu.X86.HasAVX2 && cpu.X86.HasFMA
 	case AVX512:
-		return cpu.X86.HasAVX512F
+		return cpu.X86.HasAVX512F && AVX2.available() // it shares interleave4
 	}
 	return false
 }

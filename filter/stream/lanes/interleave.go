@@ -18,13 +18,7 @@ func (p *Plan) Load(x []float64, signals [][]float64) {
 	for at := 0; at < p.size; at += stretch {
 		n := min(stretch, p.size-at)
 		for s := 0; s < len(signals); s += 4 {
-			var group [4][]float64
-			for i := range group {
-				group[i] = silence[:n]
-				if signal := signals[s+i]; signal != nil {
-					group[i] = signal[at:][:n]
-				}
-			}
+			group := cut(signals[s:s+4], at, silence[:n])
 			p.interleave4(p.from(x, at)[s:], 2*p.lanes, &group)
 		}
 	}
@@ -32,7 +26,7 @@ func (p *Plan) Load(x []float64, signals [][]float64) {
 
 // Store is the inverse of Load, for the ends of the blocks: signals[l] gets the
 // last len(signals[l]) real parts of block l, signals[Lanes()+l] imaginary parts.
-// All that are not nil, and so not wanted, must be of one length, at most Size().
+// They are of one length, at most Size(); nil stands for one that is not wanted.
 //
 // It panics if the number of signals is not 2 Lanes() or a length is out of range.
 func (p *Plan) Store(signals [][]float64, x []float64) {
@@ -42,19 +36,25 @@ func (p *Plan) Store(signals [][]float64, x []float64) {
 	for at := 0; at < keep; at += stretch {
 		n := min(stretch, keep-at)
 		for s := 0; s < len(signals); s += 4 {
-			var group [4][]float64
-			for i := range group {
-				group[i] = unwanted[:n]
-				if signal := signals[s+i]; signal != nil {
-					group[i] = signal[at:][:n]
-				}
-			}
+			group := cut(signals[s:s+4], at, unwanted[:n])
 			p.deinterleave4(&group, p.from(x, p.size-keep+at)[s:], 2*p.lanes)
 		}
 	}
 }
 
-// stretch is in points.
+// cut returns a stretch of four signals, as long as instead, which stands for
+// those that are nil.
+func cut(signals [][]float64, at int, instead []float64) (group [4][]float64) {
+	for i, signal := range signals {
+		group[i] = instead
+		if signal != nil {
+			group[i] = signal[at:][:len(instead)]
+		}
+	}
+	return group
+}
+
+// stretch is in points. 32 to 256 measure alike.
 const stretch = 256
 
 var silence [stretch]float64 // never written to
@@ -66,17 +66,17 @@ func (p *Plan) checkShape(what string, x []float64, signals [][]float64) {
 	}
 }
 
-// kept returns the common length of the signals that are wanted.
+// kept returns the common length of the signals that are wanted, 0 if none is.
 func (p *Plan) kept(signals [][]float64) int {
-	keep := -1
+	keep, first := 0, true
 	for s, signal := range signals {
 		if signal == nil {
 			continue
 		}
-		if len(signal) > p.size || keep >= 0 && len(signal) != keep {
-			panic(fmt.Sprintf("lanes: Store of %d samples in signal %d: all must be of one length, at most %d", len(signal), s, p.size))
+		if len(signal) > p.size || !first && len(signal) != keep {
+			panic(fmt.Sprintf("lanes: %d samples to store in signal %d: all must be of one length, at most %d", len(signal), s, p.size))
 		}
-		keep = len(signal)
+		keep, first = len(signal), false
 	}
 	return keep
 }

@@ -14,7 +14,7 @@ const (
 	Portable Kernel = iota
 	// AVX2 needs an amd64 processor with AVX2 and FMA.
 	AVX2
-	// AVX512 needs an amd64 processor with AVX-512 Foundation.
+	// AVX512 needs an amd64 processor with AVX-512 Foundation, AVX2 and FMA.
 	AVX512
 )
 
@@ -26,7 +26,7 @@ var kernels = [...]struct {
 }{
 	Portable: {"portable", 4, "nothing"},
 	AVX2:     {"avx2", 4, "AVX2 and FMA"},
-	AVX512:   {"avx512", 8, "AVX-512 Foundation"},
+	AVX512:   {"avx512", 8, "AVX-512 Foundation, AVX2 and FMA"},
 }
 
 // String returns the name that ParseKernel takes.

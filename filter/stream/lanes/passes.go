@@ -54,17 +54,13 @@ func join2Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 func split4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 	for b := range count {
 		x0, x1, x2, x3 := rows(x[b*8*lanes*step:], lanes, step, n)
-		f := w[b]
+		f := &w[b]
 		for i := 0; i < len(x0); i += 2 * lanes {
 			for r := i; r < i+lanes; r++ {
 				m := r + lanes
-				br, bi := times(x1[r], x1[m], real(f.w1), imag(f.w1))
-				cr, ci := times(x2[r], x2[m], real(f.w2), imag(f.w2))
-				dr, di := times(x3[r], x3[m], real(f.w3), imag(f.w3))
-				sr, si, ur, ui := x0[r]+cr, x0[m]+ci, x0[r]-cr, x0[m]-ci
-				tr, ti, vr, vi := br+dr, bi+di, br-dr, bi-di
-				x0[r], x0[m], x1[r], x1[m] = sr+tr, si+ti, sr-tr, si-ti
-				x2[r], x2[m], x3[r], x3[m] = ur+vi, ui-vr, ur-vi, ui+vr
+				p0, p1, p2, p3 := split(complex(x0[r], x0[m]), f.w1*complex(x1[r], x1[m]), f.w2*complex(x2[r], x2[m]), f.w3*complex(x3[r], x3[m]))
+				x0[r], x0[m], x1[r], x1[m] = real(p0), imag(p0), real(p1), imag(p1)
+				x2[r], x2[m], x3[r], x3[m] = real(p2), imag(p2), real(p3), imag(p3)
 			}
 		}
 	}
@@ -73,16 +69,15 @@ func split4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 func join4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 	for b := range count {
 		x0, x1, x2, x3 := rows(x[b*8*lanes*step:], lanes, step, n)
-		f := w[b]
+		f := &w[b]
 		for i := 0; i < len(x0); i += 2 * lanes {
 			for r := i; r < i+lanes; r++ {
 				m := r + lanes
-				sr, si, ur, ui := x0[r]+x1[r], x0[m]+x1[m], x0[r]-x1[r], x0[m]-x1[m]
-				tr, ti, vr, vi := x2[r]+x3[r], x2[m]+x3[m], x2[r]-x3[r], x2[m]-x3[m]
-				x0[r], x0[m] = sr+tr, si+ti
-				x1[r], x1[m] = times(ur-vi, ui+vr, real(f.w1), -imag(f.w1))
-				x2[r], x2[m] = times(sr-tr, si-ti, real(f.w2), -imag(f.w2))
-				x3[r], x3[m] = times(ur+vi, ui-vr, real(f.w3), -imag(f.w3))
+				p0, p1, p2, p3 := join(complex(x0[r], x0[m]), complex(x1[r], x1[m]), complex(x2[r], x2[m]), complex(x3[r], x3[m]))
+				x0[r], x0[m] = real(p0), imag(p0)
+				x1[r], x1[m] = times(real(p1), imag(p1), real(f.w1), -imag(f.w1))
+				x2[r], x2[m] = times(real(p2), imag(p2), real(f.w2), -imag(f.w2))
+				x3[r], x3[m] = times(real(p3), imag(p3), real(f.w3), -imag(f.w3))
 			}
 		}
 	}
@@ -90,16 +85,44 @@ func join4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 
 func productGeneric(x []float64, lanes, count int, spectrum []complex128, w []twiddle) {
 	for b := range count {
-		block, f := x[b*8*lanes:(b+1)*8*lanes], w[b:b+1]
-		split4Generic(block, lanes, 1, 1, 1, f)
-		for i, h := range spectrum[4*b : 4*b+4] {
-			re, im := block[2*lanes*i:][:lanes], block[2*lanes*i+lanes:][:lanes]
-			for l := range re {
-				re[l], im[l] = times(re[l], im[l], real(h), imag(h))
-			}
+		re0, im0, re1, im1 := pair(x[b*8*lanes:], lanes)
+		re2, im2, re3, im3 := pair(x[b*8*lanes+4*lanes:], lanes)
+		h, f := (*[4]complex128)(spectrum[4*b:]), &w[b]
+		for l := range re0 {
+			p0, p1, p2, p3 := split(complex(re0[l], im0[l]), f.w1*complex(re1[l], im1[l]), f.w2*complex(re2[l], im2[l]), f.w3*complex(re3[l], im3[l]))
+			p0, p1, p2, p3 = join(p0*h[0], p1*h[1], p2*h[2], p3*h[3])
+			re0[l], im0[l] = real(p0), imag(p0)
+			re1[l], im1[l] = times(real(p1), imag(p1), real(f.w1), -imag(f.w1))
+			re2[l], im2[l] = times(real(p2), imag(p2), real(f.w2), -imag(f.w2))
+			re3[l], im3[l] = times(real(p3), imag(p3), real(f.w3), -imag(f.w3))
 		}
-		join4Generic(block, lanes, 1, 1, 1, f)
 	}
+}
+
+// pair returns two elements, in a way that shows the compiler that all parts are
+// of one length.
+func pair(x []float64, lanes int) (re0, im0, re1, im1 []float64) {
+	return x[:lanes:lanes], x[lanes:][:lanes:lanes], x[2*lanes:][:lanes:lanes], x[3*lanes:][:lanes:lanes]
+}
+
+// split evaluates a + b z + c z^2 + d z^3 at z = 1, -1, -j and j: the points
+// of a four-point transform in bit-reversed order.
+func split(a, b, c, d complex128) (y0, y1, y2, y3 complex128) {
+	s, t := a+c, b+d
+	u, v := a-c, b-d
+	return s + t, s - t,
+		complex(real(u)+imag(v), imag(u)-real(v)),
+		complex(real(u)-imag(v), imag(u)+real(v))
+}
+
+// join undoes split, but for a factor of four.
+func join(a, b, c, d complex128) (y0, y1, y2, y3 complex128) {
+	s, t := a+b, c+d
+	u, v := a-b, c-d
+	return s + t,
+		complex(real(u)-imag(v), imag(u)+real(v)),
+		s - t,
+		complex(real(u)+imag(v), imag(u)-real(v))
 }
 
 // times is a complex product.

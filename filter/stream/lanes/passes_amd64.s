@@ -767,7 +767,7 @@ block:
 	RET
 
 // func interleave4AVX2(x *float64, step int, signals *[4]*float64, n int)
-// Requires: AVX
+// Requires: AVX, MMX+
 TEXT ·interleave4AVX2(SB), NOSPLIT, $0-32
 	MOVQ x+0(FP), AX
 	MOVQ step+8(FP), CX
@@ -781,6 +781,14 @@ TEXT ·interleave4AVX2(SB), NOSPLIT, $0-32
 	LEAQ (CX)(CX*2), DX
 
 points:
+	PREFETCHT0 512(SI)
+	PREFETCHT0 512(DI)
+	PREFETCHT0 512(R8)
+	PREFETCHT0 512(R9)
+	PREFETCHT0 1024(AX)
+	PREFETCHT0 1024(AX)(CX*1)
+	PREFETCHT0 1024(AX)(CX*2)
+	PREFETCHT0 1024(AX)(DX*1)
 	VMOVUPD    (SI), Y0
 	ADDQ       $0x20, SI
 	VMOVUPD    (DI), Y1
@@ -808,7 +816,7 @@ points:
 	RET
 
 // func deinterleave4AVX2(x *float64, step int, signals *[4]*float64, n int)
-// Requires: AVX
+// Requires: AVX, MMX+
 TEXT ·deinterleave4AVX2(SB), NOSPLIT, $0-32
 	MOVQ x+0(FP), AX
 	MOVQ step+8(FP), CX
@@ -822,6 +830,14 @@ TEXT ·deinterleave4AVX2(SB), NOSPLIT, $0-32
 	LEAQ (CX)(CX*2), DX
 
 points:
+	PREFETCHT0 512(SI)
+	PREFETCHT0 512(DI)
+	PREFETCHT0 512(R8)
+	PREFETCHT0 512(R9)
+	PREFETCHT0 1024(AX)
+	PREFETCHT0 1024(AX)(CX*1)
+	PREFETCHT0 1024(AX)(CX*2)
+	PREFETCHT0 1024(AX)(DX*1)
 	VMOVUPD    (AX), Y0
 	VMOVUPD    (AX)(CX*1), Y1
 	VMOVUPD    (AX)(CX*2), Y2

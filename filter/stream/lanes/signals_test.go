@@ -3,6 +3,7 @@ package lanes
 import (
 	"fmt"
 	"math"
+	"math/cmplx"
 	"math/rand/v2"
 	"testing"
 
@@ -54,7 +55,7 @@ func atEachSize(t *testing.T, test func(t *testing.T, e engine, size int)) {
 	})
 }
 
-// buffer is a Buffer filled with noise.
+// noise returns a Buffer filled with noise.
 func (p *Plan) noise(seed uint64) []float64 {
 	x := p.Buffer()
 	copy(x, noise(seed, len(x)))
@@ -135,4 +136,9 @@ func sameBits(t *testing.T, what string, got, want []float64) {
 			t.Fatalf("%s: value %d is %v, want %v to the bit", what, i, got[i], want[i])
 		}
 	}
+}
+
+// rect returns exp(-2 pi j num/den).
+func rect(num, den int) complex128 {
+	return cmplx.Rect(1, -2*math.Pi*float64(num)/float64(den))
 }
