@@ -1,5 +1,7 @@
 package stream
 
+import "fettle/filter/stream/internal/twiddle"
+
 // The transform is over complex blocks of N = 2^k points, N >= 32:
 //
 //	X[k] = sum over n of x[n] exp(-2 pi j k n / N)
@@ -24,8 +26,8 @@ package stream
 const leaf = 1024
 
 // forward sets x to the transform of re + j im, all of one length. factors is
-// twiddles(len(x)/4).
-func forward(x []complex128, re, im []float64, factors []twiddle) {
+// twiddle.Table(len(x)/4).
+func forward(x []complex128, re, im []float64, factors []twiddle.Factor) {
 	for m := len(x) / load(x, re, im); m >= 4; m /= 4 {
 		forwardPass(x, m, 0, factors)
 	}
@@ -36,8 +38,8 @@ func forward(x []complex128, re, im []float64, factors []twiddle) {
 // yre + j yim. spectrum is that of the impulse response, in bit-reversed order,
 // times 1/N, which the inverse transform leaves out. x is for work, as long as
 // the block, its contents before and after of no meaning. factors is
-// twiddles(len(x)/4).
-func circular(yre, yim, re, im []float64, x, spectrum []complex128, factors []twiddle) {
+// twiddle.Table(len(x)/4).
+func circular(yre, yim, re, im []float64, x, spectrum []complex128, factors []twiddle.Factor) {
 	parts := load(x, re, im)
 	n := len(x) / parts
 	for b := range parts {
@@ -48,7 +50,7 @@ func circular(yre, yim, re, im []float64, x, spectrum []complex128, factors []tw
 
 // convolve transforms x, which is block number b of its level and a power of
 // four long, multiplies it by spectrum and transforms it back.
-func convolve(x, spectrum []complex128, factors []twiddle, b int) {
+func convolve(x, spectrum []complex128, factors []twiddle.Factor, b int) {
 	m := len(x)
 	if m <= leaf {
 		convolveLeaf(x, spectrum, factors, b)
@@ -62,7 +64,7 @@ func convolve(x, spectrum []complex128, factors []twiddle, b int) {
 	inversePass(x, m, b, factors)
 }
 
-func convolveLeaf(x, spectrum []complex128, factors []twiddle, b int) {
+func convolveLeaf(x, spectrum []complex128, factors []twiddle.Factor, b int) {
 	first := b * len(x)
 	for m := len(x); m > 16; m /= 4 {
 		forwardPass(x, m, first/m, factors)
@@ -76,31 +78,31 @@ func convolveLeaf(x, spectrum []complex128, factors []twiddle, b int) {
 // multiply does the last two forward passes, the product and the first two
 // inverse passes in one sweep, since all of them work within the same sixteen
 // points.
-func multiply(x, spectrum []complex128, factors []twiddle, b int) {
+func multiply(x, spectrum []complex128, factors []twiddle.Factor, b int) {
 	for ; len(x) >= 16; b++ {
-		multiply16((*[16]complex128)(x), (*[16]complex128)(spectrum), &factors[b], (*[4]twiddle)(factors[4*b:]))
+		multiply16((*[16]complex128)(x), (*[16]complex128)(spectrum), &factors[b], (*[4]twiddle.Factor)(factors[4*b:]))
 		x, spectrum = x[16:], spectrum[16:]
 	}
 }
 
-func multiply16(x, h *[16]complex128, w *twiddle, inner *[4]twiddle) {
+func multiply16(x, h *[16]complex128, w *twiddle.Factor, inner *[4]twiddle.Factor) {
 	for i := range 4 {
-		x[i], x[i+4], x[i+8], x[i+12] = split(x[i], w.w1*x[i+4], w.w2*x[i+8], w.w3*x[i+12])
+		x[i], x[i+4], x[i+8], x[i+12] = split(x[i], w.W1*x[i+4], w.W2*x[i+8], w.W3*x[i+12])
 	}
 	for i := range inner {
 		v := &inner[i]
-		a, b, c, d := split(x[4*i], v.w1*x[4*i+1], v.w2*x[4*i+2], v.w3*x[4*i+3])
+		a, b, c, d := split(x[4*i], v.W1*x[4*i+1], v.W2*x[4*i+2], v.W3*x[4*i+3])
 		a, b, c, d = join(a*h[4*i], b*h[4*i+1], c*h[4*i+2], d*h[4*i+3])
 		x[4*i] = a
-		x[4*i+1] = timesConj(b, v.w1)
-		x[4*i+2] = timesConj(c, v.w2)
-		x[4*i+3] = timesConj(d, v.w3)
+		x[4*i+1] = timesConj(b, v.W1)
+		x[4*i+2] = timesConj(c, v.W2)
+		x[4*i+3] = timesConj(d, v.W3)
 	}
 	for i := range 4 {
 		a, b, c, d := join(x[i], x[i+4], x[i+8], x[i+12])
 		x[i] = a
-		x[i+4] = timesConj(b, w.w1)
-		x[i+8] = timesConj(c, w.w2)
-		x[i+12] = timesConj(d, w.w3)
+		x[i+4] = timesConj(b, w.W1)
+		x[i+8] = timesConj(c, w.W2)
+		x[i+12] = timesConj(d, w.W3)
 	}
 }

@@ -8,6 +8,8 @@ import (
 	"slices"
 	"testing"
 
+	"fettle/filter/stream/internal/twiddle"
+
 	"gonum.org/v1/gonum/dsp/fourier"
 )
 
@@ -29,7 +31,7 @@ func transformError(size int, norm float64) float64 {
 // spectrumOf returns the transform in natural order.
 func spectrumOf(re, im []float64) []complex128 {
 	x := make([]complex128, len(re))
-	forward(x, re, im, twiddles(len(x)/4))
+	forward(x, re, im, twiddle.Table(len(x)/4))
 	return reversed(x)
 }
 
@@ -155,7 +157,7 @@ func inverse(spectrum []complex128) []complex128 {
 		scaled[i] = v / complex(float64(size), 0)
 	}
 	re, im := make([]float64, size), make([]float64, size)
-	circular(re, im, impulse(0, size), make([]float64, size), make([]complex128, size), scaled, twiddles(size/4))
+	circular(re, im, impulse(0, size), make([]float64, size), make([]complex128, size), scaled, twiddle.Table(size/4))
 	return combine(re, im)
 }
 
@@ -163,7 +165,7 @@ func TestInverseUndoesForward(t *testing.T) {
 	atEachSize(t, func(t *testing.T, size int) {
 		re, im := noise(9, size), noise(10, size)
 		x := make([]complex128, size)
-		forward(x, re, im, twiddles(size/4))
+		forward(x, re, im, twiddle.Table(size/4))
 		want := combine(re, im)
 		compareComplex(t, "round trip", inverse(x), want, 2*transformError(size, complexNorm(want)/math.Sqrt(float64(size))))
 	})
@@ -173,7 +175,7 @@ func TestInverseUndoesForward(t *testing.T) {
 // by 90 degrees: a circular shift by one, times j. A few samples are dropped.
 func TestCircularAgainstDefinition(t *testing.T) {
 	atEachSize(t, func(t *testing.T, size int) {
-		factors := twiddles(size / 4)
+		factors := twiddle.Table(size / 4)
 		spectrum := make([]complex128, size)
 		turned := impulse(1, size)
 		turned[1] /= float64(size)
@@ -189,38 +191,4 @@ func TestCircularAgainstDefinition(t *testing.T) {
 			compareComplex(t, fmt.Sprintf("less %d", drop), combine(re, im), want, 2*transformError(size, complexNorm(x)/math.Sqrt(float64(size))))
 		}
 	})
-}
-
-func TestUnitIsAccurate(t *testing.T) {
-	const den = 4096
-	for num := range den {
-		w := unit(num, den)
-		if diff := math.Abs(real(w)*real(w) + imag(w)*imag(w) - 1); !(diff <= 2*eps) {
-			t.Errorf("unit(%d): squared modulus off by %g", num, diff)
-		}
-		half := unit((num+den/2)%den, den)
-		if w+half != 0 {
-			t.Errorf("unit(%d) = %v and half a turn on %v: not opposite", num, w, half)
-		}
-		if back := unit((den-num)%den, den); back != cmplx.Conj(w) {
-			t.Errorf("unit(%d) = %v and back %v: not conjugate", num, w, back)
-		}
-		// Rect rounds the angle, up to 2 pi, to half of 8 eps/2.
-		if diff := cmplx.Abs(w - cmplx.Rect(1, -2*math.Pi*float64(num)/den)); !(diff <= 4*eps) {
-			t.Errorf("unit(%d): off by %g", num, diff)
-		}
-	}
-}
-
-// TestTwiddlesArePrefixes: a longer table starts as a shorter one, and asking
-// for it leaves the shorter one alone.
-func TestTwiddlesArePrefixes(t *testing.T) {
-	short := makeTwiddles(64)
-	long := makeTwiddles(4096)
-	if !slices.Equal(short, long[:64]) {
-		t.Error("the table of 64 is no prefix of that of 4096")
-	}
-	if !slices.Equal(twiddles(64), short) {
-		t.Error("the shared table differs from a fresh one")
-	}
 }

@@ -3,6 +3,8 @@ package stream
 import (
 	"math"
 	"math/bits"
+
+	"fettle/filter/stream/internal/twiddle"
 )
 
 // FIR is a filter of finite impulse response h[0] to h[len-1]:
@@ -14,7 +16,7 @@ import (
 type FIR struct {
 	taps     []float64
 	spectrum []complex128 // of the taps, bit-reversed, over N; nil: summed directly
-	factors  []twiddle
+	factors  []twiddle.Factor
 }
 
 // directTaps is the most taps that are summed directly. BenchmarkBlockSize
@@ -45,7 +47,7 @@ func newFIR(taps []float64, size int) *FIR {
 	if size == 0 {
 		return f
 	}
-	f.factors = twiddles(size / 4)
+	f.factors = twiddle.Table(size / 4)
 	f.spectrum = make([]complex128, size)
 	scaled := make([]float64, size)
 	for i, h := range taps {

@@ -1,6 +1,10 @@
 package lanes
 
-import "math/bits"
+import (
+	"math/bits"
+
+	"fettle/filter/stream/internal/twiddle"
+)
 
 // engine says who computes the passes.
 type engine struct {
@@ -30,7 +34,7 @@ func (e engine) points(bytes int) int { return bytes / (16 * e.lanes) }
 
 // convolve transforms x, which is block number b of its level, multiplies it by
 // spectrum and transforms it back.
-func (e engine) convolve(x []float64, spectrum []complex128, factors []twiddle, b int) {
+func (e engine) convolve(x []float64, spectrum []complex128, factors []twiddle.Factor, b int) {
 	m := len(spectrum)
 	if m <= e.points(leafBytes) {
 		e.convolveLeaf(x, spectrum, factors, b)
@@ -48,7 +52,7 @@ func (e engine) convolve(x []float64, spectrum []complex128, factors []twiddle, 
 }
 
 // convolveParts convolves each part of block b on its own.
-func (e engine) convolveParts(x []float64, spectrum []complex128, factors []twiddle, b, parts int) {
+func (e engine) convolveParts(x []float64, spectrum []complex128, factors []twiddle.Factor, b, parts int) {
 	values, points := len(x)/parts, len(spectrum)/parts
 	for i := range parts {
 		e.convolve(x[i*values:(i+1)*values], spectrum[i*points:(i+1)*points], factors, parts*b+i)
@@ -58,7 +62,7 @@ func (e engine) convolveParts(x []float64, spectrum []complex128, factors []twid
 // splitWide splits block b of m points into quarters and these into quarters,
 // and takes x from memory only once: it does both passes in one stretch of all
 // sixteen rows before the next.
-func (e engine) splitWide(x []float64, m int, factors []twiddle, b int) {
+func (e engine) splitWide(x []float64, m int, factors []twiddle.Factor, b int) {
 	n := e.points(stretchBytes)
 	for at := 0; at < m/16; at += n {
 		for i := range 4 {
@@ -71,7 +75,7 @@ func (e engine) splitWide(x []float64, m int, factors []twiddle, b int) {
 }
 
 // joinWide undoes splitWide, but for a factor of sixteen.
-func (e engine) joinWide(x []float64, m int, factors []twiddle, b int) {
+func (e engine) joinWide(x []float64, m int, factors []twiddle.Factor, b int) {
 	n := e.points(stretchBytes)
 	for at := 0; at < m/16; at += n {
 		for i := range 4 {
@@ -88,7 +92,7 @@ func (e engine) from(x []float64, point int) []float64 { return x[2*e.lanes*poin
 
 // convolveLeaf does the radix-2 pass, if the size of the block is an odd power
 // of two, where the data is nearest.
-func (e engine) convolveLeaf(x []float64, spectrum []complex128, factors []twiddle, b int) {
+func (e engine) convolveLeaf(x []float64, spectrum []complex128, factors []twiddle.Factor, b int) {
 	if oddPower(len(spectrum)) {
 		half := len(spectrum) / 2
 		e.split2(x, half, half, 1, factors[b:])
@@ -101,7 +105,7 @@ func (e engine) convolveLeaf(x []float64, spectrum []complex128, factors []twidd
 
 // convolveSmall convolves all the blocks of m points in x, m a power of four.
 // The first is number b of its level.
-func (e engine) convolveSmall(x []float64, spectrum []complex128, factors []twiddle, m, b int) {
+func (e engine) convolveSmall(x []float64, spectrum []complex128, factors []twiddle.Factor, m, b int) {
 	total, first := len(spectrum), b*m
 	for s := m; s > 4; s /= 4 {
 		e.split4(x, s/4, s/4, total/s, factors[first/s:])

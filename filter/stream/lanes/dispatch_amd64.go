@@ -2,7 +2,11 @@
 
 package lanes
 
-import "golang.org/x/sys/cpu"
+import (
+	"fettle/filter/stream/internal/twiddle"
+
+	"golang.org/x/sys/cpu"
+)
 
 //go:generate go -C _asm run . -out ../passes_amd64.s -stubs ../passes_amd64.go -pkg lanes
 
@@ -21,56 +25,56 @@ func (k Kernel) available() bool {
 // The methods of engine are the passes. Nothing in the assembly checks bounds:
 // step, n, count are positive and the blocks lie within x, w and spectrum.
 
-func (e engine) split2(x []float64, step, n, count int, w []twiddle) {
+func (e engine) split2(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
 	case AVX2:
-		split2AVX2(&x[0], step, n, count, &w[0].w1)
+		split2AVX2(&x[0], step, n, count, &w[0].W1)
 	case AVX512:
-		split2AVX512(&x[0], step, n, count, &w[0].w1)
+		split2AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		split2Generic(x, e.lanes, step, n, count, w)
 	}
 }
 
-func (e engine) join2(x []float64, step, n, count int, w []twiddle) {
+func (e engine) join2(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
 	case AVX2:
-		join2AVX2(&x[0], step, n, count, &w[0].w1)
+		join2AVX2(&x[0], step, n, count, &w[0].W1)
 	case AVX512:
-		join2AVX512(&x[0], step, n, count, &w[0].w1)
+		join2AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		join2Generic(x, e.lanes, step, n, count, w)
 	}
 }
 
-func (e engine) split4(x []float64, step, n, count int, w []twiddle) {
+func (e engine) split4(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
 	case AVX2:
-		split4AVX2(&x[0], step, n, count, &w[0].w1)
+		split4AVX2(&x[0], step, n, count, &w[0].W1)
 	case AVX512:
-		split4AVX512(&x[0], step, n, count, &w[0].w1)
+		split4AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		split4Generic(x, e.lanes, step, n, count, w)
 	}
 }
 
-func (e engine) join4(x []float64, step, n, count int, w []twiddle) {
+func (e engine) join4(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
 	case AVX2:
-		join4AVX2(&x[0], step, n, count, &w[0].w1)
+		join4AVX2(&x[0], step, n, count, &w[0].W1)
 	case AVX512:
-		join4AVX512(&x[0], step, n, count, &w[0].w1)
+		join4AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		join4Generic(x, e.lanes, step, n, count, w)
 	}
 }
 
-func (e engine) product(x []float64, count int, spectrum []complex128, w []twiddle) {
+func (e engine) product(x []float64, count int, spectrum []complex128, w []twiddle.Factor) {
 	switch e.kernel {
 	case AVX2:
-		productAVX2(&x[0], count, &spectrum[0], &w[0].w1)
+		productAVX2(&x[0], count, &spectrum[0], &w[0].W1)
 	case AVX512:
-		productAVX512(&x[0], count, &spectrum[0], &w[0].w1)
+		productAVX512(&x[0], count, &spectrum[0], &w[0].W1)
 	default:
 		productGeneric(x, e.lanes, count, spectrum, w)
 	}

@@ -2,27 +2,29 @@
 
 package lanes
 
+import "fettle/filter/stream/internal/twiddle"
+
 func (k Kernel) available() bool { return k == Portable }
 
 // The methods of engine are the passes.
 
-func (e engine) split2(x []float64, step, n, count int, w []twiddle) {
+func (e engine) split2(x []float64, step, n, count int, w []twiddle.Factor) {
 	split2Generic(x, e.lanes, step, n, count, w)
 }
 
-func (e engine) join2(x []float64, step, n, count int, w []twiddle) {
+func (e engine) join2(x []float64, step, n, count int, w []twiddle.Factor) {
 	join2Generic(x, e.lanes, step, n, count, w)
 }
 
-func (e engine) split4(x []float64, step, n, count int, w []twiddle) {
+func (e engine) split4(x []float64, step, n, count int, w []twiddle.Factor) {
 	split4Generic(x, e.lanes, step, n, count, w)
 }
 
-func (e engine) join4(x []float64, step, n, count int, w []twiddle) {
+func (e engine) join4(x []float64, step, n, count int, w []twiddle.Factor) {
 	join4Generic(x, e.lanes, step, n, count, w)
 }
 
-func (e engine) product(x []float64, count int, spectrum []complex128, w []twiddle) {
+func (e engine) product(x []float64, count int, spectrum []complex128, w []twiddle.Factor) {
 	productGeneric(x, e.lanes, count, spectrum, w)
 }
 

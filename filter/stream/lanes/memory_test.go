@@ -5,6 +5,8 @@ import (
 	"slices"
 	"sync"
 	"testing"
+
+	"fettle/filter/stream/internal/twiddle"
 )
 
 // guards is how many values lie on either side of guarded memory: more than the
@@ -29,7 +31,7 @@ func TestConvolveKeepsToItsMemory(t *testing.T) {
 
 		p := *plain
 		_, p.spectrum = guarded(nan, plain.spectrum)
-		_, p.factors = guarded(twiddle{nan, nan, nan}, plain.factors)
+		_, p.factors = guarded(twiddle.Factor{W1: nan, W2: nan, W3: nan}, plain.factors)
 		_, poisoned := guarded(math.NaN(), x)
 		p.Convolve(poisoned)
 		sameBits(t, "among NaN", poisoned, want)

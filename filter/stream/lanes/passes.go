@@ -1,5 +1,7 @@
 package lanes
 
+import "fettle/filter/stream/internal/twiddle"
+
 // The passes. x holds elements, an element being the real parts of one point in
 // all lanes and then its imaginary parts: 2 lanes values. A pass of radix r
 // looks at count blocks, one after another; a block is r rows, step elements
@@ -18,12 +20,12 @@ package lanes
 //
 // Products may be fused with the sum they enter, or not.
 
-func split2Generic(x []float64, lanes, step, n, count int, w []twiddle) {
+func split2Generic(x []float64, lanes, step, n, count int, w []twiddle.Factor) {
 	for b := range count {
 		block := x[b*4*lanes*step:]
 		x0, x1 := row(block, lanes, 0, step, n), row(block, lanes, 1, step, n)
 		x1 = x1[:len(x0)] // spares the loop its bounds checks
-		wr, wi := real(w[b].w2), imag(w[b].w2)
+		wr, wi := real(w[b].W2), imag(w[b].W2)
 		for i := 0; i < len(x0); i += 2 * lanes {
 			for r := i; r < i+lanes; r++ {
 				m := r + lanes
@@ -34,12 +36,12 @@ func split2Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 	}
 }
 
-func join2Generic(x []float64, lanes, step, n, count int, w []twiddle) {
+func join2Generic(x []float64, lanes, step, n, count int, w []twiddle.Factor) {
 	for b := range count {
 		block := x[b*4*lanes*step:]
 		x0, x1 := row(block, lanes, 0, step, n), row(block, lanes, 1, step, n)
 		x1 = x1[:len(x0)]
-		wr, wi := real(w[b].w2), imag(w[b].w2)
+		wr, wi := real(w[b].W2), imag(w[b].W2)
 		for i := 0; i < len(x0); i += 2 * lanes {
 			for r := i; r < i+lanes; r++ {
 				m := r + lanes
@@ -51,14 +53,14 @@ func join2Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 	}
 }
 
-func split4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
+func split4Generic(x []float64, lanes, step, n, count int, w []twiddle.Factor) {
 	for b := range count {
 		x0, x1, x2, x3 := rows(x[b*8*lanes*step:], lanes, step, n)
 		f := &w[b]
 		for i := 0; i < len(x0); i += 2 * lanes {
 			for r := i; r < i+lanes; r++ {
 				m := r + lanes
-				p0, p1, p2, p3 := split(complex(x0[r], x0[m]), f.w1*complex(x1[r], x1[m]), f.w2*complex(x2[r], x2[m]), f.w3*complex(x3[r], x3[m]))
+				p0, p1, p2, p3 := split(complex(x0[r], x0[m]), f.W1*complex(x1[r], x1[m]), f.W2*complex(x2[r], x2[m]), f.W3*complex(x3[r], x3[m]))
 				x0[r], x0[m], x1[r], x1[m] = real(p0), imag(p0), real(p1), imag(p1)
 				x2[r], x2[m], x3[r], x3[m] = real(p2), imag(p2), real(p3), imag(p3)
 			}
@@ -66,7 +68,7 @@ func split4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 	}
 }
 
-func join4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
+func join4Generic(x []float64, lanes, step, n, count int, w []twiddle.Factor) {
 	for b := range count {
 		x0, x1, x2, x3 := rows(x[b*8*lanes*step:], lanes, step, n)
 		f := &w[b]
@@ -75,26 +77,26 @@ func join4Generic(x []float64, lanes, step, n, count int, w []twiddle) {
 				m := r + lanes
 				p0, p1, p2, p3 := join(complex(x0[r], x0[m]), complex(x1[r], x1[m]), complex(x2[r], x2[m]), complex(x3[r], x3[m]))
 				x0[r], x0[m] = real(p0), imag(p0)
-				x1[r], x1[m] = times(real(p1), imag(p1), real(f.w1), -imag(f.w1))
-				x2[r], x2[m] = times(real(p2), imag(p2), real(f.w2), -imag(f.w2))
-				x3[r], x3[m] = times(real(p3), imag(p3), real(f.w3), -imag(f.w3))
+				x1[r], x1[m] = times(real(p1), imag(p1), real(f.W1), -imag(f.W1))
+				x2[r], x2[m] = times(real(p2), imag(p2), real(f.W2), -imag(f.W2))
+				x3[r], x3[m] = times(real(p3), imag(p3), real(f.W3), -imag(f.W3))
 			}
 		}
 	}
 }
 
-func productGeneric(x []float64, lanes, count int, spectrum []complex128, w []twiddle) {
+func productGeneric(x []float64, lanes, count int, spectrum []complex128, w []twiddle.Factor) {
 	for b := range count {
 		re0, im0, re1, im1 := pair(x[b*8*lanes:], lanes)
 		re2, im2, re3, im3 := pair(x[b*8*lanes+4*lanes:], lanes)
 		h, f := (*[4]complex128)(spectrum[4*b:]), &w[b]
 		for l := range re0 {
-			p0, p1, p2, p3 := split(complex(re0[l], im0[l]), f.w1*complex(re1[l], im1[l]), f.w2*complex(re2[l], im2[l]), f.w3*complex(re3[l], im3[l]))
+			p0, p1, p2, p3 := split(complex(re0[l], im0[l]), f.W1*complex(re1[l], im1[l]), f.W2*complex(re2[l], im2[l]), f.W3*complex(re3[l], im3[l]))
 			p0, p1, p2, p3 = join(p0*h[0], p1*h[1], p2*h[2], p3*h[3])
 			re0[l], im0[l] = real(p0), imag(p0)
-			re1[l], im1[l] = times(real(p1), imag(p1), real(f.w1), -imag(f.w1))
-			re2[l], im2[l] = times(real(p2), imag(p2), real(f.w2), -imag(f.w2))
-			re3[l], im3[l] = times(real(p3), imag(p3), real(f.w3), -imag(f.w3))
+			re1[l], im1[l] = times(real(p1), imag(p1), real(f.W1), -imag(f.W1))
+			re2[l], im2[l] = times(real(p2), imag(p2), real(f.W2), -imag(f.W2))
+			re3[l], im3[l] = times(real(p3), imag(p3), real(f.W3), -imag(f.W3))
 		}
 	}
 }

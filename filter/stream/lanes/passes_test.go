@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"slices"
 	"testing"
+
+	"fettle/filter/stream/internal/twiddle"
 )
 
 // passShapes are step, n, count: whole blocks, one and many; parts of rows; the
@@ -17,15 +19,15 @@ func TestPassesEqualTheContract(t *testing.T) {
 	passes := []struct {
 		name  string
 		radix int
-		run   func(e engine, x []float64, step, n, count int, w []twiddle)
-		twin  func(x []float64, lanes, step, n, count int, w []twiddle)
+		run   func(e engine, x []float64, step, n, count int, w []twiddle.Factor)
+		twin  func(x []float64, lanes, step, n, count int, w []twiddle.Factor)
 	}{
 		{"split2", 2, engine.split2, split2Generic},
 		{"join2", 2, engine.join2, join2Generic},
 		{"split4", 4, engine.split4, split4Generic},
 		{"join4", 4, engine.join4, join4Generic},
 	}
-	factors := makeTwiddles(64)
+	factors := twiddle.Make(64)
 	atEachEngine(t, func(t *testing.T, e engine) {
 		for _, p := range passes {
 			for _, s := range passShapes {
@@ -51,7 +53,7 @@ func TestPassesEqualTheContract(t *testing.T) {
 // TestProductEqualsTheContract: with a spectrum of points of at most sqrt(2),
 // outputs are at most 16 sqrt(2) of some ten roundings each: 32 eps.
 func TestProductEqualsTheContract(t *testing.T) {
-	factors := makeTwiddles(64)
+	factors := twiddle.Make(64)
 	atEachEngine(t, func(t *testing.T, e engine) {
 		for _, count := range []int{1, 2, 7} {
 			spectrum := make([]complex128, 4*count)
@@ -69,7 +71,7 @@ func TestProductEqualsTheContract(t *testing.T) {
 
 // TestJoinsUndoSplits, but for the factor of the radix, within the same bound.
 func TestJoinsUndoSplits(t *testing.T) {
-	factors := makeTwiddles(64)
+	factors := twiddle.Make(64)
 	atEachEngine(t, func(t *testing.T, e engine) {
 		x := noise(4, 2*e.lanes*64)
 		y := slices.Clone(x)
@@ -87,7 +89,7 @@ func TestJoinsUndoSplits(t *testing.T) {
 // TestGenericPassesByHand: a four-point block with factors 1 is the four-point
 // transform, in bit-reversed order, exact on integers.
 func TestGenericPassesByHand(t *testing.T) {
-	one := []twiddle{{1, 1, 1}}
+	one := []twiddle.Factor{{W1: 1, W2: 1, W3: 1}}
 	x := []float64{1, 0, 2, 0, 3, 0, 5, 1} // one lane: 1, 2, 3, 5+j
 	split4Generic(x, 1, 1, 1, 1, one)
 	// X[0] = 11+j, X[2] = 1-2-(5+j)+3 = -3-j, X[1] = 1-3-2j+j(5+j) = -3+3j, X[3] = -1-3j
@@ -100,20 +102,14 @@ func TestGenericPassesByHand(t *testing.T) {
 // TestTwiddles: block b has a quarter of the bit-reversed fraction of a turn.
 func TestTwiddles(t *testing.T) {
 	const count = 1024
-	for b, w := range makeTwiddles(count) {
+	for b, w := range twiddle.Make(count) {
 		turn := reverse(b, count)
-		for p, got := range []complex128{w.w1, w.w2, w.w3} {
+		for p, got := range []complex128{w.W1, w.W2, w.W3} {
 			want := rect(turn*(p+1), 4*count)
 			// Rect rounds the angle, up to 3/4 of 2 pi, by half of 4 eps at most.
 			if d := got - want; !(real(d)*real(d)+imag(d)*imag(d) <= 16*eps*eps) {
 				t.Errorf("block %d, power %d: %v, want %v", b, p+1, got, want)
 			}
 		}
-	}
-	if !slices.Equal(makeTwiddles(64), makeTwiddles(count)[:64]) {
-		t.Error("the table of 64 blocks is no prefix of a longer one")
-	}
-	if !slices.Equal(twiddles(64), makeTwiddles(64)) {
-		t.Error("the shared table differs from a fresh one")
 	}
 }

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math/bits"
 	"unsafe"
+
+	"fettle/filter/stream/internal/twiddle"
 )
 
 // Plan convolves blocks of one size with one impulse response. It is never
@@ -12,7 +14,7 @@ type Plan struct {
 	engine
 	size     int
 	spectrum []complex128 // of the taps, bit-reversed, over N
-	factors  []twiddle
+	factors  []twiddle.Factor
 }
 
 // The sizes of a block, in points.
@@ -39,13 +41,13 @@ func newPlan(taps []float64, size int, e engine) *Plan {
 	if len(taps) == 0 || len(taps) > size {
 		panic(fmt.Sprintf("lanes: New with %d taps for blocks of %d points: 1 to %[2]d are needed", len(taps), size))
 	}
-	factors := twiddles(size / 4)
+	factors := twiddle.Table(size / 4)
 	return &Plan{e, size, spectrumOf(taps, size, factors), factors}
 }
 
 // spectrumOf returns the spectrum of the taps in bit-reversed order, over
 // size. It does not depend on the kernel.
-func spectrumOf(taps []float64, size int, factors []twiddle) []complex128 {
+func spectrumOf(taps []float64, size int, factors []twiddle.Factor) []complex128 {
 	x := make([]float64, 2*size) // one lane
 	for i, h := range taps {
 		x[2*i] = h / float64(size)
