@@ -8,6 +8,8 @@ import (
 
 	"gonum.org/v1/gonum/dsp/fourier"
 	"pgregory.net/rapid"
+
+	"fettle/filter/stream/machine"
 )
 
 // blockError allows eps log2 N |h| |x| on each sample of a block, norms being
@@ -87,7 +89,7 @@ func TestSpectrumAgainstLibrary(t *testing.T) {
 			z[i] = complex(h/float64(size), 0)
 		}
 		want := fourier.NewCmplxFFT(size).Coefficients(nil, z)
-		got := newPlan(taps, size, engine{Portable, 4}).spectrum
+		got := newPlan(taps, size, engine{machine.Portable, 4}).spectrum
 		// Real taps have half the norm's square in each half of the spectrum; the
 		// library errs too, hence twice.
 		tol := 2 * eps * math.Log2(float64(size)) * norm(taps) / float64(size)
@@ -119,7 +121,7 @@ func TestImpulses(t *testing.T) {
 func TestTwinsAgree(t *testing.T) {
 	atEachSize(t, func(t *testing.T, e engine, size int) {
 		taps := noise(50, size/4+1)
-		p, twin := newPlan(taps, size, e), newPlan(taps, size, engine{Portable, e.lanes})
+		p, twin := newPlan(taps, size, e), newPlan(taps, size, engine{machine.Portable, e.lanes})
 		x := p.noise(4)
 		y := slices.Clone(x)
 		p.Convolve(x)
@@ -134,7 +136,7 @@ func TestTwinsAgree(t *testing.T) {
 // TestLargeBlock goes three levels deep in two passes at once.
 func TestLargeBlock(t *testing.T) {
 	const size = 1 << 20
-	p := newPlan([]float64{0, 0, 1}, size, engine{Best(), Best().Lanes()})
+	p := newPlan([]float64{0, 0, 1}, size, engine{machine.Best(), Of(machine.Best())})
 	x := p.noise(9)
 	y := slices.Clone(x)
 	p.Convolve(y)

@@ -4,11 +4,12 @@ import (
 	"math/bits"
 
 	"fettle/filter/stream/internal/twiddle"
+	"fettle/filter/stream/machine"
 )
 
 // engine says who computes the passes.
 type engine struct {
-	kernel Kernel
+	kernel machine.Kernel
 	lanes  int
 }
 

@@ -4,32 +4,19 @@ package lanes
 
 import (
 	"fettle/filter/stream/internal/twiddle"
-
-	"golang.org/x/sys/cpu"
+	"fettle/filter/stream/machine"
 )
 
 //go:generate go -C _asm run . -out ../passes_amd64.s -stubs ../passes_amd64.go -pkg lanes
-
-func (k Kernel) available() bool {
-	switch k {
-	case Portable:
-		return true
-	case AVX2:
-		return cpu.X86.HasAVX2 && cpu.X86.HasFMA
-	case AVX512:
-		return cpu.X86.HasAVX512F && AVX2.available() // it shares interleave4
-	}
-	return false
-}
 
 // The methods of engine are the passes. Nothing in the assembly checks bounds:
 // step, n, count are positive and the blocks lie within x, w and spectrum.
 
 func (e engine) split2(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
-	case AVX2:
+	case machine.AVX2:
 		split2AVX2(&x[0], step, n, count, &w[0].W1)
-	case AVX512:
+	case machine.AVX512:
 		split2AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		split2Generic(x, e.lanes, step, n, count, w)
@@ -38,9 +25,9 @@ func (e engine) split2(x []float64, step, n, count int, w []twiddle.Factor) {
 
 func (e engine) join2(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
-	case AVX2:
+	case machine.AVX2:
 		join2AVX2(&x[0], step, n, count, &w[0].W1)
-	case AVX512:
+	case machine.AVX512:
 		join2AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		join2Generic(x, e.lanes, step, n, count, w)
@@ -49,9 +36,9 @@ func (e engine) join2(x []float64, step, n, count int, w []twiddle.Factor) {
 
 func (e engine) split4(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
-	case AVX2:
+	case machine.AVX2:
 		split4AVX2(&x[0], step, n, count, &w[0].W1)
-	case AVX512:
+	case machine.AVX512:
 		split4AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		split4Generic(x, e.lanes, step, n, count, w)
@@ -60,9 +47,9 @@ func (e engine) split4(x []float64, step, n, count int, w []twiddle.Factor) {
 
 func (e engine) join4(x []float64, step, n, count int, w []twiddle.Factor) {
 	switch e.kernel {
-	case AVX2:
+	case machine.AVX2:
 		join4AVX2(&x[0], step, n, count, &w[0].W1)
-	case AVX512:
+	case machine.AVX512:
 		join4AVX512(&x[0], step, n, count, &w[0].W1)
 	default:
 		join4Generic(x, e.lanes, step, n, count, w)
@@ -71,9 +58,9 @@ func (e engine) join4(x []float64, step, n, count int, w []twiddle.Factor) {
 
 func (e engine) product(x []float64, count int, spectrum []complex128, w []twiddle.Factor) {
 	switch e.kernel {
-	case AVX2:
+	case machine.AVX2:
 		productAVX2(&x[0], count, &spectrum[0], &w[0].W1)
-	case AVX512:
+	case machine.AVX512:
 		productAVX512(&x[0], count, &spectrum[0], &w[0].W1)
 	default:
 		productGeneric(x, e.lanes, count, spectrum, w)
@@ -82,7 +69,7 @@ func (e engine) product(x []float64, count int, spectrum []complex128, w []twidd
 
 func (e engine) interleave4(x []float64, step int, signals *[4][]float64) {
 	n := 0
-	if e.kernel != Portable {
+	if e.kernel != machine.Portable {
 		if n = len(signals[0]) &^ 3; n > 0 {
 			interleave4AVX2(&x[0], step, starts(signals), n)
 		}
@@ -93,7 +80,7 @@ func (e engine) interleave4(x []float64, step int, signals *[4][]float64) {
 
 func (e engine) deinterleave4(signals *[4][]float64, x []float64, step int) {
 	n := 0
-	if e.kernel != Portable {
+	if e.kernel != machine.Portable {
 		if n = len(signals[0]) &^ 3; n > 0 {
 			deinterleave4AVX2(&x[0], step, starts(signals), n)
 		}

@@ -4,10 +4,6 @@ package lanes
 
 import "fettle/filter/stream/internal/twiddle"
 
-func (k Kernel) available() bool { return k == Portable }
-
-// The methods of engine are the passes.
-
 func (e engine) split2(x []float64, step, n, count int, w []twiddle.Factor) {
 	split2Generic(x, e.lanes, step, n, count, w)
 }

@@ -27,9 +27,9 @@
 // Passes go depth first: a quarter is convolved to the end before the next is
 // touched, so that of a large block only the outermost passes meet memory.
 //
-// A [Kernel] says who computes. The plain Go functions named ...Generic are what
-// every kernel must equal up to rounding; they serve on every machine, and with
-// the build tag purego they are all there is. The assembly is written by the
+// A [machine.Kernel] says who computes. The plain Go functions named ...Generic
+// are what every kernel must equal up to rounding; they serve on every machine, and
+// with the build tag purego they are all there is. The assembly is written by the
 // program in _asm, a module of its own: run go generate after changing it.
 //
 // Values are not looked at. A NaN or an infinity spoils its block, both parts, but

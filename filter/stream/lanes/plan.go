@@ -6,6 +6,7 @@ import (
 	"unsafe"
 
 	"fettle/filter/stream/internal/twiddle"
+	"fettle/filter/stream/machine"
 )
 
 // Plan convolves blocks of one size with one impulse response. It is never
@@ -26,12 +27,12 @@ const (
 // New returns the plan for circular convolution, in blocks of size points, with
 // the given taps: one to size of them, of any value, which are copied. size is
 // a power of two from MinSize to MaxSize. New panics if it is not, if the number
-// of taps is out of range, or if k is not among Available().
-func New(taps []float64, size int, k Kernel) *Plan {
-	if !k.known() || !k.available() {
-		panic(fmt.Sprintf("lanes: kernel %v is not available: take one of %s", k, names(Available())))
+// of taps is out of range, or if k does not run here.
+func New(taps []float64, size int, k machine.Kernel) *Plan {
+	if !k.Runs() {
+		panic(fmt.Sprintf("lanes: kernel %v does not run here: take one of %s", k, machine.Names()))
 	}
-	return newPlan(taps, size, engine{k, k.Lanes()})
+	return newPlan(taps, size, engine{k, Of(k)})
 }
 
 func newPlan(taps []float64, size int, e engine) *Plan {
@@ -67,8 +68,16 @@ func spectrumOf(taps []float64, size int, factors []twiddle.Factor) []complex128
 	return spectrum
 }
 
+// Of returns how many blocks a kernel takes side by side: 4 or 8.
+func Of(k machine.Kernel) int {
+	if k == machine.AVX512 {
+		return 8
+	}
+	return 4
+}
+
 // Kernel returns the kernel that the plan was made for.
-func (p *Plan) Kernel() Kernel { return p.kernel }
+func (p *Plan) Kernel() machine.Kernel { return p.kernel }
 
 // Lanes returns how many blocks one call of Convolve takes.
 func (p *Plan) Lanes() int { return p.lanes }

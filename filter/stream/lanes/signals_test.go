@@ -8,6 +8,8 @@ import (
 	"testing"
 
 	"pgregory.net/rapid"
+
+	"fettle/filter/stream/machine"
 )
 
 // eps is the distance from 1 to the next float64, twice the largest relative
@@ -33,9 +35,9 @@ func impulse(at, n int) []float64 {
 // engines are the kernels of this machine, and the portable twin of the layout
 // that has eight lanes.
 func engines() []engine {
-	all := []engine{{Portable, 8}}
-	for _, k := range Available() {
-		all = append(all, engine{k, k.Lanes()})
+	all := []engine{{machine.Portable, 8}}
+	for _, k := range machine.Available() {
+		all = append(all, engine{k, Of(k)})
 	}
 	return all
 }

@@ -8,6 +8,7 @@ import (
 
 	"fettle/filter/stream"
 	"fettle/filter/stream/lanes"
+	"fettle/filter/stream/machine"
 )
 
 func noise(seed uint64, n int) []float64 {
@@ -30,7 +31,7 @@ func noisePlanes(seed uint64, count, n int) [][]float64 {
 // TestConvolveAgainstStream: of a signal that repeats, the linear convolution
 // of package stream is the circular one from the second period on.
 func TestConvolveAgainstStream(t *testing.T) {
-	for _, k := range lanes.Available() {
+	for _, k := range machine.Available() {
 		for size := lanes.MinSize; size <= 65536; size *= 2 {
 			t.Run(fmt.Sprintf("%v/%d", k, size), func(t *testing.T) {
 				taps := noise(1, size/4+1)
@@ -84,7 +85,7 @@ func reportRate(b *testing.B, samples int) {
 // two channels are loaded, convolved and stored. It counts the real samples that
 // are kept, three quarters of a block.
 func BenchmarkBlock(b *testing.B) {
-	for _, k := range lanes.Available() {
+	for _, k := range machine.Available() {
 		for _, size := range benchSizes {
 			b.Run(fmt.Sprintf("kernel=%v/size=%d", k, size), func(b *testing.B) {
 				p := lanes.New(benchTaps(size), size, k)
