@@ -4,6 +4,7 @@ import (
 	"fettle/audio"
 	"fettle/audit/figures"
 	"fettle/filter"
+	"fettle/filter/stream/machine"
 )
 
 // Result is the audit of one path of a chain at one rate.
@@ -39,11 +40,11 @@ type Result struct {
 	Disagreement, AnalyticDisagreement float64
 }
 
-// Chain audits every path of a realised chain.
-func Chain(f *filter.Filter) ([]*Result, error) {
+// Chain audits every path of a realised chain under one kernel.
+func Chain(f *filter.Filter, kernel machine.Kernel) ([]*Result, error) {
 	var out []*Result
 	for _, p := range f.Paths() {
-		r, err := auditPath(f, p)
+		r, err := auditPath(f, p, kernel)
 		if err != nil {
 			return nil, err
 		}
@@ -52,7 +53,7 @@ func Chain(f *filter.Filter) ([]*Result, error) {
 	return out, nil
 }
 
-func auditPath(f *filter.Filter, p *filter.Path) (*Result, error) {
+func auditPath(f *filter.Filter, p *filter.Path, kernel machine.Kernel) (*Result, error) {
 	r := &Result{
 		Chain: f.Chain().Name, Phase: f.Phase(), Rate: f.Rate(),
 		Channel: p.Channel, Shared: len(f.Paths()) == 1,
@@ -65,7 +66,7 @@ func auditPath(f *filter.Filter, p *filter.Path) (*Result, error) {
 		r.Character = c.String()
 	}
 	rate := float64(f.Rate())
-	b := newBench(f, p)
+	b := newBench(f, p, kernel)
 	h, err := b.through(impulse(f.Rate(), b.channels, b.before, b.before+1+b.after))
 	if err != nil {
 		return nil, err
@@ -81,14 +82,15 @@ func auditPath(f *filter.Filter, p *filter.Path) (*Result, error) {
 type bench struct {
 	filter   *filter.Filter
 	path     *filter.Path
+	kernel   machine.Kernel
 	channels int // of the probe
 	channel  int // to be read, from 0
 	before   int // frames that the response needs before the aligned instant
 	after    int // and after it
 }
 
-func newBench(f *filter.Filter, p *filter.Path) *bench {
-	b := &bench{filter: f, path: p}
+func newBench(f *filter.Filter, p *filter.Path, kernel machine.Kernel) *bench {
+	b := &bench{filter: f, path: p, kernel: kernel}
 	for _, q := range f.Paths() {
 		b.channels = max(b.channels, q.Channel)
 	}
@@ -104,7 +106,7 @@ func newBench(f *filter.Filter, p *filter.Path) *bench {
 
 // through sends a probe through the filter, in silence.
 func (b *bench) through(probe audio.Source) ([]float64, error) {
-	out, err := b.filter.ApplyWith(probe, filter.Silence)
+	out, err := b.filter.ApplyWith(probe, filter.Setup{Edges: filter.Silence, Kernel: b.kernel})
 	if err != nil {
 		return nil, err
 	}

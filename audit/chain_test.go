@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"fettle/filter"
+	"fettle/filter/stream/machine"
 )
 
 func audited(t testing.TB, text string, rate int, as filter.Realisation) *Result {
@@ -23,7 +24,7 @@ func auditedPaths(t testing.TB, text string, rate int, as filter.Realisation) []
 	if err != nil {
 		t.Fatal(err)
 	}
-	results, err := Chain(f)
+	results, err := Chain(f, machine.Best())
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -240,7 +241,7 @@ func BenchmarkAudit16k(b *testing.B) {
 	}
 	b.ReportMetric(float64(len(f.Paths()[0].System.Taps)), "taps")
 	for b.Loop() {
-		if _, err := Chain(f); err != nil {
+		if _, err := Chain(f, machine.Best()); err != nil {
 			b.Fatal(err)
 		}
 	}

@@ -6,6 +6,7 @@ import (
 
 	"fettle/audio"
 	"fettle/filter/stream"
+	"fettle/filter/stream/machine"
 
 	goaudio "github.com/go-audio/audio"
 )
@@ -13,21 +14,38 @@ import (
 // chunk is how many frames Apply moves at a time.
 const chunk = 4096
 
+// Setup says how a stream is filtered where the chain's file does not.
+type Setup struct {
+	// Edges are what stands before and after the recording: the chain's, but a
+	// probe stands in silence, whatever a recording would.
+	Edges Edges
+	// Kernel is the arithmetic. Outputs are the same byte for byte only under one.
+	Kernel machine.Kernel
+	// Workers is how many goroutines may filter one stream at once; below 2: one.
+	// The output does not depend on it.
+	Workers int
+}
+
+// Setup is the usual one: the chain's edges, the best kernel that runs here, one
+// goroutine.
+func (f *Filter) Setup() Setup {
+	return Setup{Edges: f.chain.Edges, Kernel: machine.Best(), Workers: 1}
+}
+
 // Apply filters a stream: aligned, of the same length and format. It fails
 // with an error that wraps ErrForRecording when the chain names a channel
 // that the stream does not have or was realised at another rate.
 func (f *Filter) Apply(src audio.Source) (audio.Source, error) {
-	return f.ApplyWith(src, f.chain.Edges)
+	return f.ApplyWith(src, f.Setup())
 }
 
-// ApplyWith is Apply with other edges than the chain's: a probe stands in
-// silence, whatever a recording would.
-func (f *Filter) ApplyWith(src audio.Source, edges Edges) (audio.Source, error) {
+// ApplyWith is Apply with another setup.
+func (f *Filter) ApplyWith(src audio.Source, s Setup) (audio.Source, error) {
 	format := src.Format()
 	if err := f.suits(format); err != nil {
 		return nil, err
 	}
-	return f.newAligned(src, format, edges), nil
+	return f.newAligned(src, format, s), nil
 }
 
 func (f *Filter) suits(format *goaudio.Format) error {
@@ -49,6 +67,7 @@ type lane struct {
 	channels []int // from 0
 	kernel   stream.Kernel
 	planes   [][]float64 // this lane's part of the stream's planes
+	part     [][]float64 // what of them a chunk fills
 }
 
 // aligned is the Source that Apply returns.
@@ -63,7 +82,7 @@ type aligned struct {
 	out    int64       // frames given so far
 }
 
-func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, edges Edges) *aligned {
+func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, s Setup) *aligned {
 	a := &aligned{src: src, raw: make([]float64, chunk*format.NumChannels)}
 	for range format.NumChannels {
 		a.planes = append(a.planes, make([]float64, chunk))
@@ -79,7 +98,7 @@ func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, edges Edge
 		if channels == nil {
 			continue
 		}
-		k := p.kernel(len(channels))
+		k := p.kernel(len(channels), stream.Run{Frames: src.Frames(), Kernel: s.Kernel, Workers: s.Workers})
 		lead = max(lead, f.align.skip(p)+k.Delay())
 		tail = max(tail, k.Tail())
 		a.lanes = append(a.lanes, lane{channels: channels, kernel: k})
@@ -93,12 +112,13 @@ func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, edges Edge
 		for _, c := range l.channels {
 			l.planes = append(l.planes, a.planes[c])
 		}
+		l.part = make([][]float64, len(l.planes))
 	}
 	before := 0
-	if edges != Silence {
+	if s.Edges != Silence {
 		before = tail
 	}
-	a.input = newExtended(src, edges, before, lead)
+	a.input = newExtended(src, s.Edges, before, lead)
 	a.skip = int64(before + lead)
 	return a
 }
@@ -114,13 +134,13 @@ func (f *Filter) pathOf(channel int) *Path {
 }
 
 // kernel makes the path's streaming kernel for some channels.
-func (p *Path) kernel(channels int) stream.Kernel {
+func (p *Path) kernel(channels int, run stream.Run) stream.Kernel {
 	var ks []stream.Kernel
 	if p.Delay > 0 {
 		ks = append(ks, stream.NewDelay(p.Delay, channels))
 	}
 	if p.fir != nil {
-		ks = append(ks, p.fir.Kernel(channels))
+		ks = append(ks, p.fir.Kernel(channels, run))
 	}
 	if len(p.System.Sections) > 0 {
 		ks = append(ks, stream.NewCascade(p.System.Sections, channels))
@@ -149,11 +169,7 @@ func (a *aligned) ReadFrames(dst []float64) (int, error) {
 	if end := a.input.length; end >= 0 {
 		frames = int(min(int64(frames), end-a.out))
 	}
-	for c, plane := range a.planes {
-		for i, v := range plane[a.at : a.at+frames] {
-			dst[i*channels+c] = v
-		}
-	}
+	join(dst, a.planes, a.at, frames)
 	a.at += frames
 	a.out += int64(frames)
 	return frames, nil
@@ -168,19 +184,12 @@ func (a *aligned) fill() error {
 	if err != nil {
 		return err
 	}
-	channels := len(a.planes)
-	for c, plane := range a.planes {
-		for i := range n {
-			plane[i] = a.raw[i*channels+c]
-		}
-	}
-	part := make([][]float64, 0, channels)
+	separate(a.planes, a.raw, n)
 	for _, l := range a.lanes {
-		part = part[:0]
-		for _, plane := range l.planes {
-			part = append(part, plane[:n])
+		for i, plane := range l.planes {
+			l.part[i] = plane[:n]
 		}
-		l.kernel.Process(part, part)
+		l.kernel.Process(l.part, l.part)
 	}
 	drop := min(a.skip, int64(n))
 	a.skip -= drop

@@ -156,7 +156,3 @@ func (p *Path) Response(size int) (h []complex128, tau []float64) {
 	}
 	return h, tau
 }
-
-// KernelName names the convolver's arithmetic, for the record: outputs are the
-// same byte for byte only under one kernel.
-const KernelName = "portable"

@@ -11,6 +11,7 @@ import (
 	"fettle/audit"
 	"fettle/audit/figures"
 	"fettle/filter"
+	"fettle/filter/stream/machine"
 )
 
 // results audits a chain whose channels are treated in three ways and whose
@@ -33,7 +34,7 @@ stages:
 	if err != nil {
 		t.Fatal(err)
 	}
-	r, err := audit.Chain(f)
+	r, err := audit.Chain(f, machine.Best())
 	if err != nil {
 		t.Fatal(err)
 	}

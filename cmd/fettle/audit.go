@@ -42,6 +42,7 @@ func auditChainCommand() *cli.Command {
 		Flags: []cli.Flag{
 			rateFlag(),
 			phaseFlag(),
+			kernelFlag(),
 			jsonFlag(),
 		},
 		Action: auditChain,
@@ -65,6 +66,10 @@ func auditChain(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
+	kernel, _, err := kernelOf(c)
+	if err != nil {
+		return err
+	}
 	if err := tryWriting(c.String("json")); err != nil {
 		return err
 	}
@@ -73,7 +78,7 @@ func auditChain(c *cli.Context) error {
 		if err != nil {
 			return nil, err
 		}
-		return audit.Chain(f)
+		return audit.Chain(f, kernel)
 	})
 	if err != nil {
 		return err

@@ -10,6 +10,7 @@ import (
 	"time"
 
 	"fettle/cmd/fettle/internal/batch"
+	"fettle/filter/stream/machine"
 )
 
 // contract is every key that the record's readers may count on.
@@ -43,7 +44,7 @@ func TestRecord(t *testing.T) {
 		"sha256_in": taken, "sha256_out": hash(t, filepath.Join(b.Out, "a.wav")),
 		"rate_hz": float64(rate), "channels": 2.0, "frames": 500.0, "phase": "linear", "edges": "mirror",
 		// A symmetric kernel of 3 taps is late by exactly one sample.
-		"latency_samples": 1.0, "residual_samples": 0.0, "dither": "TPDF", "kernel": "portable",
+		"latency_samples": 1.0, "residual_samples": 0.0, "dither": "TPDF", "kernel": machine.Best().String(),
 		"format_in": "24-bit PCM", "format_out": "24-bit PCM", "version": version(),
 	} {
 		mustEqual(t, key, done[key], want)

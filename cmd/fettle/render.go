@@ -33,6 +33,7 @@ func renderCommand() *cli.Command {
 			&cli.StringFlag{Name: "format", Usage: "write `FORMAT`, such as pcm24 (default: as each original)"},
 			&cli.StringFlag{Name: "headroom", Usage: "lower all by `LEVEL`, such as \"3 dB\"; fit: as each needs"},
 			&cli.IntFlag{Name: "jobs", Value: runtime.GOMAXPROCS(0), Usage: "treat `N` recordings at once"},
+			kernelFlag(),
 			&cli.BoolFlag{Name: "again", Usage: "treat again what is already done", DisableDefaultText: true},
 			jsonFlag(),
 		},
@@ -67,7 +68,7 @@ func render(c *cli.Context) error {
 }
 
 func renderOptions(c *cli.Context) (batch.Options, error) {
-	o := batch.Options{Out: c.String("out"), Jobs: c.Int("jobs"), Again: c.Bool("again"), Version: c.App.Version}
+	o := batch.Options{Out: c.String("out"), Jobs: c.Int("jobs"), Cores: runtime.GOMAXPROCS(0), Again: c.Bool("again"), Version: c.App.Version}
 	switch {
 	case c.String("chain") == "":
 		return o, errors.New("--chain: is missing; name the chain file to clean with")
@@ -79,6 +80,9 @@ func renderOptions(c *cli.Context) (batch.Options, error) {
 		return o, fmt.Errorf("--jobs: %d recordings at once are too few; give 1 or more", o.Jobs)
 	}
 	var err error
+	if o.Kernel, o.KernelGiven, err = kernelOf(c); err != nil {
+		return o, err
+	}
 	if o.Encoding, err = encodingOf(c.String("format")); err != nil {
 		return o, err
 	}
@@ -144,7 +148,7 @@ func audits(plan *batch.Plan) ([]*audit.Result, error) {
 		if err != nil {
 			return nil, err
 		}
-		of, err := audit.Chain(f)
+		of, err := audit.Chain(f, plan.Options.Kernel)
 		if err != nil {
 			return nil, err
 		}

@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"fettle/filter/response"
+	"fettle/filter/stream/machine"
 
 	"gonum.org/v1/gonum/dsp/fourier"
 )
@@ -27,11 +28,13 @@ func reportRate(b *testing.B, samples int) {
 }
 
 func BenchmarkFIR(b *testing.B) {
-	for _, taps := range []int{15, 255, 4095, 65535} {
-		for _, channels := range []int{1, 2} {
-			b.Run(fmt.Sprintf("taps=%d/channels=%d", taps, channels), func(b *testing.B) {
-				benchKernel(b, NewFIR(noise(2, taps)).Kernel(channels), channels)
-			})
+	for _, kernel := range machine.Available() {
+		for _, taps := range []int{15, 255, 1023, 4095, 16383, 65535} {
+			for _, channels := range []int{1, 2} {
+				b.Run(fmt.Sprintf("kernel=%v/taps=%d/channels=%d", kernel, taps, channels), func(b *testing.B) {
+					benchKernel(b, NewFIR(noise(2, taps)).Kernel(channels, Run{-1, kernel, 1}), channels)
+				})
+			}
 		}
 	}
 }
@@ -47,36 +50,12 @@ func BenchmarkCascade(b *testing.B) {
 	}
 }
 
-// BenchmarkBlockSize is where directTaps and blockSize come from.
-func BenchmarkBlockSize(b *testing.B) {
-	for _, taps := range []int{8, 16, 24, 32, 64, 255, 1023, 4095, 16383, 65535} {
-		for _, size := range candidateSizes(taps) {
-			b.Run(fmt.Sprintf("taps=%d/size=%d", taps, size), func(b *testing.B) {
-				benchKernel(b, newFIR(noise(2, taps), size).Kernel(2), 2)
-			})
-		}
-	}
-}
-
-func candidateSizes(taps int) []int {
-	var sizes []int
-	if taps <= 64 {
-		sizes = append(sizes, 0)
-	}
-	for size := 64; size <= 32*taps || size <= 4096; size *= 2 {
-		if size >= 4*taps-4 {
-			sizes = append(sizes, size)
-		}
-	}
-	return sizes
-}
-
 // BenchmarkGonum is overlap-save on the real transform of a general-purpose
 // library, for the ratio: the same blocks, one channel at a time.
 func BenchmarkGonum(b *testing.B) {
 	for _, taps := range []int{255, 4095, 65535} {
 		b.Run(fmt.Sprintf("taps=%d", taps), func(b *testing.B) {
-			g := newGonumOverlapSave(noise(2, taps), blockSize(taps))
+			g := newGonumOverlapSave(noise(2, taps), blockSize(taps, 2, Run{-1, machine.Portable, 1}))
 			x := noise(1, len(g.block))
 			y := make([]float64, g.hop)
 			for b.Loop() {

@@ -2,82 +2,59 @@ package stream
 
 import (
 	"math"
-	"math/bits"
+	"sync"
 
-	"fettle/filter/stream/internal/twiddle"
+	"fettle/filter/stream/lanes"
+	"fettle/filter/stream/machine"
 )
 
 // FIR is a filter of finite impulse response h[0] to h[len-1]:
 //
 //	y[n] = sum over k of h[k] x[n-k]
 //
-// It holds what all kernels of one filter share, is never written to after
-// NewFIR and may be used by any number of goroutines.
+// It holds what all kernels of one filter share and may be used by any number
+// of goroutines.
 type FIR struct {
-	taps     []float64
-	spectrum []complex128 // of the taps, bit-reversed, over N; nil: summed directly
-	factors  []twiddle.Factor
+	taps  []float64
+	mu    sync.Mutex
+	plans map[planKey]*lanes.Plan // made when first asked for
 }
 
-// directTaps is the most taps that are summed directly. BenchmarkBlockSize
-// puts the crossing there: at 24 taps 145 million samples a second directly and
-// 142 by blocks, at 32 taps 107 and 147.
-const directTaps = 24
-
-// shortestBlock is the least block in points. Up to 100 taps or so, blocks of
-// 256 to 1024 points measure alike; below, the overhead of a call shows.
-const shortestBlock = 512
+type planKey struct {
+	size   int
+	kernel machine.Kernel
+}
 
 // NewFIR returns the filter with the given taps, one or more, of any size and
 // sign, which are copied. It panics if there are none.
-//
-// The way it is computed depends on the number of taps alone: up to 24 by
-// direct summation, more by overlap-save in blocks of a power of two.
 func NewFIR(taps []float64) *FIR {
 	if len(taps) == 0 {
 		panic("stream: NewFIR without taps: one or more are needed")
 	}
-	return newFIR(taps, blockSize(len(taps)))
+	return &FIR{taps: append([]float64(nil), taps...), plans: map[planKey]*lanes.Plan{}}
 }
 
-// newFIR is NewFIR with a block of size points, a power of two, at least 32 and
-// at least 4 (len(taps)-1), or 0 for direct summation.
-func newFIR(taps []float64, size int) *FIR {
-	f := &FIR{taps: append([]float64(nil), taps...)}
-	if size == 0 {
-		return f
+// plan returns the plan for blocks of size points.
+func (f *FIR) plan(size int, kernel machine.Kernel) *lanes.Plan {
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	key := planKey{size, kernel}
+	if f.plans[key] == nil {
+		f.plans[key] = lanes.New(f.taps, size, kernel)
 	}
-	f.factors = twiddle.Table(size / 4)
-	f.spectrum = make([]complex128, size)
-	scaled := make([]float64, size)
-	for i, h := range taps {
-		scaled[i] = h / float64(size)
-	}
-	forward(f.spectrum, scaled, make([]float64, size), f.factors)
-	return f
-}
-
-// blockSize returns the points of a block for a number of taps, 0 for direct
-// summation: the least power of two that is at least four times the overlap,
-// so between a quarter and an eighth of the work is lost to it. Half that size
-// measures 30 % slower at 255 to 65535 taps; twice that size gains less than
-// 10 % and doubles the delay and the memory.
-func blockSize(taps int) int {
-	if taps <= directTaps {
-		return 0
-	}
-	return max(shortestBlock, 4<<bits.Len(uint(taps-2)))
+	return f.plans[key]
 }
 
 // Taps returns how many taps there are.
 func (f *FIR) Taps() int { return len(f.taps) }
 
 // Operations returns about how many multiplications a sample of one channel
-// costs: the taps themselves where they are summed directly; else, of a block of
-// N points that gives a hop of two signals, two transforms of 3/4 N log4 N complex
-// multiplications and N for the spectrum, four real ones each.
+// costs in a long stream with the portable kernel: the taps themselves where they
+// are summed directly; else, of a block of N points that gives a hop of two
+// signals, two transforms of 3/4 N log4 N complex multiplications and N for the
+// spectrum, four real ones each.
 func (f *FIR) Operations() float64 {
-	n := float64(len(f.spectrum))
+	n := float64(blockSize(len(f.taps), 2, Run{Frames: -1, Kernel: machine.Portable}))
 	if n == 0 {
 		return float64(len(f.taps))
 	}
@@ -85,19 +62,41 @@ func (f *FIR) Operations() float64 {
 	return 4 * n * (2*0.75*math.Log2(n)/2 + 1) / (2 * hop)
 }
 
+// Run says how a stream is to be filtered.
+type Run struct {
+	// Frames is how long the stream is about to be, -1 if that is not known. It
+	// decides about blocks, nothing else: the stream may turn out longer.
+	Frames int64
+	Kernel machine.Kernel
+	// Workers is how many goroutines may work on a stream at once; below 2: one.
+	// The output does not depend on it, only Delay does.
+	Workers int
+}
+
+// Anything is a run of unknown length on one goroutine with the best kernel.
+func Anything() Run { return Run{Frames: -1, Kernel: machine.Best(), Workers: 1} }
+
 // Kernel returns a kernel for one stream of so many channels, one or more; it
-// panics if there are none. Its Tail is Taps()-1. Its Delay is 0 where the
-// taps are summed directly, else one hop for an even number of channels and
-// two for an odd one, the same for all channels.
+// panics if there are none or the run's kernel does not run here. Its Tail is
+// Taps()-1; its Delay follows from the blocks, the same for all channels.
+//
+// How it is computed depends on the number of taps, the channels, the run's
+// frames and its kernel alone, see blockSize: directly, or by overlap-save in
+// blocks of a power of two.
 //
 // Two channels share a block, as its real and imaginary part; the last of an
-// odd number shares it with its own next block. What rounding carries from
+// odd number shares it with its own next hop. What rounding carries from
 // one to the other is of the size of what it does to each alone: about
 // 2e-16 log2(N) times the Euclidean norm of the taps times the peak of both.
-func (f *FIR) Kernel(channels int) Kernel {
+func (f *FIR) Kernel(channels int, run Run) Kernel {
 	checkChannels(channels)
-	if f.spectrum == nil {
+	return f.kernel(channels, run, blockSize(len(f.taps), channels, run))
+}
+
+// kernel is Kernel with a block of size points, 0 for direct summation.
+func (f *FIR) kernel(channels int, run Run, size int) Kernel {
+	if size == 0 {
 		return newDirect(f.taps, channels)
 	}
-	return newOverlapSave(f, channels)
+	return newOverlapSave(f.plan(size, run.Kernel), len(f.taps), channels, run)
 }

@@ -7,6 +7,9 @@ import (
 	"sync"
 	"testing"
 
+	"fettle/filter/stream/lanes"
+	"fettle/filter/stream/machine"
+
 	"pgregory.net/rapid"
 )
 
@@ -18,7 +21,7 @@ func TestFIRAgainstDirect(t *testing.T) {
 	for _, taps := range tapCounts {
 		t.Run(fmt.Sprint(taps), func(t *testing.T) {
 			h := noise(20, taps)
-			k := NewFIR(h).Kernel(1)
+			k := NewFIR(h).Kernel(1, Anything())
 			for periods := 1; periods <= 3; periods++ {
 				k.Reset()
 				x := noise(uint64(periods), periods*stride(k)-1|1)
@@ -58,26 +61,30 @@ func TestFIRGivesItsTaps(t *testing.T) {
 		h := noise(22, taps)
 		f := NewFIR(h)
 		for _, channels := range []int{1, 2} {
-			for _, at := range edges(f) {
+			for _, at := range edges(f, channels) {
 				x := planes(channels, at+taps+3)
 				x[channels-1][at] = 1
 				want := slices.Concat(make([]float64, at), h, make([]float64, 3))
-				got := runChannels(f.Kernel(channels), x)[channels-1]
+				got := runChannels(f.Kernel(channels, Anything()), x)[channels-1]
 				compare(t, fmt.Sprintf("%d taps, %d channels, impulse at %d", taps, channels, at), got, want, blockError(h)(1))
 			}
 		}
 	}
 }
 
-func edges(f *FIR) []int {
-	if f.spectrum == nil {
-		return []int{0, 1, directChunk - 1, directChunk, directChunk + 1}
+// edges are round the ends of the hops and of the block, and of what is summed
+// directly at a time.
+func edges(f *FIR, channels int) []int {
+	ends := []int{directChunk}
+	if size := blockSize(f.Taps(), channels, Anything()); size > 0 {
+		hop := size - f.Taps() + 1
+		ends = []int{hop, 2 * hop, 3 * hop, size}
 	}
-	var at []int
-	for _, edge := range []int{f.hop(), 2 * f.hop(), 3 * f.hop(), len(f.spectrum)} {
-		at = append(at, edge-1, edge, edge+1)
+	at := []int{0, 1}
+	for _, end := range ends {
+		at = append(at, end-1, end, end+1)
 	}
-	return append(at, 0, 1)
+	return at
 }
 
 func runChannels(k Kernel, x [][]float64) [][]float64 {
@@ -91,7 +98,7 @@ func TestFIRProperty(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		h := noise(rapid.Uint64().Draw(t, "seed"), rapid.IntRange(1, 200).Draw(t, "taps"))
 		channels := rapid.IntRange(1, 3).Draw(t, "channels")
-		k := NewFIR(h).Kernel(channels)
+		k := NewFIR(h).Kernel(channels, Anything())
 		frames := rapid.IntRange(0, 3*stride(k)).Draw(t, "frames")
 		x := noisePlanes(23, channels, frames)
 		want := expected(k, x, func(x []float64) []float64 { return slowFIR(h, x) })
@@ -107,28 +114,32 @@ func TestFIRProperty(t *testing.T) {
 	})
 }
 
-// TestFIRBlockSizeDoesNotMatter compares the default with other block sizes.
+// TestFIRBlockSizeDoesNotMatter compares direct summation with blocks of all
+// sizes.
 func TestFIRBlockSizeDoesNotMatter(t *testing.T) {
 	h, x := noise(24, 250), noise(25, 20000)
-	want := run(newFIR(h, 0).Kernel(1), x)
-	for size := 1024; size <= 1<<18; size *= 2 {
-		got := run(newFIR(h, size).Kernel(1), x)
+	f := NewFIR(h)
+	want := run(f.kernel(1, Anything(), 0), x)
+	for size := lanes.MinSize; size <= 1<<18; size *= 2 {
 		// Larger blocks have more levels, by a factor below two.
+		got := run(f.kernel(1, Anything(), size), x)
 		compare(t, fmt.Sprintf("blocks of %d", size), got, want, 2*blockError(h)(peak(x)))
 	}
 }
 
-func TestFIRBlockSize(t *testing.T) {
-	for taps := 1; taps <= 1<<20; taps += 1 + taps/50 {
-		size := blockSize(taps)
-		if taps <= directTaps {
-			if size != 0 {
-				t.Errorf("%d taps: blocks of %d, want none", taps, size)
+// TestWorkersDoNotMatter: the same bits, whatever the number of goroutines.
+func TestWorkersDoNotMatter(t *testing.T) {
+	f := NewFIR(noise(40, 1000))
+	for _, kernel := range machine.Available() {
+		for _, channels := range []int{1, 2, 3, 5} {
+			x := noisePlanes(41, channels, 150_000)
+			want := runChannels(f.Kernel(channels, Run{-1, kernel, 1}), x)
+			for workers := 2; workers <= 5; workers++ {
+				got := runChannels(f.Kernel(channels, Run{-1, kernel, workers}), x)
+				for c := range got {
+					compare(t, fmt.Sprintf("%v, %d workers, channel %d of %d", kernel, workers, c, channels), got[c], want[c], 0)
+				}
 			}
-			continue
-		}
-		if size&(size-1) != 0 || size < 4*(taps-1) || size > max(shortestBlock, 8*(taps-1)) {
-			t.Errorf("%d taps: blocks of %d, want a power of two of 4 to 8 times the overlap", taps, size)
 		}
 	}
 }
@@ -136,22 +147,27 @@ func TestFIRBlockSize(t *testing.T) {
 func TestFIRIsShared(t *testing.T) {
 	h, x := noise(26, 300), noise(27, 10000)
 	f := NewFIR(h)
-	want := run(f.Kernel(1), x)
+	want := run(f.Kernel(1, Anything()), x)
 	h[0] = 5 // the filter has a copy
 	var wait sync.WaitGroup
 	for range 4 {
-		wait.Go(func() { compare(t, "at the same time", run(f.Kernel(1), x), want, 0) })
+		wait.Go(func() { compare(t, "at the same time", run(f.Kernel(1, Anything()), x), want, 0) })
 	}
 	wait.Wait()
 }
 
+// TestFIRSizes: a period is one hop for an even number of channels and two for an
+// odd one, times the workers.
 func TestFIRSizes(t *testing.T) {
 	f := NewFIR(noise(28, 4095))
-	even, odd := f.Kernel(2), f.Kernel(3)
-	if f.Taps() != 4095 || even.Tail() != 4094 || odd.Tail() != 4094 {
-		t.Errorf("taps %d, tails %d and %d, want 4095, 4094 and 4094", f.Taps(), even.Tail(), odd.Tail())
+	hop := blockSize(4095, 2, Anything()) - 4094
+	for _, c := range []struct{ channels, workers, hops int }{{2, 1, 1}, {3, 1, 2}, {2, 3, 3}, {1, 2, 4}, {6, 0, 1}} {
+		k := f.Kernel(c.channels, Run{-1, machine.Best(), c.workers})
+		if k.Tail() != 4094 || k.Delay() != c.hops*hop {
+			t.Errorf("%d channels, %d workers: tail %d and delay %d, want 4094 and %d", c.channels, c.workers, k.Tail(), k.Delay(), c.hops*hop)
+		}
 	}
-	if even.Delay() != 16384-4094 || odd.Delay() != 2*even.Delay() {
-		t.Errorf("delays %d and %d, want 12290 and 24580", even.Delay(), odd.Delay())
+	if f.Taps() != 4095 {
+		t.Errorf("%d taps, want 4095", f.Taps())
 	}
 }

@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"fettle/filter/response"
+	"fettle/filter/stream/machine"
 )
 
 // eps is the distance from 1 to the next float64.
@@ -23,17 +24,20 @@ const eps = 0x1p-52
 // is that of the output: |h| times the norm of the block, and that is at most
 // sqrt(N) peak. The other sqrt(log2 N) is for the largest of N samples.
 func blockError(taps []float64) func(peak float64) float64 {
-	levels := math.Log2(float64(max(blockSize(len(taps)), 32)))
+	levels := math.Log2(float64(max(blockSize(len(taps), 2, Anything()), 32)))
 	return func(peak float64) float64 { return eps * levels * norm(taps) * peak }
 }
 
 func TestKernels(t *testing.T) {
-	for _, taps := range []int{1, 2, 3, directTaps, directTaps + 1, 100, 300} {
+	for _, taps := range []int{1, 2, 3, 24, 25, 100, 300} {
 		h := noise(3, taps)
 		f := NewFIR(h)
-		t.Run(fmt.Sprintf("FIR of %d", taps), func(t *testing.T) {
-			testKernel(t, f.Kernel, func(x []float64) []float64 { return slowFIR(h, x) }, blockError(h))
-		})
+		for _, run := range runs() {
+			t.Run(fmt.Sprintf("FIR of %d, %v, %d workers", taps, run.Kernel, run.Workers), func(t *testing.T) {
+				testKernel(t, func(channels int) Kernel { return f.kernel(channels, run, smallBlock(taps)) },
+					func(x []float64) []float64 { return slowFIR(h, x) }, blockError(h))
+			})
+		}
 	}
 	for _, sections := range [][]response.Section{
 		{},
@@ -58,12 +62,29 @@ func TestKernels(t *testing.T) {
 	t.Run("Series of four", testSeries)
 }
 
+// smallBlock keeps tests short.
+func smallBlock(taps int) int {
+	if taps <= 24 {
+		return 0
+	}
+	return 512
+}
+
+// runs are all kernels, with one worker and with several.
+func runs() []Run {
+	var all []Run
+	for _, k := range machine.Available() {
+		all = append(all, Run{-1, k, 1}, Run{-1, k, 2})
+	}
+	return all
+}
+
 func testSeries(t *testing.T) {
 	h, g := noise(4, 70), noise(5, 40)
 	f, e := NewFIR(h), NewFIR(g)
 	sections := []response.Section{lowpass(0.1, 0.7)}
 	testKernel(t, func(channels int) Kernel {
-		return Series(f.Kernel(channels), NewDelay(5, channels), NewCascade(sections, channels), e.Kernel(channels))
+		return Series(f.Kernel(channels, Anything()), NewDelay(5, channels), NewCascade(sections, channels), e.Kernel(channels, Anything()))
 	}, func(x []float64) []float64 {
 		return slowFIR(g, slowCascade(sections, slowDelay(5, slowFIR(h, x))))
 	}, func(peak float64) float64 {
@@ -74,13 +95,13 @@ func testSeries(t *testing.T) {
 }
 
 func TestSeriesAddsDelaysAndTails(t *testing.T) {
-	kernels := []Kernel{NewFIR(noise(4, 70)).Kernel(1), NewDelay(5, 1), NewFIR(noise(5, 40)).Kernel(1)}
+	kernels := []Kernel{NewFIR(noise(4, 70)).Kernel(1, Anything()), NewDelay(5, 1), NewFIR(noise(5, 40)).Kernel(1, Anything())}
 	s := Series(kernels...)
 	kernels[1] = NewDelay(1000, 1) // the series has its own list
 	if want := 69 + 5 + 39; s.Tail() != want {
 		t.Errorf("tail %d, want %d", s.Tail(), want)
 	}
-	if want := (512-69)*2 + (512-39)*2; s.Delay() != want {
+	if want := kernels[0].Delay() + kernels[2].Delay(); s.Delay() != want {
 		t.Errorf("delay %d, want %d", s.Delay(), want)
 	}
 	if s := Series(); s.Tail() != 0 || s.Delay() != 0 {

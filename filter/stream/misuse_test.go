@@ -15,7 +15,7 @@ func TestMisusePanics(t *testing.T) {
 		says string
 	}{
 		"no taps":            {func() { NewFIR(nil) }, "without taps"},
-		"FIR, no channels":   {func() { NewFIR([]float64{1}).Kernel(0) }, "0 channels"},
+		"FIR, no channels":   {func() { NewFIR([]float64{1}).Kernel(0, Anything()) }, "0 channels"},
 		"delay, no channels": {func() { NewDelay(1, 0) }, "0 channels"},
 		"negative delay":     {func() { NewDelay(-1, 1) }, "-1 samples"},
 		"no cascade channel": {func() { NewCascade(nil, -1) }, "-1 channels"},
@@ -43,8 +43,8 @@ func TestMisusePanics(t *testing.T) {
 func TestProcessDoesNotAllocate(t *testing.T) {
 	sections := []response.Section{lowpass(0.1, 0.7), lowpass(0.1, 0.7), highpass(0.1, 0.7)}
 	for name, k := range map[string]Kernel{
-		"direct":       NewFIR(noise(30, 9)).Kernel(3),
-		"overlap-save": NewFIR(noise(31, 300)).Kernel(3),
+		"direct":       NewFIR(noise(30, 9)).Kernel(3, Anything()),
+		"overlap-save": NewFIR(noise(31, 300)).Kernel(3, Anything()),
 		"cascade":      NewCascade(sections, 3),
 		"delay":        NewDelay(100, 3),
 		"series":       Series(NewDelay(100, 3), NewCascade(sections, 3)),

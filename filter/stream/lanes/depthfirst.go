@@ -1,120 +1,137 @@
+//go:build amd64 && !purego
+
 package lanes
 
 import (
 	"math/bits"
-
-	"fettle/filter/stream/internal/twiddle"
-	"fettle/filter/stream/machine"
+	"unsafe"
 )
 
-// engine says who computes the passes.
-type engine struct {
-	kernel machine.Kernel
-	lanes  int
+// leafPoints is the largest block that is transformed pass by pass. A larger
+// one is taken apart depth first: after its own pass each quarter is convolved to
+// the end before the next is touched, so that it stays in a near cache.
+const leafPoints = 2048
+
+// widePoints is the least block of which the two outermost passes are done in
+// one sweep, so that it is taken from a far cache only once.
+const widePoints = 8192
+
+// stretch is how many points of a row such a sweep does before it goes on to the
+// next stretch: sixteen of them stay in a first-level cache.
+const stretch = 64
+
+// pad is put between the sixteen rows, which would otherwise all begin at the
+// same place of a cache and drive each other out.
+const pad = 72
+
+// cacheLine is in bytes. A vector that lies across two costs twice the time.
+const cacheLine = 64
+
+func (v *vector) wide() bool { return v.size >= widePoints }
+
+// scratch returns room for a block, at the start of a cache line.
+func (v *vector) scratch() []float64 {
+	n := 2 * v.size
+	if v.wide() {
+		n += 2 * 16 * pad
+	}
+	return aligned(n)
 }
 
-// leafBytes is the most data that is transformed pass by pass. A larger block is
-// taken apart depth first: after its own pass each quarter is convolved to the
-// end before the next is touched, so that it stays in a near cache. 32 KiB and a
-// part of the spectrum fit a first-level cache of 48 KiB.
-const leafBytes = 32 << 10
+func aligned(n int) []float64 {
+	b := make([]float64, n+cacheLine/8-1)
+	past := int(uintptr(unsafe.Pointer(&b[0])) % cacheLine / 8)
+	skip := (cacheLine/8 - past) % (cacheLine / 8)
+	return b[skip : skip+n : skip+n]
+}
 
-// wideBytes is the least data that is taken apart by two passes at once, because
-// it does not fit a second-level cache of 2 MiB. By BenchmarkConvolve 65536 points
-// gain 7 % with AVX2 and 12 % with AVX-512, 262144 points 12 and 27 %. Half of
-// it measures the same, twice of it loses 5 % at 262144 points.
-const wideBytes = 2 << 20
-
-// stretchBytes is how much of a row two passes at once do before they go on to
-// the next stretch; sixteen of them stay in a near cache. 1 to 4 KiB measure
-// alike, with 8 KiB AVX-512 loses 12 %.
-const stretchBytes = 2 << 10
-
-// points returns how many elements make so many bytes.
-func (e engine) points(bytes int) int { return bytes / (16 * e.lanes) }
-
-// convolve transforms x, which is block number b of its level, multiplies it by
-// spectrum and transforms it back.
-func (e engine) convolve(x []float64, spectrum []complex128, factors []twiddle.Factor, b int) {
-	m := len(spectrum)
-	if m <= e.points(leafBytes) {
-		e.convolveLeaf(x, spectrum, factors, b)
+// convolve is Plan.Convolve.
+func (v *vector) convolve(yre, yim, re, im, x []float64) {
+	if !v.wide() {
+		m := v.size / 4
+		v.load4(&x[0], m/v.lanes, &re[0], &im[0], m, m/v.lanes)
+		for b := range 4 {
+			v.convolveBlock(x[2*m*b:], m, b)
+		}
+		v.store4(&x[0], m/v.lanes, &yre[0], &yim[0], m, m/v.lanes)
 		return
 	}
-	if m >= e.points(wideBytes) {
-		e.splitWide(x, m, factors, b)
-		e.convolveParts(x, spectrum, factors, b, 16)
-		e.joinWide(x, m, factors, b)
+	m := v.size / 16
+	v.loadWide(x, re, im)
+	for b := range 16 {
+		v.convolveBlock(x[2*(m+pad)*b:], m, b)
+	}
+	v.storeWide(yre, yim, x)
+}
+
+// loadWide does the two outermost passes.
+func (v *vector) loadWide(x, re, im []float64) {
+	m, n := v.size/16, stretch/v.lanes
+	row := (m + pad) / v.lanes
+	for at := 0; at < m; at += stretch {
+		for i := range 4 {
+			v.load4(&x[2*((m+pad)*i+at)], 4*row, &re[m*i+at], &im[m*i+at], 4*m, n)
+		}
+		for b := range 4 {
+			v.split4(&x[2*((m+pad)*4*b+at)], row, n, 1, &v.factors[b].w1)
+		}
+	}
+}
+
+// storeWide undoes loadWide, but for a factor of sixteen.
+func (v *vector) storeWide(re, im, x []float64) {
+	m, n := v.size/16, stretch/v.lanes
+	row := (m + pad) / v.lanes
+	for at := 0; at < m; at += stretch {
+		for b := range 4 {
+			v.join4(&x[2*((m+pad)*4*b+at)], row, n, 1, &v.factors[b].w1)
+		}
+		for i := range 4 {
+			v.store4(&x[2*((m+pad)*i+at)], 4*row, &re[m*i+at], &im[m*i+at], 4*m, n)
+		}
+	}
+}
+
+// convolveBlock transforms the m points in front of x, which are block b of
+// their level, multiplies them by the spectrum and transforms them back.
+func (v *vector) convolveBlock(x []float64, m, b int) {
+	if m <= leafPoints {
+		v.convolveNear(x, m, b)
 		return
 	}
-	e.split4(x, m/4, m/4, 1, factors[b:])
-	e.convolveParts(x, spectrum, factors, b, 4)
-	e.join4(x, m/4, m/4, 1, factors[b:])
-}
-
-// convolveParts convolves each part of block b on its own.
-func (e engine) convolveParts(x []float64, spectrum []complex128, factors []twiddle.Factor, b, parts int) {
-	values, points := len(x)/parts, len(spectrum)/parts
-	for i := range parts {
-		e.convolve(x[i*values:(i+1)*values], spectrum[i*points:(i+1)*points], factors, parts*b+i)
+	q, w := m/4, &v.factors[b].w1
+	v.split4(&x[0], q/v.lanes, q/v.lanes, 1, w)
+	for i := range 4 {
+		v.convolveBlock(x[2*q*i:], q, 4*b+i)
 	}
+	v.join4(&x[0], q/v.lanes, q/v.lanes, 1, w)
 }
 
-// splitWide splits block b of m points into quarters and these into quarters,
-// and takes x from memory only once: it does both passes in one stretch of all
-// sixteen rows before the next.
-func (e engine) splitWide(x []float64, m int, factors []twiddle.Factor, b int) {
-	n := e.points(stretchBytes)
-	for at := 0; at < m/16; at += n {
-		for i := range 4 {
-			e.split4(e.from(x, i*m/16+at), m/4, n, 1, factors[b:])
-		}
-		for i := range 4 {
-			e.split4(e.from(x, i*m/4+at), m/16, n, 1, factors[4*b+i:])
-		}
-	}
-}
-
-// joinWide undoes splitWide, but for a factor of sixteen.
-func (e engine) joinWide(x []float64, m int, factors []twiddle.Factor, b int) {
-	n := e.points(stretchBytes)
-	for at := 0; at < m/16; at += n {
-		for i := range 4 {
-			e.join4(e.from(x, i*m/4+at), m/16, n, 1, factors[4*b+i:])
-		}
-		for i := range 4 {
-			e.join4(e.from(x, i*m/16+at), m/4, n, 1, factors[b:])
-		}
-	}
-}
-
-// from returns x from a point on.
-func (e engine) from(x []float64, point int) []float64 { return x[2*e.lanes*point:] }
-
-// convolveLeaf does the radix-2 pass, if the size of the block is an odd power
-// of two, where the data is nearest.
-func (e engine) convolveLeaf(x []float64, spectrum []complex128, factors []twiddle.Factor, b int) {
-	if oddPower(len(spectrum)) {
-		half := len(spectrum) / 2
-		e.split2(x, half, half, 1, factors[b:])
-		e.convolveSmall(x, spectrum, factors, half, 2*b)
-		e.join2(x, half, half, 1, factors[b:])
+// convolveNear does the radix-2 pass first, if there is one, where the points
+// that share a factor are most.
+func (v *vector) convolveNear(x []float64, m, b int) {
+	if bits.TrailingZeros(uint(m/v.lanes))%2 == 0 {
+		v.convolveQuarters(x, m, m, b)
 		return
 	}
-	e.convolveSmall(x, spectrum, factors, len(spectrum), b)
+	n, w := m/2/v.lanes, &v.factors[b].w1
+	v.split2(&x[0], n, n, 1, w)
+	v.convolveQuarters(x, m, m/2, 2*b)
+	v.join2(&x[0], n, n, 1, w)
 }
 
-// convolveSmall convolves all the blocks of m points in x, m a power of four.
-// The first is number b of its level.
-func (e engine) convolveSmall(x []float64, spectrum []complex128, factors []twiddle.Factor, m, b int) {
-	total, first := len(spectrum), b*m
-	for s := m; s > 4; s /= 4 {
-		e.split4(x, s/4, s/4, total/s, factors[first/s:])
+// convolveQuarters convolves all the blocks of s points in m of them. The first
+// is number b of its level.
+func (v *vector) convolveQuarters(x []float64, m, s, b int) {
+	first := s * b
+	for t := s; t > v.lanes; t /= 4 {
+		q := t / 4 / v.lanes
+		v.split4(&x[0], q, q, m/t, &v.factors[first/t].w1)
 	}
-	e.product(x, total/4, spectrum, factors[first/4:])
-	for s := 16; s <= m; s *= 4 {
-		e.join4(x, s/4, s/4, total/s, factors[first/s:])
+	group := v.lanes * v.lanes
+	v.convolveLeaf(&x[0], m/group, &v.leaves[first/group*(len(v.leaves)/(v.size/group))])
+	for t := 4 * v.lanes; t <= s; t *= 4 {
+		q := t / 4 / v.lanes
+		v.join4(&x[0], q, q, m/t, &v.factors[first/t].w1)
 	}
 }
-
-func oddPower(n int) bool { return bits.TrailingZeros(uint(n))%2 == 1 }

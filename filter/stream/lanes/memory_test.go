@@ -6,75 +6,84 @@ import (
 	"sync"
 	"testing"
 
-	"fettle/filter/stream/internal/twiddle"
+	"fettle/filter/stream/machine"
 )
 
 // guards is how many values lie on either side of guarded memory: more than the
 // longest vector.
 const guards = 32
 
-func guarded[T any](guard T, s []T) (all, inside []T) {
-	g := slices.Repeat([]T{guard}, guards)
+func guarded(guard float64, s []float64) (all, inside []float64) {
+	g := slices.Repeat([]float64{guard}, guards)
 	all = slices.Concat(g, s, g)
 	return all, all[guards : guards+len(s)]
 }
 
 // TestConvolveKeepsToItsMemory: NaN round all that is read does not get in, and
-// finite values round what is written stay.
+// finite values round what is written stay. Scratch may hold anything.
 func TestConvolveKeepsToItsMemory(t *testing.T) {
-	nan := complex(math.NaN(), math.NaN())
-	atEachSize(t, func(t *testing.T, e engine, size int) {
-		plain := newPlan(noise(80, size/4+1), size, e)
-		want := plain.noise(6)
-		x := slices.Clone(want)
-		plain.Convolve(want)
-
-		p := *plain
-		_, p.spectrum = guarded(nan, plain.spectrum)
-		_, p.factors = guarded(twiddle.Factor{W1: nan, W2: nan, W3: nan}, plain.factors)
-		_, poisoned := guarded(math.NaN(), x)
-		p.Convolve(poisoned)
-		sameBits(t, "among NaN", poisoned, want)
-		if !slices.Equal(p.spectrum, plain.spectrum) || !slices.Equal(p.factors, plain.factors) {
-			t.Error("the spectrum or the factors were written to")
+	atEachSize(t, func(t *testing.T, k machine.Kernel, size int) {
+		p := New(noise(80, size/4+1), size, k)
+		re, im := noise(6, size), noise(7, size)
+		wantRe, wantIm := convolved(p, re, im)
+		_, poisonedRe := guarded(math.NaN(), re)
+		_, poisonedIm := guarded(math.NaN(), im)
+		allRe, yre := guarded(0.25, re)
+		allIm, yim := guarded(0.25, im)
+		s := p.Scratch()
+		dirty, inside := guarded(0.25, s.vector)
+		s.vector = inside
+		for i := range s.vector {
+			s.vector[i] = math.NaN()
 		}
-
-		all, inside := guarded(0.25, x)
-		p.Convolve(inside)
-		allWant, _ := guarded(0.25, want)
-		sameBits(t, "with its surroundings", all, allWant)
+		p.Convolve(yre, yim, poisonedRe, poisonedIm, s)
+		sameGuarded(t, "real part", allRe, wantRe)
+		sameGuarded(t, "imaginary part", allIm, wantIm)
+		if guard := append(dirty[:guards:guards], dirty[len(dirty)-guards:]...); slices.Max(guard) != 0.25 || slices.Min(guard) != 0.25 {
+			t.Error("something was written outside the scratch")
+		}
 	})
+}
+
+func sameGuarded(t *testing.T, what string, all, want []float64) {
+	t.Helper()
+	allWant, _ := guarded(0.25, want)
+	sameBits(t, what, all, allWant)
 }
 
 // TestAlignmentIsNoMatter: at any place in memory the bits are the same.
 func TestAlignmentIsNoMatter(t *testing.T) {
-	atEachEngine(t, func(t *testing.T, e engine) {
-		p := newPlan(noise(81, 100), 512, e)
-		x := p.noise(7)
-		want := slices.Clone(x)
-		p.Convolve(want)
-		room := make([]float64, len(x)+8)
+	atEachKernel(t, func(t *testing.T, k machine.Kernel) {
+		const size = 512
+		p := New(noise(81, 100), size, k)
+		re, im := noise(8, size), noise(9, size)
+		wantRe, wantIm := convolved(p, re, im)
+		room := make([]float64, 5*size)
 		for shift := range 8 {
-			y := room[shift:][:len(x)]
-			copy(y, x)
-			p.Convolve(y)
-			sameBits(t, "shifted", y, want)
+			x := room[shift:]
+			copy(x, re)
+			copy(x[size+1:], im)
+			s := p.Scratch()
+			if s.vector != nil {
+				s.vector = x[3*size:]
+			}
+			p.Convolve(x[:size], x[size+1:][:size], x[:size], x[size+1:][:size], s)
+			sameBits(t, "real part", x[:size], wantRe)
+			sameBits(t, "imaginary part", x[size+1:][:size], wantIm)
 		}
 	})
 }
 
 func TestConcurrentUse(t *testing.T) {
-	atEachEngine(t, func(t *testing.T, e engine) {
-		p := newPlan(noise(82, 1000), 4096, e)
-		want := p.noise(8)
-		p.Convolve(want)
+	atEachKernel(t, func(t *testing.T, k machine.Kernel) {
+		p := New(noise(82, 1000), 4096, k)
+		re, im := noise(8, 4096), noise(9, 4096)
+		wantRe, wantIm := convolved(p, re, im)
 		var group sync.WaitGroup
 		for range 4 {
 			group.Go(func() {
 				for range 4 {
-					x := p.noise(8)
-					p.Convolve(x)
-					if !slices.Equal(x, want) {
+					if yre, yim := convolved(p, re, im); !slices.Equal(yre, wantRe) || !slices.Equal(yim, wantIm) {
 						t.Error("a call beside others gives other values")
 					}
 				}
@@ -85,15 +94,11 @@ func TestConcurrentUse(t *testing.T) {
 }
 
 func TestNoAllocations(t *testing.T) {
-	atEachEngine(t, func(t *testing.T, e engine) {
-		p := newPlan(noise(83, 1000), 32768, e)
-		x, signals := p.Buffer(), planes(2*e.lanes, p.size)
-		signals[3] = nil
-		if n := testing.AllocsPerRun(10, func() {
-			p.Load(x, signals)
-			p.Convolve(x)
-			p.Store(signals, x)
-		}); n != 0 {
+	atEachKernel(t, func(t *testing.T, k machine.Kernel) {
+		const size = 32768
+		p := New(noise(83, 1000), size, k)
+		x, y, s := noise(8, size), noise(9, size), p.Scratch()
+		if n := testing.AllocsPerRun(10, func() { p.Convolve(x, y, x, y, s) }); n != 0 {
 			t.Errorf("%v allocations a block, want none", n)
 		}
 	})

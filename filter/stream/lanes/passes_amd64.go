@@ -5,6 +5,12 @@
 package lanes
 
 //go:noescape
+func load4AVX2(x *float64, step int, re *float64, im *float64, row int, n int)
+
+//go:noescape
+func store4AVX2(x *float64, step int, re *float64, im *float64, row int, n int)
+
+//go:noescape
 func split2AVX2(x *float64, step int, n int, count int, w *complex128)
 
 //go:noescape
@@ -17,7 +23,10 @@ func split4AVX2(x *float64, step int, n int, count int, w *complex128)
 func join4AVX2(x *float64, step int, n int, count int, w *complex128)
 
 //go:noescape
-func productAVX2(x *float64, count int, spectrum *complex128, w *complex128)
+func load4AVX512(x *float64, step int, re *float64, im *float64, row int, n int)
+
+//go:noescape
+func store4AVX512(x *float64, step int, re *float64, im *float64, row int, n int)
 
 //go:noescape
 func split2AVX512(x *float64, step int, n int, count int, w *complex128)
@@ -32,10 +41,7 @@ func split4AVX512(x *float64, step int, n int, count int, w *complex128)
 func join4AVX512(x *float64, step int, n int, count int, w *complex128)
 
 //go:noescape
-func productAVX512(x *float64, count int, spectrum *complex128, w *complex128)
+func leavesAVX2(x *float64, groups int, table *float64)
 
 //go:noescape
-func interleave4AVX2(x *float64, step int, signals *[4]*float64, n int)
-
-//go:noescape
-func deinterleave4AVX2(x *float64, step int, signals *[4]*float64, n int)
+func leavesAVX512(x *float64, groups int, table *float64)

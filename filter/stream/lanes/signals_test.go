@@ -3,7 +3,6 @@ package lanes
 import (
 	"fmt"
 	"math"
-	"math/cmplx"
 	"math/rand/v2"
 	"testing"
 
@@ -32,46 +31,26 @@ func impulse(at, n int) []float64 {
 	return x
 }
 
-// engines are the kernels of this machine, and the portable twin of the layout
-// that has eight lanes.
-func engines() []engine {
-	all := []engine{{machine.Portable, 8}}
+func atEachKernel(t *testing.T, test func(t *testing.T, k machine.Kernel)) {
 	for _, k := range machine.Available() {
-		all = append(all, engine{k, Of(k)})
-	}
-	return all
-}
-
-func atEachEngine(t *testing.T, test func(t *testing.T, e engine)) {
-	for _, e := range engines() {
-		t.Run(fmt.Sprintf("%v-%d", e.kernel, e.lanes), func(t *testing.T) { test(t, e) })
+		t.Run(k.String(), func(t *testing.T) { test(t, k) })
 	}
 }
 
 // atEachSize runs the test at all sizes up to 65536.
-func atEachSize(t *testing.T, test func(t *testing.T, e engine, size int)) {
-	atEachEngine(t, func(t *testing.T, e engine) {
+func atEachSize(t *testing.T, test func(t *testing.T, k machine.Kernel, size int)) {
+	atEachKernel(t, func(t *testing.T, k machine.Kernel) {
 		for size := MinSize; size <= 65536; size *= 2 {
-			t.Run(fmt.Sprint(size), func(t *testing.T) { test(t, e, size) })
+			t.Run(fmt.Sprint(size), func(t *testing.T) { test(t, k, size) })
 		}
 	})
 }
 
-// noise returns a Buffer filled with noise.
-func (p *Plan) noise(seed uint64) []float64 {
-	x := p.Buffer()
-	copy(x, noise(seed, len(x)))
-	return x
-}
-
-// signal returns one of the 2 lanes signals in x: the real parts of all the
-// blocks, then the imaginary parts.
-func signal(x []float64, lanes, which int) []float64 {
-	s := make([]float64, len(x)/(2*lanes))
-	for i := range s {
-		s[i] = x[2*lanes*i+which]
-	}
-	return s
+// convolved is what a plan makes of a block.
+func convolved(p *Plan, re, im []float64) (yre, yim []float64) {
+	yre, yim = make([]float64, p.size), make([]float64, p.size)
+	p.Convolve(yre, yim, re, im, p.Scratch())
+	return yre, yim
 }
 
 // slowCircularAt is sample n of the circular convolution by definition.
@@ -138,9 +117,4 @@ func sameBits(t *testing.T, what string, got, want []float64) {
 			t.Fatalf("%s: value %d is %v, want %v to the bit", what, i, got[i], want[i])
 		}
 	}
-}
-
-// rect returns exp(-2 pi j num/den).
-func rect(num, den int) complex128 {
-	return cmplx.Rect(1, -2*math.Pi*float64(num)/float64(den))
 }

@@ -14,6 +14,7 @@ import (
 	"fettle/audio"
 	"fettle/audio/pcm"
 	"fettle/filter"
+	"fettle/filter/stream/machine"
 )
 
 // Options is what the caller asks for beside the chain.
@@ -23,8 +24,12 @@ type Options struct {
 	Encoding *pcm.Encoding // nil: as each original
 	Headroom Headroom
 	Jobs     int
-	Again    bool // redo what the record says is done
-	Version  string
+	Cores    int // to be used in all; what jobs leave over serves the single recording
+	Kernel   machine.Kernel
+	// KernelGiven: the kernel was asked for, and the record may hold others.
+	KernelGiven bool
+	Again       bool // redo what the record says is done
+	Version     string
 }
 
 // Headroom says how outputs are kept within full scale.
@@ -86,7 +91,34 @@ func New(chain *filter.Chain, args []string, o Options) (*Plan, error) {
 		j.inspect()
 		j.Done = !o.Again && p.isDone(j, past[j.Rel])
 	}
-	return p, nil
+	return p, p.refuseMix(past)
+}
+
+// pending is how many recordings are still to be treated.
+func (p *Plan) pending() int {
+	n := 0
+	for _, j := range p.Jobs {
+		if !j.Done {
+			n++
+		}
+	}
+	return n
+}
+
+// refuseMix stops a batch from going on with another kernel than it began with,
+// as on another machine, unless that is what was asked for.
+func (p *Plan) refuseMix(past map[string]*Entry) error {
+	o := p.Options
+	if o.KernelGiven || o.Again || p.pending() == 0 {
+		return nil
+	}
+	for _, j := range p.Jobs {
+		if e := past[j.Rel]; j.Done && e.Kernel != o.Kernel.String() {
+			return fmt.Errorf("the treatment record %s: %s was made with kernel %s, but this run would use %s, whose outputs differ by rounding; give --kernel %s to go on as before, --kernel %[4]s to mix them, or --again to treat all anew",
+				p.recordPath(), j.Rel, e.Kernel, o.Kernel, e.Kernel)
+		}
+	}
+	return nil
 }
 
 // Rates lists the rates of the recordings that are still to be treated.

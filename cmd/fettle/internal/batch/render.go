@@ -128,16 +128,18 @@ func (r *rendering) pass(ctx context.Context) error {
 	if r.progress != nil {
 		before.progress, before.frameBytes = r.progress, int64(r.rec.Encoding().Bytes*format.NumChannels)
 	}
-	out, err := r.filter.Apply(before)
+	out, rest, err := r.filtered(before)
 	if err != nil {
 		return fmt.Errorf("%s: %w", r.job.Path, err)
 	}
+	defer rest()
 	w, err := r.create()
 	if err != nil {
 		return err
 	}
 	after := audio.NewMeter(format.NumChannels)
 	err = r.copy(ctx, w, out, after)
+	rest()
 	if err == nil {
 		r.entry.SHA256In, err = r.rec.SHA256()
 	}
@@ -148,6 +150,29 @@ func (r *rendering) pass(ctx context.Context) error {
 	r.entry.PeakOut, r.entry.TruePeakOut = levels(after)
 	return r.commit(w)
 }
+
+// filtered gives the recording as it comes out of the filter. Where there are
+// cores to spare, reading and filtering go on while what came before is written;
+// rest ends that and may be called twice.
+func (r *rendering) filtered(src audio.Source) (out audio.Source, rest func(), err error) {
+	setup := r.filter.Setup()
+	setup.Kernel, setup.Workers = r.plan.Options.Kernel, r.plan.coresEach()
+	if setup.Workers < 2 || r.rec.Frames() < overlapFrom {
+		out, err = r.filter.ApplyWith(src, setup)
+		return out, func() {}, err
+	}
+	read := audio.NewAhead(src, block, 2)
+	filtered, err := r.filter.ApplyWith(read, setup)
+	if err != nil {
+		read.Close()
+		return nil, nil, err
+	}
+	written := audio.NewAhead(filtered, block, 2)
+	return written, func() { written.Close(); read.Close() }, nil
+}
+
+// overlapFrom is the least length in frames for which goroutines of their own pay.
+const overlapFrom = 8 * block
 
 func (r *rendering) create() (*audio.Writer, error) {
 	if err := os.MkdirAll(filepath.Dir(r.job.Output), 0o777); err != nil {

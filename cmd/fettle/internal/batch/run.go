@@ -78,6 +78,11 @@ func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*S
 	return p.sum(results), context.Cause(ctx)
 }
 
+// coresEach is how many cores one recording may use.
+func (p *Plan) coresEach() int {
+	return p.Options.Cores / max(1, min(p.Options.Jobs, p.pending()))
+}
+
 // removeEmptyFolders takes away folders that were made for outputs that did
 // not come about.
 func (p *Plan) removeEmptyFolders(results []result) {
@@ -159,7 +164,7 @@ func (p *Plan) newEntry(j *Job) *Entry {
 		Treated: time.Now().UTC().Truncate(time.Second),
 		Input:   name(absolute(j.Path)), Output: name(filepath.ToSlash(j.Rel)),
 		Chain: p.Chain.Name, ChainSHA256: fmt.Sprintf("%x", p.Chain.SHA256), Settings: p.settings(),
-		Edges: string(p.Chain.Edges), Kernel: filter.KernelName, Warnings: []string{},
+		Edges: string(p.Chain.Edges), Kernel: p.Options.Kernel.String(), Warnings: []string{},
 		HeadroomDB: p.Options.Headroom.DB, TruePeakOversampling: audio.TruePeakOversampling,
 	}
 }

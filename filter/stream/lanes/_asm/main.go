@@ -1,5 +1,5 @@
 // Command asm writes the assembly of package lanes: for each vector width the
-// same passes, see passes.go there for what they do.
+// same passes; vector.go there says what they do.
 //
 //	go run . -out ../passes_amd64.s -stubs ../passes_amd64.go -pkg lanes
 package main
@@ -16,14 +16,15 @@ func main() {
 		{"AVX2", 32, YMM},
 		{"AVX512", 64, ZMM},
 	} {
+		k.load4()
+		k.store4()
 		k.split2()
 		k.join2()
 		k.split4()
 		k.join4()
-		k.product()
 	}
-	interleave4()
-	deinterleave4()
+	leavesOf4()
+	leavesOf8()
 	Generate()
 }
 
@@ -35,7 +36,7 @@ type kernel struct {
 }
 
 // element is the size of an element in bytes: a vector of real parts and one
-// of imaginary parts.
+// of imaginary parts of neighbouring points.
 func (k kernel) element() int { return 2 * k.width }
 
 // point is an element in registers.
@@ -80,6 +81,16 @@ func (k kernel) timesConj(a, w point) point {
 	VMULPD(a.re, w.im, p.im)
 	VFMADD231PD(a.re, w.re, p.re)
 	VFMSUB231PD(a.im, w.re, p.im)
+	return p
+}
+
+// timesConjTurned returns j a times the conjugate of w.
+func (k kernel) timesConjTurned(a, w point) point {
+	p := k.point()
+	VMULPD(a.im, w.re, p.re)
+	VMULPD(a.im, w.im, p.im)
+	VFMSUB231PD(a.re, w.im, p.re)
+	VFMADD231PD(a.re, w.re, p.im)
 	return p
 }
 

@@ -97,43 +97,6 @@ func (k kernel) join4() {
 		})
 }
 
-// product writes the function that does both innermost passes and the product
-// between them.
-func (k kernel) product() {
-	TEXT("product"+k.name, NOSPLIT, "func(x *float64, count int, spectrum *complex128, w *complex128)")
-	Pragma("noescape")
-	x := Load(Param("x"), GP64())
-	count := Load(Param("count"), GP64())
-	h := Load(Param("spectrum"), GP64())
-	w := Load(Param("w"), GP64())
-
-	Label("block")
-	var rows []Mem
-	for i := range 4 {
-		rows = append(rows, Mem{Base: x, Disp: i * k.element()})
-	}
-	p := k.loadAll(rows)
-	for i := range 3 {
-		p[i+1] = k.times(p[i+1], k.broadcast(Mem{Base: w, Disp: 16 * i}))
-	}
-	p = k.evaluate(p)
-	for i := range p {
-		p[i] = k.times(p[i], k.broadcast(Mem{Base: h, Disp: 16 * i}))
-	}
-	p = k.join(p)
-	k.store(p[0], rows[0])
-	for i := range 3 {
-		k.store(k.timesConj(p[i+1], k.broadcast(Mem{Base: w, Disp: 16 * i})), rows[i+1])
-	}
-	ADDQ(U32(4*k.element()), x)
-	ADDQ(Imm(4*16), h)
-	ADDQ(Imm(factorSize), w)
-	DECQ(count)
-	JNZ(LabelRef("block"))
-	VZEROUPPER()
-	RET()
-}
-
 func (k kernel) factors(w Mem) [3]point {
 	return [3]point{k.broadcast(w), k.broadcast(w.Offset(16)), k.broadcast(w.Offset(32))}
 }

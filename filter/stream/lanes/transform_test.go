@@ -1,22 +1,18 @@
-package stream
+package lanes
 
 import (
 	"fmt"
 	"math"
-	"math/bits"
 	"math/cmplx"
 	"slices"
 	"testing"
 
-	"fettle/filter/stream/internal/twiddle"
-
 	"gonum.org/v1/gonum/dsp/fourier"
 )
 
-var transformSizes = []int{32, 64, 128, 256, 512, 1024, 2048, 4096, 8192, 16384, 32768}
-
-func atEachSize(t *testing.T, test func(t *testing.T, size int)) {
-	for _, size := range transformSizes {
+// atTransformSizes runs the test at the sizes of whole blocks and below.
+func atTransformSizes(t *testing.T, test func(t *testing.T, size int)) {
+	for size := 32; size <= 32768; size *= 2 {
 		t.Run(fmt.Sprint(size), func(t *testing.T) { test(t, size) })
 	}
 }
@@ -28,19 +24,18 @@ func transformError(size int, norm float64) float64 {
 	return eps * math.Log2(float64(size)) * norm
 }
 
-// spectrumOf returns the transform in natural order.
-func spectrumOf(re, im []float64) []complex128 {
+// transform returns the transform in natural order.
+func transform(re, im []float64) []complex128 {
 	x := make([]complex128, len(re))
-	forward(x, re, im, twiddle.Table(len(x)/4))
+	forward(x, re, im, table(len(x)/4))
 	return reversed(x)
 }
 
 // reversed swaps every point with the one at its index with the bits reversed.
 func reversed(x []complex128) []complex128 {
-	width := bits.TrailingZeros(uint(len(x)))
 	y := make([]complex128, len(x))
 	for i, v := range x {
-		y[bits.Reverse(uint(i))>>(bits.UintSize-width)] = v
+		y[reverse(i, len(x))] = v
 	}
 	return y
 }
@@ -73,10 +68,10 @@ func compareComplex(t *testing.T, what string, got, want []complex128, tol float
 
 // TestForwardAgainstDefinition sums the definition at some 64 frequencies.
 func TestForwardAgainstDefinition(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
+	atTransformSizes(t, func(t *testing.T, size int) {
 		re, im := noise(1, size), noise(2, size)
 		x := combine(re, im)
-		got := spectrumOf(re, im)
+		got := transform(re, im)
 		var some, want []complex128
 		for k := 0; k < size; k += 1 + size/64 {
 			some, want = append(some, got[k]), append(want, slowPoint(x, k))
@@ -103,20 +98,20 @@ func slowPoint(x []complex128, k int) complex128 {
 }
 
 func TestForwardAgainstLibrary(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
+	atTransformSizes(t, func(t *testing.T, size int) {
 		re, im := noise(3, size), noise(4, size)
 		x := combine(re, im)
 		want := fourier.NewCmplxFFT(size).Coefficients(nil, x)
 		// The library's own error comes on top, hence twice.
-		compareComplex(t, "spectrum", spectrumOf(re, im), want, 2*transformError(size, complexNorm(x)))
+		compareComplex(t, "spectrum", transform(re, im), want, 2*transformError(size, complexNorm(x)))
 	})
 }
 
 func TestForwardKeepsEnergy(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
+	atTransformSizes(t, func(t *testing.T, size int) {
 		re, im := noise(5, size), noise(6, size)
 		in := complexNorm(combine(re, im))
-		out := complexNorm(spectrumOf(re, im)) / math.Sqrt(float64(size))
+		out := complexNorm(transform(re, im)) / math.Sqrt(float64(size))
 		if diff := math.Abs(out/in - 1); !(diff <= transformError(size, 1)) {
 			t.Errorf("Parseval: norms differ by %.3g, allowed %.3g", diff, transformError(size, 1))
 		}
@@ -124,26 +119,26 @@ func TestForwardKeepsEnergy(t *testing.T) {
 }
 
 func TestForwardIsLinear(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
+	atTransformSizes(t, func(t *testing.T, size int) {
 		zero := make([]float64, size)
 		a, b := noise(7, size), noise(8, size)
 		sum := make([]float64, size)
 		for i := range sum {
 			sum[i] = 0.5*a[i] - 2*b[i]
 		}
-		fa, fb := spectrumOf(a, zero), spectrumOf(b, zero)
+		fa, fb := transform(a, zero), transform(b, zero)
 		for i := range fa {
 			fa[i] = 0.5*fa[i] - 2*fb[i]
 		}
-		compareComplex(t, "0.5 a - 2 b", spectrumOf(sum, zero), fa, transformError(size, 0.5*norm(a)+2*norm(b)))
+		compareComplex(t, "0.5 a - 2 b", transform(sum, zero), fa, transformError(size, 0.5*norm(a)+2*norm(b)))
 	})
 }
 
 // TestForwardOfImpulseIsExact: every point is 1, as no factor is multiplied
 // by anything but zero.
 func TestForwardOfImpulseIsExact(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
-		got := spectrumOf(impulse(0, size), make([]float64, size))
+	atTransformSizes(t, func(t *testing.T, size int) {
+		got := transform(impulse(0, size), make([]float64, size))
 		compareComplex(t, "spectrum", got, slices.Repeat([]complex128{1}, size), 0)
 	})
 }
@@ -157,38 +152,44 @@ func inverse(spectrum []complex128) []complex128 {
 		scaled[i] = v / complex(float64(size), 0)
 	}
 	re, im := make([]float64, size), make([]float64, size)
-	circular(re, im, impulse(0, size), make([]float64, size), make([]complex128, size), scaled, twiddle.Table(size/4))
+	(&portable{scaled, table(size / 4)}).convolve(re, im, impulse(0, size), make([]float64, size), make([]complex128, size))
 	return combine(re, im)
 }
 
 func TestInverseUndoesForward(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
+	atTransformSizes(t, func(t *testing.T, size int) {
 		re, im := noise(9, size), noise(10, size)
 		x := make([]complex128, size)
-		forward(x, re, im, twiddle.Table(size/4))
+		forward(x, re, im, table(size/4))
 		want := combine(re, im)
 		compareComplex(t, "round trip", inverse(x), want, 2*transformError(size, complexNorm(want)/math.Sqrt(float64(size))))
 	})
 }
 
-// TestCircularAgainstDefinition convolves with an impulse at 1 that is turned
-// by 90 degrees: a circular shift by one, times j. A few samples are dropped.
-func TestCircularAgainstDefinition(t *testing.T) {
-	atEachSize(t, func(t *testing.T, size int) {
-		factors := twiddle.Table(size / 4)
-		spectrum := make([]complex128, size)
+// TestConvolveWithTurnedImpulse convolves with an impulse at 1 that is turned by
+// 90 degrees: a circular shift by one, times j.
+func TestConvolveWithTurnedImpulse(t *testing.T) {
+	atTransformSizes(t, func(t *testing.T, size int) {
+		p := portable{make([]complex128, size), table(size / 4)}
 		turned := impulse(1, size)
 		turned[1] /= float64(size)
-		forward(spectrum, make([]float64, size), turned, factors)
+		forward(p.spectrum, make([]float64, size), turned, p.factors)
 		x := combine(noise(11, size), noise(12, size))
-		for _, drop := range []int{0, 1, size/4 - 1, size / 4} {
-			re, im := make([]float64, size-drop), make([]float64, size-drop)
-			circular(re, im, noise(11, size), noise(12, size), make([]complex128, size), spectrum, factors)
-			want := make([]complex128, size-drop)
-			for i := range want {
-				want[i] = 1i * x[(i+drop+size-1)%size]
-			}
-			compareComplex(t, fmt.Sprintf("less %d", drop), combine(re, im), want, 2*transformError(size, complexNorm(x)/math.Sqrt(float64(size))))
+		re, im := make([]float64, size), make([]float64, size)
+		p.convolve(re, im, noise(11, size), noise(12, size), make([]complex128, size))
+		want := make([]complex128, size)
+		for i := range want {
+			want[i] = 1i * x[(i+size-1)%size]
 		}
+		compareComplex(t, "shifted by one", combine(re, im), want, 2*transformError(size, complexNorm(x)/math.Sqrt(float64(size))))
 	})
+}
+
+// reverse returns i with the bits of 0 to size-1 in reversed order, bit by bit.
+func reverse(i, size int) int {
+	r := 0
+	for ; size > 1; size /= 2 {
+		r, i = 2*r+i%2, i/2
+	}
+	return r
 }

@@ -1,4 +1,4 @@
-package stream
+package lanes
 
 import "math/bits"
 
@@ -14,8 +14,7 @@ func load(x []complex128, re, im []float64) int {
 	return 4
 }
 
-// store does the outermost inverse pass and hands out the end of the block,
-// as many samples as re and im have room for.
+// store does the outermost inverse pass.
 func store(re, im []float64, x []complex128) {
 	if oddPower(len(x)) {
 		storeHalves(re, im, x)
@@ -55,31 +54,26 @@ func loadQuarters(x []complex128, re, im []float64) {
 func storeHalves(re, im []float64, x []complex128) {
 	half := len(x) / 2
 	x0, x1 := x[:half], x[half:][:half]
-	drop := len(x) - len(re)
-	re0, re1 := re[:half-drop], re[half-drop:][:half]
-	im0, im1 := im[:half-drop], im[half-drop:][:half]
+	re0, re1 := re[:half], re[half:][:half]
+	im0, im1 := im[:half], im[half:][:half]
 	for i := range x0 {
 		a, b := x0[i]+x1[i], x0[i]-x1[i]
-		if j := i - drop; uint(j) < uint(len(re0)) {
-			re0[j], im0[j] = real(a), imag(a)
-		}
+		re0[i], im0[i] = real(a), imag(a)
 		re1[i], im1[i] = real(b), imag(b)
 	}
 }
 
 func storeQuarters(re, im []float64, x []complex128) {
 	x0, x1, x2, x3 := quarters(x)
+	re0, re1, re2, re3 := quarters(re)
+	im0, im1, im2, im3 := quarters(im)
 	n := len(x0)
-	drop := len(x) - len(re)
 	x1, x2, x3 = x1[:n], x2[:n], x3[:n]
-	re0, re1, re2, re3 := re[:n-drop], re[n-drop:][:n], re[2*n-drop:][:n], re[3*n-drop:][:n]
-	im0, im1, im2, im3 := im[:n-drop], im[n-drop:][:n], im[2*n-drop:][:n], im[3*n-drop:][:n]
-	im0 = im0[:len(re0)]
+	re0, re1, re2, re3 = re0[:n], re1[:n], re2[:n], re3[:n]
+	im0, im1, im2, im3 = im0[:n], im1[:n], im2[:n], im3[:n]
 	for i := range x0 {
 		a, b, c, d := join(x0[i], x1[i], x2[i], x3[i])
-		if j := i - drop; uint(j) < uint(len(re0)) {
-			re0[j], im0[j] = real(a), imag(a)
-		}
+		re0[i], im0[i] = real(a), imag(a)
 		re1[i], im1[i] = real(b), imag(b)
 		re2[i], im2[i] = real(c), imag(c)
 		re3[i], im3[i] = real(d), imag(d)

@@ -1,6 +1,4 @@
-// Package twiddle holds the one table of factors that every transform below
-// package stream reads.
-package twiddle
+package lanes
 
 import (
 	"math"
@@ -8,37 +6,37 @@ import (
 	"sync"
 )
 
-// Factor holds the powers w, w^2 and w^3 that a radix-4 butterfly needs. A
+// factor holds the powers w, w^2 and w^3 that a radix-4 butterfly needs. A
 // radix-2 one needs the square only. The assembly reads it as six float64.
-type Factor struct{ W1, W2, W3 complex128 }
+type factor struct{ w1, w2, w3 complex128 }
 
 // shared is the longest table anyone has asked for. A table is never written
 // to after it is published, so a prefix of it may be read without the lock.
 var shared struct {
 	sync.Mutex
-	table []Factor
+	table []factor
 }
 
-// Table returns the factors of blocks 0 to count-1, count a power of two.
+// table returns the factors of blocks 0 to count-1, count a power of two.
 // Block b has w = exp(-2 pi j t/4), t being the bit-reversed fraction of b:
 // 0, 1/2, 1/4, 3/4, 1/8 and so on. As t does not depend on how many blocks
 // there are, every pass of every transform reads a part of one table.
-func Table(count int) []Factor {
+func table(count int) []factor {
 	shared.Lock()
 	defer shared.Unlock()
 	if len(shared.table) < count {
-		shared.table = Make(count)
+		shared.table = makeTable(count)
 	}
 	return shared.table[:count]
 }
 
-// Make is Table without the shared one: a table of its own.
-func Make(count int) []Factor {
-	table := make([]Factor, count)
+// makeTable is table without the shared one: a table of its own.
+func makeTable(count int) []factor {
+	table := make([]factor, count)
 	width := bits.Len(uint(count)) - 1
 	for b := range table {
 		turn := int(bits.Reverse64(uint64(b)) >> (64 - width))
-		table[b] = Factor{unit(turn, 4*count), unit(2*turn, 4*count), unit(3*turn, 4*count)}
+		table[b] = factor{unit(turn, 4*count), unit(2*turn, 4*count), unit(3*turn, 4*count)}
 	}
 	return table
 }

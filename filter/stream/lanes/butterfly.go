@@ -1,10 +1,8 @@
-package stream
-
-import "fettle/filter/stream/internal/twiddle"
+package lanes
 
 // forwardPass splits every block of m points in x into quarters. The first
 // block is number b of its level.
-func forwardPass(x []complex128, m, b int, factors []twiddle.Factor) {
+func forwardPass(x []complex128, m, b int, factors []factor) {
 	for ; len(x) > 0; x = x[m:] {
 		if b == 0 {
 			splitPlain(x[:m])
@@ -16,7 +14,7 @@ func forwardPass(x []complex128, m, b int, factors []twiddle.Factor) {
 }
 
 // inversePass undoes forwardPass, but for a factor of four.
-func inversePass(x []complex128, m, b int, factors []twiddle.Factor) {
+func inversePass(x []complex128, m, b int, factors []factor) {
 	for ; len(x) > 0; x = x[m:] {
 		if b == 0 {
 			joinPlain(x[:m])
@@ -35,11 +33,11 @@ func splitPlain(x []complex128) {
 	}
 }
 
-func splitTwiddled(x []complex128, w twiddle.Factor) {
+func splitTwiddled(x []complex128, w factor) {
 	x0, x1, x2, x3 := quarters(x)
 	x1, x2, x3 = x1[:len(x0)], x2[:len(x0)], x3[:len(x0)]
 	for i := range x0 {
-		x0[i], x1[i], x2[i], x3[i] = split(x0[i], w.W1*x1[i], w.W2*x2[i], w.W3*x3[i])
+		x0[i], x1[i], x2[i], x3[i] = split(x0[i], w.w1*x1[i], w.w2*x2[i], w.w3*x3[i])
 	}
 }
 
@@ -53,15 +51,15 @@ func joinPlain(x []complex128) {
 
 // joinTwiddled loads each factor after the store before it, and so keeps its
 // values in registers: 9 % of the whole convolver's speed.
-func joinTwiddled(x []complex128, w *twiddle.Factor) {
+func joinTwiddled(x []complex128, w *factor) {
 	x0, x1, x2, x3 := quarters(x)
 	x1, x2, x3 = x1[:len(x0)], x2[:len(x0)], x3[:len(x0)]
 	for i := range x0 {
 		a, b, c, d := join(x0[i], x1[i], x2[i], x3[i])
 		x0[i] = a
-		x1[i] = timesConj(b, w.W1)
-		x2[i] = timesConj(c, w.W2)
-		x3[i] = timesConj(d, w.W3)
+		x1[i] = timesConj(b, w.w1)
+		x2[i] = timesConj(c, w.w2)
+		x3[i] = timesConj(d, w.w3)
 	}
 }
 

@@ -1,4 +1,4 @@
-package twiddle
+package lanes
 
 import (
 	"math"
@@ -6,9 +6,6 @@ import (
 	"slices"
 	"testing"
 )
-
-// eps is the distance from 1 to the next float64.
-const eps = 0x1p-52
 
 func TestUnitIsAccurate(t *testing.T) {
 	const den = 4096
@@ -34,12 +31,27 @@ func TestUnitIsAccurate(t *testing.T) {
 // TestTwiddlesArePrefixes: a longer table starts as a shorter one, and asking
 // for it leaves the shorter one alone.
 func TestTwiddlesArePrefixes(t *testing.T) {
-	short := Make(64)
-	long := Make(4096)
+	short := makeTable(64)
+	long := makeTable(4096)
 	if !slices.Equal(short, long[:64]) {
 		t.Error("the table of 64 is no prefix of that of 4096")
 	}
-	if !slices.Equal(Table(64), short) {
+	if !slices.Equal(table(64), short) {
 		t.Error("the shared table differs from a fresh one")
+	}
+}
+
+// TestTwiddles: block b has a quarter of the bit-reversed fraction of a turn.
+func TestTwiddles(t *testing.T) {
+	const count = 1024
+	for b, w := range makeTable(count) {
+		turn := reverse(b, count)
+		for p, got := range []complex128{w.w1, w.w2, w.w3} {
+			want := cmplx.Rect(1, -2*math.Pi*float64(turn*(p+1))/(4*count))
+			// Rect rounds the angle, up to 3/4 of 2 pi, by half of 4 eps at most.
+			if d := cmplx.Abs(got - want); !(d <= 4*eps) {
+				t.Errorf("block %d, power %d: %v, want %v", b, p+1, got, want)
+			}
+		}
 	}
 }

@@ -1,0 +1,84 @@
+package stream
+
+import (
+	"math/bits"
+	"testing"
+
+	"fettle/filter/stream/machine"
+)
+
+// TestBlockSizes: whatever is asked, a power of two that leaves a hop, or none.
+func TestBlockSizes(t *testing.T) {
+	for _, kernel := range machine.Available() {
+		for taps := 1; taps <= 1<<20; taps += 1 + taps/20 {
+			for _, frames := range []int64{-1, 0, 1, 1000, 48000, 1 << 32} {
+				for _, channels := range []int{1, 2, 3} {
+					size := blockSize(taps, channels, Run{frames, kernel, 1})
+					if size != 0 && (size < taps || bits.OnesCount(uint(size)) != 1) {
+						t.Errorf("%v, %d taps, %d frames, %d channels: blocks of %d", kernel, taps, frames, channels, size)
+					}
+				}
+			}
+		}
+	}
+}
+
+// TestPlannerIsSensible: few taps are summed directly; a long stream does not lose
+// more than half of each block to the overlap; a short one does not pay for a block
+// of four times its length.
+func TestPlannerIsSensible(t *testing.T) {
+	for _, kernel := range machine.Available() {
+		if size := blockSize(1, 2, Run{-1, kernel, 1}); size != 0 {
+			t.Errorf("%v: one tap is done in blocks of %d", kernel, size)
+		}
+		for _, taps := range []int{255, 4095, 65535, 530333} {
+			size := blockSize(taps, 2, Run{-1, kernel, 1})
+			if size < 2*(taps-1) || size > 64*taps {
+				t.Errorf("%v: %d taps are done in blocks of %d", kernel, taps, size)
+			}
+			for _, frames := range []int64{1000, 48000, 480000} {
+				short := blockSize(taps, 2, Run{frames, kernel, 1})
+				if need := int(frames) + taps - 1; short >= 4*max(need, 256) {
+					t.Errorf("%v: %d frames and %d taps are done in blocks of %d", kernel, frames, taps, short)
+				}
+			}
+		}
+	}
+}
+
+// TestPlannerTakesTheCheapest of all, by its own sums.
+func TestPlannerTakesTheCheapest(t *testing.T) {
+	for _, kernel := range machine.Available() {
+		for _, taps := range []int{5, 100, 4095, 100000} {
+			for _, frames := range []int64{-1, 3000, 1 << 20} {
+				run := Run{frames, kernel, 1}
+				size := blockSize(taps, 1, run)
+				least := directCost(taps, 1, run)
+				if size > 0 {
+					least = blocksCost(taps, size, 1, run)
+				}
+				for other := 256; other <= 1<<24; other *= 2 {
+					if other >= taps && blocksCost(taps, other, 1, run) < least {
+						t.Errorf("%v, %d taps, %d frames: blocks of %d, but %d are cheaper", kernel, taps, frames, size, other)
+					}
+				}
+			}
+		}
+	}
+}
+
+// TestPlannedBlocks are what outputs depend on: a change of costs.go that moves
+// them changes bytes, and so the version.
+func TestPlannedBlocks(t *testing.T) {
+	for _, c := range []struct {
+		kernel   machine.Kernel
+		taps     int
+		frames   int64
+		channels int
+		want     int
+	}{} {
+		if got := blockSize(c.taps, c.channels, Run{c.frames, c.kernel, 1}); got != c.want {
+			t.Errorf("%v, %d taps, %d frames, %d channels: blocks of %d, want %d", c.kernel, c.taps, c.frames, c.channels, got, c.want)
+		}
+	}
+}
