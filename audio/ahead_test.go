@@ -87,7 +87,7 @@ func TestAheadStops(t *testing.T) {
 		given := src.given
 		for {
 			if _, err := a.ReadFrames(make([]float64, 3)); err != nil {
-				break // the pieces that were ready are given first
+				break // what was ready are given first
 			}
 		}
 		if src.given != given {
