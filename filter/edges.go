@@ -76,18 +76,14 @@ func (e *extended) read(dst []float64) (int, error) {
 }
 
 func (e *extended) remember(frames []float64) {
-	size := len(e.ring) / e.channels
-	n := len(frames) / e.channels
-	skip := max(0, n-size)
-	for i := skip; i < n; i++ {
-		at := int((e.seen + int64(i)) % int64(max(size, 1)))
-		copy(e.frame(e.ring, at), e.frame(frames, i))
+	n := int64(len(frames) / e.channels)
+	last := frames[max(0, len(frames)-len(e.ring)):]
+	if size := int64(len(e.ring) / e.channels); size > 0 {
+		at := int((e.seen+n-int64(len(last)/e.channels))%size) * e.channels
+		fits := copy(e.ring[at:], last)
+		copy(e.ring, last[fits:])
 	}
-	e.seen += int64(n)
-}
-
-func (e *extended) frame(frames []float64, i int) []float64 {
-	return frames[i*e.channels : (i+1)*e.channels]
+	e.seen += n
 }
 
 // start makes the frames that stand ahead of the source, for which it must
@@ -110,14 +106,12 @@ func (e *extended) start() error {
 	}
 	have := len(first) / e.channels
 	e.head = make([]float64, e.before*e.channels, (e.before+have)*e.channels)
-	if have > 0 {
-		for i := range e.before {
-			from := 0
-			if e.edges == Mirror {
-				from = reflect(int64(i-e.before), int64(have))
-			}
-			copy(e.frame(e.head, i), e.frame(first, from))
-		}
+	switch {
+	case have == 0:
+	case e.edges == Mirror:
+		mirror(e.head, first, e.channels, int64(-e.before), int64(have))
+	case e.edges == Hold:
+		hold(e.head, first, e.channels)
 	}
 	e.head = append(e.head, first...)
 	return nil
@@ -141,19 +135,57 @@ func (e *extended) take(frames int) ([]float64, error) {
 
 // pad fills dst with frames from beyond the source's end.
 func (e *extended) pad(dst []float64) {
-	size := int64(len(e.ring) / e.channels)
-	for i := range len(dst) / e.channels {
-		to := e.frame(dst, i)
-		switch e.edges {
-		case Hold:
-			copy(to, e.ring)
-		case Mirror:
-			from := int64(reflect(e.length+e.past, e.length))
-			copy(to, e.frame(e.ring, int(from%size)))
-		default:
-			clear(to)
+	switch e.edges {
+	case Hold:
+		hold(dst, e.ring, e.channels)
+	case Mirror:
+		mirror(dst, e.ring, e.channels, e.length+e.past, e.length)
+	default:
+		clear(dst)
+	}
+	e.past += int64(len(dst) / e.channels)
+}
+
+// hold fills dst with the first frame of frames.
+func hold(dst, frames []float64, channels int) {
+	for at := 0; at < len(dst); at += channels {
+		copy(dst[at:], frames[:channels])
+	}
+}
+
+// mirror fills dst with the frames of a recording of some length from index
+// from on, which may lie outside it. Frame k stands in ring at k mod its length;
+// those that are needed are there. It goes through the ring backward, or forward
+// where the image of a short recording has turned.
+func mirror(dst, ring []float64, channels int, from, length int64) {
+	for len(dst) > 0 {
+		k, next := reflect(from, length), reflect(from+1, length)
+		n := len(dst) / channels
+		if next < k {
+			n = min(n, k) // down to frame 1
+		} else if next > k {
+			n = min(n, int(length)-1-k) // up to the last but one
 		}
-		e.past++
+		copySteps(dst[:n*channels], ring, channels, k, next-k)
+		dst = dst[n*channels:]
+		from += int64(n)
+	}
+}
+
+// copySteps fills dst with frames of a ring, from frame k on by steps of 1, -1 or
+// 0.
+func copySteps(dst, ring []float64, channels, k, step int) {
+	size := len(ring) / channels
+	at := k % size
+	for ; len(dst) > 0; dst = dst[channels:] {
+		for c, v := range ring[at*channels:][:channels] {
+			dst[c] = v
+		}
+		if at += step; at < 0 {
+			at = size - 1
+		} else if at == size {
+			at = 0
+		}
 	}
 }
 
