@@ -71,7 +71,7 @@ func TestTruncatedData(t *testing.T) {
 	if warnings, _ := entry["warnings"].([]any); len(warnings) == 0 {
 		t.Error("no warning in the record")
 	}
-	mustEqual(t, "size of the output", len(b.output("cut.wav")), 44+4*50)
+	mustEqual(t, "size of the output", len(b.output("cut.wav")), 80+4*50)
 }
 
 // TestFrequencyBeyondHalfTheRate costs the recordings of that rate.

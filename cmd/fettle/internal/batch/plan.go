@@ -63,6 +63,8 @@ type Plan struct {
 
 	once sync.Once
 	made *filters
+
+	slots slots // of the run
 }
 
 // New plans a batch. It reads headers and the treatment record but writes

@@ -74,10 +74,16 @@ type Entry struct {
 	loud int // how many of Warnings are said aloud; the last is of chunks left behind
 }
 
-// record appends entries to the treatment record, each flushed to disk.
+// record appends entries to the treatment record, each flushed to disk. Those
+// that come while a flush is under way share the next one.
 type record struct {
-	mu   sync.Mutex
-	file *os.File
+	mu       sync.Mutex
+	flushed  *sync.Cond // broadcast after every flush
+	file     *os.File
+	flushing bool
+	written  int   // entries
+	safe     int   // of them, on disk
+	err      error // of the first write or flush that failed; the record is unsure from there on
 }
 
 func openRecord(path string) (*record, error) {
@@ -88,7 +94,9 @@ func openRecord(path string) (*record, error) {
 	if err := dropTorn(f); err != nil {
 		return nil, errors.Join(unwritableRecord(path, err), f.Close())
 	}
-	return &record{file: f}, nil
+	r := &record{file: f}
+	r.flushed = sync.NewCond(&r.mu)
+	return r, nil
 }
 
 // dropTorn cuts a last line that a killed run left without its end.
@@ -125,13 +133,38 @@ func (r *record) append(e *Entry) error {
 	}
 	r.mu.Lock()
 	defer r.mu.Unlock()
-	if _, err := r.file.Write(line.Bytes()); err != nil {
-		return unwritableRecord(r.file.Name(), err)
+	if r.err == nil {
+		_, r.err = r.file.Write(line.Bytes())
 	}
-	if err := r.file.Sync(); err != nil {
-		return unwritableRecord(r.file.Name(), err)
+	r.written++
+	r.flush(r.written)
+	if r.err != nil {
+		return unwritableRecord(r.file.Name(), r.err)
 	}
 	return nil
+}
+
+// flush returns once the first so many entries are on disk, or never will be.
+func (r *record) flush(entries int) {
+	for r.safe < entries && r.err == nil {
+		if r.flushing {
+			r.flushed.Wait()
+			continue
+		}
+		r.flushing = true
+		upTo := r.written
+		r.mu.Unlock()
+		err := r.file.Sync()
+		r.mu.Lock()
+		r.flushing = false
+		if r.err == nil {
+			r.err = err
+		}
+		if err == nil {
+			r.safe = upTo
+		}
+		r.flushed.Broadcast()
+	}
 }
 
 func unwritableRecord(path string, err error) error {

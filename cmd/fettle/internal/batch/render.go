@@ -9,6 +9,7 @@ import (
 	"os"
 	"path/filepath"
 	"slices"
+	"sync"
 
 	"fettle/audio"
 	"fettle/audio/pcm"
@@ -18,8 +19,11 @@ import (
 // block is how many frames are moved at a time.
 const block = 16384
 
-// render treats one recording and fills in what the record says of it.
+// render treats one recording and fills in what the record says of it. It begins
+// with a slot and ends without.
 func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) error {
+	leave := sync.OnceFunc(p.slots.leave)
+	defer leave()
 	rec, err := audio.Open(j.Path)
 	if err != nil {
 		return err
@@ -37,7 +41,7 @@ func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) 
 	p.describe(e, f)
 	e.loud = len(e.Warnings)
 	e.Warnings = append(e.Warnings, notCarried(rec)...)
-	r := &rendering{plan: p, job: j, rec: rec, filter: f, entry: e, progress: progress}
+	r := &rendering{plan: p, job: j, rec: rec, filter: f, entry: e, progress: progress, leave: leave}
 	r.gain = math.Pow(10, -p.Options.Headroom.DB/20)
 	return r.fit(ctx, r.pass(ctx))
 }
@@ -57,6 +61,9 @@ func (r *rendering) fit(ctx context.Context, err error) error {
 	if err := r.rec.Rewind(); err != nil {
 		return err
 	}
+	r.plan.slots.enter()
+	r.leave = sync.OnceFunc(r.plan.slots.leave)
+	defer r.leave()
 	r.entry.HeadroomDB = roundUp(over.HeadroomDB)
 	r.gain, r.progress = math.Pow(10, -r.entry.HeadroomDB/20), nil
 	return r.pass(ctx)
@@ -118,6 +125,7 @@ type rendering struct {
 	entry    *Entry
 	progress Progress // nil on a second pass, whose bytes were counted
 	gain     float64
+	leave    func() // gives up the slot; may be called twice
 }
 
 // pass reads, filters and writes the whole recording once. On any error the
@@ -182,6 +190,7 @@ func (r *rendering) create() (*audio.Writer, error) {
 }
 
 func (r *rendering) commit(w *audio.Writer) error {
+	r.leave()
 	if err := w.Commit(); err != nil {
 		return err
 	}

@@ -56,13 +56,24 @@ func (p *Plan) Run(ctx context.Context, progress Progress) (*Summary, error) {
 	return s, errors.Join(err, rec.close())
 }
 
+// syncsAbreast is how many recordings may be on their way to the disk while
+// others are rendered. File systems settle syncs that come together in one go.
+const syncsAbreast = 16
+
+// slots bounds how many recordings are rendered at once.
+type slots chan struct{}
+
+func (s slots) enter() { s <- struct{}{} }
+func (s slots) leave() { <-s }
+
 func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*Summary, error) {
 	ctx, stop := context.WithCancelCause(ctx)
 	defer stop(nil)
 	results := make([]result, len(p.Jobs))
 	work := make(chan int)
+	p.slots = make(slots, max(1, p.Options.Jobs))
 	var wg sync.WaitGroup
-	for range max(1, p.Options.Jobs) {
+	for range min(cap(p.slots)+syncsAbreast, len(p.Jobs)) {
 		wg.Go(func() {
 			for i := range work {
 				var err error
@@ -143,9 +154,11 @@ func (p *Plan) sum(results []result) *Summary {
 	return s
 }
 
-// treat renders one job, describes it for the record and appends that. The
+// treat renders one job, describes it for the record and appends that. It takes
+// a slot, which render gives up as soon as only the disk is to be waited for. The
 // error is the record's.
 func (p *Plan) treat(ctx context.Context, j *Job, rec *record, progress Progress) (result, error) {
+	p.slots.enter()
 	e := p.newEntry(j)
 	err := p.render(ctx, j, e, progress)
 	if err != nil && ctx.Err() != nil {
