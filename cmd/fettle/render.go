@@ -17,24 +17,36 @@ import (
 
 func renderCommand() *cli.Command {
 	return &cli.Command{
-		Name:      "render",
-		Usage:     "clean recordings, aligned, with a treatment record",
-		UsageText: "fettle render [options] --chain CHAIN --out FOLDER INPUT...",
+		Name:  "render",
+		Usage: "clean recordings, aligned, with a treatment record",
+		UsageText: "fettle render [options] --chain CHAIN --out FOLDER INPUT...\n" +
+			"fettle render [options] --plan LIST --out FOLDER",
 		Description: "An input is a file, a folder or a quoted ** pattern; of folders and patterns,\n" +
 			".wav and .wave files are taken; hidden ones and output folders are not.\n\n" +
 			"Each recording keeps its length, rate, channels and sample format, and its\n" +
 			"name, below FOLDER. Originals are never written to. What was done is appended\n" +
 			"to FOLDER/" + batch.RecordName + "; a second run treats only what is new or changed.\n\n" +
+			"LIST is a CSV file with the columns recording and chain, for a batch of\n" +
+			"several chains. --from and --to render a trial of each, NAME.trial.wav.\n\n" +
 			"Formats: pcm8, pcm16, pcm24, pcm32, float32, float64.\n\n" + exitHelp,
 		Flags: []cli.Flag{
 			&cli.StringFlag{Name: "chain", Usage: "clean through the chain in `CHAIN`, a YAML file"},
+			&cli.StringFlag{Name: "plan", Usage: "clean what `LIST` names, each through its chain"},
 			&cli.StringFlag{Name: "out", Usage: "put outputs into `FOLDER`, made if need be"},
+			&cli.StringFlag{Name: "removed", Usage: "put what the chains take out into `FOLDER`"},
 			phaseFlag(),
 			&cli.StringFlag{Name: "format", Usage: "write `FORMAT`, such as pcm24 (default: as each original)"},
 			&cli.StringFlag{Name: "headroom", Usage: "lower all by `LEVEL`, such as \"3 dB\"; fit: as each needs"},
+			&cli.StringFlag{Name: "from", Usage: "try a stretch from `TIME` on, such as 1:20"},
+			&cli.StringFlag{Name: "to", Usage: "try a stretch up to `TIME`"},
 			&cli.IntFlag{Name: "jobs", Value: runtime.GOMAXPROCS(0), Usage: "treat `N` recordings at once"},
 			kernelFlag(),
-			&cli.BoolFlag{Name: "again", Usage: "treat again what is already done", DisableDefaultText: true},
+			&cli.StringFlag{Name: "shard", Usage: "treat `PART` of the batch: 2/8, or auto in a Slurm array"},
+			flag("again", "treat again what is already done"),
+			flag("rehash", "tell by contents, not by size and time, what is done"),
+			flag("stop-on-error", "begin no more once a recording has failed"),
+			flag("no-proof", "do not read outputs back"),
+			flag("dry-run", "print what would be done, and do nothing"),
 			jsonFlag(),
 		},
 		Action: render,
@@ -46,14 +58,12 @@ func render(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	chain, phase, err := loadChain(c.String("chain"), c.String("phase"))
+	plan, err := planOf(c, options)
 	if err != nil {
 		return err
 	}
-	options.Phase = phase
-	plan, err := batch.New(chain, c.Args().Slice(), options)
-	if err != nil {
-		return err
+	if c.Bool("dry-run") {
+		return printPlan(c.App.Writer, plan)
 	}
 	if err := plan.PrepareOut(); err != nil {
 		return err
@@ -68,13 +78,21 @@ func render(c *cli.Context) error {
 }
 
 func renderOptions(c *cli.Context) (batch.Options, error) {
-	o := batch.Options{Out: c.String("out"), Jobs: c.Int("jobs"), Cores: runtime.GOMAXPROCS(0), Again: c.Bool("again"), Version: c.App.Version}
+	o := batch.Options{
+		Out: c.String("out"), Removed: c.String("removed"), Jobs: c.Int("jobs"), Cores: runtime.GOMAXPROCS(0), Version: c.App.Version,
+		Again: c.Bool("again"), Rehash: c.Bool("rehash"), StopOnError: c.Bool("stop-on-error"), NoProof: c.Bool("no-proof"),
+	}
+	listed := c.String("plan") != ""
 	switch {
-	case c.String("chain") == "":
+	case listed && c.String("chain") != "":
+		return o, errors.New("--plan: names the chains itself; leave out --chain")
+	case listed && c.NArg() > 0:
+		return o, errors.New("--plan: names the recordings itself; leave out inputs")
+	case !listed && c.String("chain") == "":
 		return o, errors.New("--chain: is missing; name the chain file to clean with")
 	case o.Out == "":
 		return o, errors.New("--out: is missing; name the folder for the outputs")
-	case c.NArg() == 0:
+	case !listed && c.NArg() == 0:
 		return o, errors.New("render: no input is named; give files, folders or ** patterns")
 	case o.Jobs < 1:
 		return o, fmt.Errorf("--jobs: %d recordings at once are too few; give 1 or more", o.Jobs)
@@ -82,6 +100,14 @@ func renderOptions(c *cli.Context) (batch.Options, error) {
 	var err error
 	if o.Kernel, o.KernelGiven, err = kernelOf(c); err != nil {
 		return o, err
+	}
+	if o.Stretch, err = batch.ParseStretch(c.String("from"), c.String("to")); err != nil {
+		return o, err
+	}
+	if text := c.String("shard"); text != "" {
+		if o.Shard, err = batch.ParseShard(text); err != nil {
+			return o, fmt.Errorf("--shard: %w", err)
+		}
 	}
 	if o.Encoding, err = encodingOf(c.String("format")); err != nil {
 		return o, err
@@ -122,26 +148,32 @@ func headroomOf(text string) (batch.Headroom, error) {
 // auditPlan audits the chain at every rate that is about to be treated, and
 // prints and writes the figures.
 func auditPlan(c *cli.Context, plan *batch.Plan) error {
-	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) { return audits(plan) })
+	all, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) { return audits(plan) })
 	if err != nil {
 		return err
 	}
-	if len(results) > 0 && c.String("json") != "-" {
-		fmt.Fprintf(c.App.Writer, "audit of %s\n", plain(plan.Chain.Name))
-		if err := report.Brief(c.App.Writer, results); err != nil {
+	results := all
+	for c.String("json") != "-" && len(results) > 0 {
+		n := 1
+		for n < len(results) && results[n].Chain == results[0].Chain {
+			n++
+		}
+		fmt.Fprintf(c.App.Writer, "audit of %s\n", plain(results[0].Chain))
+		if err := report.Brief(c.App.Writer, results[:n]); err != nil {
 			return err
 		}
 		fmt.Fprintln(c.App.Writer)
+		results = results[n:]
 	}
-	return writeJSON(c, results)
+	return writeJSON(c, all)
 }
 
 // audits leaves out a rate that the chain cannot serve: its recordings fail
 // with the reason when their turn comes.
 func audits(plan *batch.Plan) ([]*audit.Result, error) {
 	var results []*audit.Result
-	for _, rate := range plan.Rates() {
-		f, err := plan.Filter(rate)
+	for _, use := range plan.Uses() {
+		f, err := plan.Filter(use)
 		if errors.Is(err, filter.ErrForRecording) {
 			continue
 		}

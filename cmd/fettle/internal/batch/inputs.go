@@ -31,12 +31,17 @@ func (p Problems) Unwrap() []error { return p }
 
 // Gather finds the recordings that files, folders and ** patterns name,
 // sorted by output path. Of folders and patterns it takes what ends in .wav or
-// .wave, hidden ones, other output folders and anything below out left aside; a file named outright
-// is taken whatever its ending. Links are followed to files, and to a folder
-// that is named outright. problems are what is named but cannot be taken. It
-// fails when there is nothing else.
-func Gather(args []string, out string) (inputs []Input, problems Problems, err error) {
-	g := gatherer{seen: map[string]bool{}, out: absolute(out)}
+// .wave, hidden ones, other output folders and anything below the folders aside
+// left out; a file named outright is taken whatever its ending. Links are followed
+// to files, and to a folder that is named outright. problems are what is named but
+// cannot be taken. It fails when there is nothing else.
+func Gather(args []string, aside ...string) (inputs []Input, problems Problems, err error) {
+	g := gatherer{seen: map[string]bool{}}
+	for _, folder := range aside {
+		if folder != "" {
+			g.aside = append(g.aside, absolute(folder))
+		}
+	}
 	for _, arg := range args {
 		g.add(arg)
 	}
@@ -55,7 +60,7 @@ type gatherer struct {
 	inputs   []Input
 	problems Problems
 	seen     map[string]bool
-	out      string
+	aside    []string
 }
 
 func (g *gatherer) problem(path string, err error, todo string) {
@@ -103,19 +108,13 @@ func (g *gatherer) folder(root string) {
 		rel, _ := filepath.Rel(root, path) // path is below root
 		hidden := rel != "." && strings.HasPrefix(e.Name(), ".")
 		switch {
-		case e.IsDir() && rel != "." && (hidden || absolute(path) == g.out || isTreated(path)):
+		case e.IsDir() && rel != "." && (hidden || slices.Contains(g.aside, absolute(path)) || isTreated(path)):
 			return fs.SkipDir
 		case !e.IsDir() && !hidden && isWAV(path) && !isFolder(path):
 			g.file(path, rel)
 		}
 		return nil
 	})
-}
-
-// isTreated tells an output folder: what is in it has been treated already.
-func isTreated(path string) bool {
-	_, err := os.Stat(filepath.Join(path, RecordName))
-	return err == nil
 }
 
 // linked makes a walk begin below root, be root a link or not.
@@ -128,17 +127,18 @@ func linked(root string) string {
 
 func (g *gatherer) pattern(arg string) {
 	base, _ := doublestar.SplitPattern(filepath.ToSlash(arg))
-	aside := g.out
-	if from := absolute(base); from == aside || isBelow(from, aside) {
-		aside = "" // all of it is there; outputs have yet to meet their originals
-	}
+	// Where all of it lies in one of these, outputs have yet to meet their originals.
+	aside := slices.DeleteFunc(slices.Clone(g.aside), func(folder string) bool {
+		from := absolute(base)
+		return from == folder || isBelow(from, folder)
+	})
 	found := 0
 	for _, path := range g.matches(arg) {
 		rel, err := filepath.Rel(base, path)
 		switch {
 		case err != nil || !filepath.IsLocal(rel):
 			g.problem(path, errors.New("is not below the part of the pattern before its first *"), "write the pattern without .. behind a *")
-		case isWAV(path) && !isFolder(path) && (aside == "" || !isBelow(absolute(path), aside)):
+		case isWAV(path) && !isFolder(path) && !slices.ContainsFunc(aside, func(folder string) bool { return isBelow(absolute(path), folder) }):
 			g.file(path, rel)
 		default:
 			continue

@@ -1,21 +1,17 @@
 package batch
 
 import (
-	"bufio"
 	"bytes"
 	"encoding/json"
 	"errors"
 	"fmt"
-	"io"
-	"io/fs"
 	"os"
-	"path/filepath"
 	"sync"
-	"syscall"
 	"time"
 )
 
-// RecordName is the treatment record's file name in the output folder.
+// RecordName is the treatment record's file name in the output folder. A shard
+// has one of its own, see recordNameOf.
 const RecordName = "treatment.jsonl"
 
 // RecordSchema names the layout of a record's lines.
@@ -46,9 +42,16 @@ type Entry struct {
 	SHA256In      string    `json:"sha256_in"`
 	SHA256Out     string    `json:"sha256_out"`
 
-	RateHz    int    `json:"rate_hz"`
-	Channels  int    `json:"channels"`
-	Frames    int64  `json:"frames"`
+	// Of what the chain took out, "" if that was not kept.
+	Removed       name   `json:"removed"`
+	SHA256Removed string `json:"sha256_removed"`
+
+	RateHz   int   `json:"rate_hz"`
+	Channels int   `json:"channels"`
+	Frames   int64 `json:"frames"`
+	// Of a trial, which stretch of the recording it is, in frames; null otherwise.
+	TrialFrom *int64 `json:"trial_from"`
+	TrialTo   *int64 `json:"trial_to"`
 	FormatIn  string `json:"format_in"`
 	FormatOut string `json:"format_out"`
 
@@ -68,6 +71,11 @@ type Entry struct {
 	TruePeakOversampling int      `json:"true_peak_oversampling"`
 	HeadroomDB           float64  `json:"headroom_db"` // taken off
 	Dither               string   `json:"dither"`
+
+	// Which part of which batch this is: "2/8", or "" for all of it.
+	Shard      string `json:"shard"`
+	Batch      string `json:"batch"`
+	BatchCount int    `json:"batch_recordings"`
 
 	Warnings []string `json:"warnings"`
 
@@ -176,35 +184,3 @@ func unreadableRecord(path string, err error) error {
 }
 
 func (r *record) close() error { return r.file.Close() }
-
-// readRecord gives the last entry of each output; none for a missing record.
-// A line that cannot be read is an error, but for a torn last one.
-func readRecord(path string) (map[string]*Entry, error) {
-	out := map[string]*Entry{}
-	f, err := os.Open(path)
-	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, syscall.ENOTDIR) {
-		return out, nil
-	}
-	if err != nil {
-		return nil, unreadableRecord(path, err)
-	}
-	defer f.Close()
-	if info, err := f.Stat(); err == nil && !info.Mode().IsRegular() {
-		return nil, unreadableRecord(path, errors.New("it is no regular file"))
-	}
-	in := bufio.NewReader(f)
-	for n := 1; ; n++ {
-		line, err := in.ReadBytes('\n')
-		if err == io.EOF {
-			return out, nil // what stands here is torn, or nothing
-		}
-		if err != nil {
-			return nil, unreadableRecord(path, err)
-		}
-		e := new(Entry)
-		if err := json.Unmarshal(line, e); err != nil || e.Schema != RecordSchema {
-			return nil, fmt.Errorf("the treatment record %s: line %d is none of its kind; move the file away to begin a new one", path, n)
-		}
-		out[filepath.FromSlash(string(e.Output))] = e
-	}
-}

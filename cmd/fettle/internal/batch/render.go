@@ -31,50 +31,29 @@ func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) 
 	defer rec.Close()
 	format := rec.Format()
 	e.InputBytes, e.InputModified = rec.Size(), rec.ModTime().UTC()
-	e.RateHz, e.Channels, e.Frames = format.SampleRate, format.NumChannels, rec.Frames()
+	e.RateHz, e.Channels = format.SampleRate, format.NumChannels
 	e.FormatIn, e.FormatOut = rec.Encoding().String(), p.encoding(rec).String()
 	e.Warnings = append(e.Warnings, rec.Warnings()...)
-	f, err := p.Filter(format.SampleRate)
-	if err != nil {
+	r := &rendering{plan: p, job: j, rec: rec, entry: e, progress: progress, leave: leave}
+	if r.from, r.to, err = p.Options.Stretch.frames(format.SampleRate, rec.Frames()); err != nil {
 		return fmt.Errorf("%s: %w", j.Path, err)
 	}
-	p.describe(e, f)
+	e.Frames = r.to - r.from
+	if !p.Options.Stretch.none() {
+		e.TrialFrom, e.TrialTo = &r.from, &r.to
+	}
+	if r.filter, err = p.Filter(Use{j.Chain, format.SampleRate}); err != nil {
+		return fmt.Errorf("%s: %w", j.Path, err)
+	}
+	describe(e, r.filter)
 	e.loud = len(e.Warnings)
 	e.Warnings = append(e.Warnings, notCarried(rec)...)
-	r := &rendering{plan: p, job: j, rec: rec, filter: f, entry: e, progress: progress, leave: leave}
 	r.gain = math.Pow(10, -p.Options.Headroom.DB/20)
 	return r.fit(ctx, r.pass(ctx))
 }
 
-// fit makes of an over what the options say: the headroom that is needed
-// in all, or a second pass with it.
-func (r *rendering) fit(ctx context.Context, err error) error {
-	var over *audio.OverError
-	if !errors.As(err, &over) {
-		return err
-	}
-	options := r.plan.Options.Headroom
-	if !options.Fit {
-		over.HeadroomDB += options.DB
-		return err
-	}
-	if err := r.rec.Rewind(); err != nil {
-		return err
-	}
-	r.plan.slots.enter()
-	r.leave = sync.OnceFunc(r.plan.slots.leave)
-	defer r.leave()
-	r.entry.HeadroomDB = roundUp(over.HeadroomDB)
-	r.gain, r.progress = math.Pow(10, -r.entry.HeadroomDB/20), nil
-	return r.pass(ctx)
-}
-
-// roundUp takes a level to the next tenth of a dB, the figure that is written
-// down being the figure that was used.
-func roundUp(db float64) float64 { return math.Ceil(db*10) / 10 }
-
 // describe fills in what the filter is.
-func (p *Plan) describe(e *Entry, f *filter.Filter) {
+func describe(e *Entry, f *filter.Filter) {
 	paths := f.Paths()
 	e.Phase = string(f.Phase())
 	for i, path := range paths {
@@ -124,116 +103,139 @@ type rendering struct {
 	filter   *filter.Filter
 	entry    *Entry
 	progress Progress // nil on a second pass, whose bytes were counted
+	from, to int64    // frames of the recording to be rendered
 	gain     float64
 	leave    func() // gives up the slot; may be called twice
 }
 
-// pass reads, filters and writes the whole recording once. On any error the
-// output does not appear.
-func (r *rendering) pass(ctx context.Context) error {
-	format := r.rec.Format()
-	before := &metered{Source: r.rec, meter: audio.NewMeter(format.NumChannels)}
-	if r.progress != nil {
-		before.progress, before.frameBytes = r.progress, int64(r.rec.Encoding().Bytes*format.NumChannels)
+// fit makes of an over what the options say: the headroom that is needed
+// in all, or a second pass with it.
+func (r *rendering) fit(ctx context.Context, err error) error {
+	var over *audio.OverError
+	if !errors.As(err, &over) {
+		return err
 	}
-	out, rest, err := r.filtered(before)
+	options := r.plan.Options.Headroom
+	if !options.Fit {
+		over.HeadroomDB += options.DB
+		return err
+	}
+	r.plan.slots.enter()
+	r.leave = sync.OnceFunc(r.plan.slots.leave)
+	defer r.leave()
+	r.entry.HeadroomDB = roundUp(over.HeadroomDB)
+	r.gain, r.progress = math.Pow(10, -r.entry.HeadroomDB/20), nil
+	return r.pass(ctx)
+}
+
+// roundUp takes a level to the next tenth of a dB, the figure that is written
+// down being the figure that was used.
+func roundUp(db float64) float64 { return math.Ceil(db*10) / 10 }
+
+// pass reads, filters and writes the recording once. On any error no output
+// appears.
+func (r *rendering) pass(ctx context.Context) error {
+	out, before, rest, err := r.filtered()
 	if err != nil {
 		return fmt.Errorf("%s: %w", r.job.Path, err)
 	}
 	defer rest()
-	w, err := r.create()
+	outputs, err := r.create()
 	if err != nil {
 		return err
 	}
-	after := audio.NewMeter(format.NumChannels)
-	err = r.copy(ctx, w, out, after)
+	err = outputs.copy(ctx, out, r.gain)
 	rest()
 	if err == nil {
 		r.entry.SHA256In, err = r.rec.SHA256()
 	}
 	if err != nil {
-		return errors.Join(err, w.Abort())
+		return errors.Join(err, outputs.abort())
 	}
-	r.entry.PeakIn, r.entry.TruePeakIn = levels(before.meter)
-	r.entry.PeakOut, r.entry.TruePeakOut = levels(after)
-	return r.commit(w)
+	r.entry.PeakIn, r.entry.TruePeakIn = levels(before)
+	r.entry.PeakOut, r.entry.TruePeakOut = levels(outputs.meter)
+	r.leave()
+	return outputs.commit(r.entry)
 }
 
-// filtered gives the recording as it comes out of the filter. Where there are
-// cores to spare, reading and filtering go on while what came before is written;
-// rest ends that and may be called twice.
-func (r *rendering) filtered(src audio.Source) (out audio.Source, rest func(), err error) {
+// filtered gives what is to be rendered as it comes out of the filter, and the
+// meter of what goes in. Where there are cores to spare, reading and filtering go
+// on while what came before is written; rest ends that and may be called twice.
+func (r *rendering) filtered() (out audio.Source, before *audio.Meter, rest func(), err error) {
 	setup := r.filter.Setup()
 	setup.Kernel, setup.Workers = r.plan.Options.Kernel, r.plan.coresEach()
-	if setup.Workers < 2 || r.rec.Frames() < overlapFrom {
-		out, err = r.filter.ApplyWith(src, setup)
-		return out, func() {}, err
-	}
-	read := audio.NewAhead(src, block, 2)
-	filtered, err := r.filter.ApplyWith(read, setup)
+	ahead, behind := r.context()
+	src, err := newSection(r.rec, r.from-ahead, r.to+behind)
 	if err != nil {
-		read.Close()
-		return nil, nil, err
+		return nil, nil, nil, err
 	}
-	written := audio.NewAhead(filtered, block, 2)
-	return written, func() { written.Close(); read.Close() }, nil
+	in := &metered{Source: src, meter: audio.NewMeter(r.rec.Format().NumChannels), skip: ahead, left: r.to - r.from}
+	if r.progress != nil {
+		in.progress, in.frameBytes = r.progress, int64(r.rec.Encoding().Bytes*r.rec.Format().NumChannels)
+	}
+	overlap := setup.Workers > 1 && src.Frames() >= overlapFrom
+	closers := []func(){}
+	rest = func() {
+		for _, c := range slices.Backward(closers) {
+			c()
+		}
+	}
+	out = in
+	if overlap {
+		read := audio.NewAhead(out, block, 2)
+		out, closers = read, append(closers, read.Close)
+	}
+	if out, err = r.filter.ApplyWith(out, setup); err != nil {
+		rest()
+		return nil, nil, nil, err
+	}
+	out = &window{Source: out, skip: ahead, length: r.to - r.from}
+	if overlap {
+		written := audio.NewAhead(out, block, 2)
+		out, closers = written, append(closers, written.Close)
+	}
+	return out, in.meter, rest, nil
+}
+
+// context is how many frames before and after a stretch are filtered with it, so
+// that it comes out as it would of the whole recording.
+func (r *rendering) context() (before, after int64) {
+	before, after = reach(r.filter)
+	return min(before, r.from), min(after, r.rec.Frames()-r.to)
 }
 
 // overlapFrom is the least length in frames for which goroutines of their own pay.
 const overlapFrom = 8 * block
 
-func (r *rendering) create() (*audio.Writer, error) {
-	if err := os.MkdirAll(filepath.Dir(r.job.Output), 0o777); err != nil {
-		return nil, fmt.Errorf("%s: its folder cannot be made: %w; choose another for --out", r.job.Output, cause(err))
-	}
-	return audio.Create(r.job.Output, r.spec())
-}
-
-func (r *rendering) commit(w *audio.Writer) error {
-	r.leave()
-	if err := w.Commit(); err != nil {
-		return err
-	}
-	info, err := os.Stat(r.job.Output)
+// create begins all that a recording becomes.
+func (r *rendering) create() (*outputs, error) {
+	o := &outputs{rec: r.rec, meter: audio.NewMeter(r.rec.Format().NumChannels)}
+	w, err := createIn(r.job.Output, "--out", r.spec())
 	if err != nil {
-		return err
+		return nil, err
 	}
-	r.entry.SHA256Out, r.entry.OutputBytes = w.SHA256(), info.Size()
-	return nil
+	o.writer, o.path = w, r.job.Output
+	if path := r.plan.removedPath(r.job); path != "" {
+		if o.removed, err = newRemoval(path, r.job.Path, r.from, r.to); err != nil {
+			return nil, errors.Join(err, o.abort())
+		}
+	}
+	return o, nil
 }
 
-// copy moves the frames, scaled, from the filter to the writer.
-func (r *rendering) copy(ctx context.Context, w *audio.Writer, out audio.Source, after *audio.Meter) error {
-	buf := make([]float64, block*out.Format().NumChannels)
-	for {
-		if err := ctx.Err(); err != nil {
-			return err
-		}
-		n, err := out.ReadFrames(buf)
-		if err == io.EOF {
-			return nil
-		}
-		if err != nil {
-			return err
-		}
-		frames := buf[:n*out.Format().NumChannels]
-		if r.gain != 1 {
-			for i := range frames {
-				frames[i] *= r.gain
-			}
-		}
-		after.Add(frames)
-		if err := w.WriteFrames(frames); err != nil {
-			return err
-		}
+// createIn begins a file and makes its folder.
+func createIn(path, flag string, spec audio.Spec) (*audio.Writer, error) {
+	if err := os.MkdirAll(filepath.Dir(path), 0o777); err != nil {
+		return nil, fmt.Errorf("%s: its folder cannot be made: %w; choose another for %s", path, cause(err), flag)
 	}
+	return audio.Create(path, spec)
 }
 
 // spec describes the output file. An unchanged sample format keeps the
 // original's own description, and with it valid bits and speaker positions.
 func (r *rendering) spec() audio.Spec {
 	format, encoding := r.rec.Format(), r.plan.encoding(r.rec)
-	s := audio.Spec{Rate: format.SampleRate, Channels: format.NumChannels, Encoding: encoding, Frames: r.rec.Frames(), Mode: 0o666}
+	s := audio.Spec{Rate: format.SampleRate, Channels: format.NumChannels, Encoding: encoding, Frames: r.to - r.from, Mode: 0o666}
 	if encoding == r.rec.Encoding() {
 		s.FmtChunk = r.rec.Layout().Fmt
 	}
@@ -253,7 +255,7 @@ func (r *rendering) dither(to pcm.Encoding) []*pcm.Dither {
 	for c := range out {
 		exact := r.filter.Untouched(c+1) && r.gain == 1 && !from.Float && from.Bits <= to.Bits
 		if !exact {
-			out[c] = pcm.NewDither(r.plan.Chain.SHA256, filepath.ToSlash(r.job.Rel), c)
+			out[c] = pcm.NewDither(r.job.Chain.SHA256, filepath.ToSlash(r.job.Rel), c)
 			r.entry.Dither = "TPDF"
 		}
 	}
@@ -273,21 +275,100 @@ func decibels(x float64) *float64 {
 	return &db
 }
 
-// metered measures what is read through it and tells how far it is.
+// metered measures what is read through it, but for the context of a stretch, and
+// tells how far it is.
 type metered struct {
 	audio.Source
 	meter      *audio.Meter
+	skip, left int64 // frames
 	progress   Progress
 	frameBytes int64
 }
 
 func (m *metered) ReadFrames(dst []float64) (int, error) {
 	n, err := m.Source.ReadFrames(dst)
-	if err == nil {
-		m.meter.Add(dst[:n*m.Format().NumChannels])
-		if m.progress != nil {
-			m.progress.Bytes(int64(n) * m.frameBytes)
+	if err != nil {
+		return n, err
+	}
+	if m.progress != nil {
+		m.progress.Bytes(int64(n) * m.frameBytes)
+	}
+	from := min(m.skip, int64(n))
+	to := min(from+m.left, int64(n))
+	m.skip -= from
+	m.left -= to - from
+	channels := int64(m.Format().NumChannels)
+	m.meter.Add(dst[from*channels : to*channels])
+	return n, nil
+}
+
+// outputs is all that a recording becomes: the output, and what was removed.
+type outputs struct {
+	rec     *audio.Recording
+	path    string
+	writer  *audio.Writer
+	removed *removal // nil: not kept
+	meter   *audio.Meter
+}
+
+// copy moves the frames, scaled, from the filter to the writers.
+func (o *outputs) copy(ctx context.Context, out audio.Source, gain float64) error {
+	channels := out.Format().NumChannels
+	buf := make([]float64, block*channels)
+	for {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		n, err := out.ReadFrames(buf)
+		if err == io.EOF {
+			return nil
+		}
+		if err != nil {
+			return err
+		}
+		frames := buf[:n*channels]
+		if gain != 1 {
+			for i := range frames {
+				frames[i] *= gain
+			}
+		}
+		o.meter.Add(frames)
+		if err := o.writer.WriteFrames(frames); err != nil {
+			return err
+		}
+		if o.removed != nil {
+			if err := o.removed.add(frames, gain); err != nil {
+				return err
+			}
 		}
 	}
-	return n, err
+}
+
+func (o *outputs) abort() error {
+	err := o.writer.Abort()
+	if o.removed != nil {
+		err = errors.Join(err, o.removed.abort())
+	}
+	return err
+}
+
+// commit makes the files appear and enters them in the record.
+func (o *outputs) commit(e *Entry) error {
+	if o.removed != nil {
+		if err := o.removed.commit(e); err != nil {
+			return errors.Join(err, o.writer.Abort())
+		}
+	}
+	if err := o.writer.Commit(); err != nil {
+		if o.removed != nil {
+			err = errors.Join(err, os.Remove(o.removed.path))
+		}
+		return err
+	}
+	info, err := os.Stat(o.path)
+	if err != nil {
+		return err
+	}
+	e.SHA256Out, e.OutputBytes = o.writer.SHA256(), info.Size()
+	return nil
 }

@@ -11,7 +11,6 @@ import (
 	"time"
 
 	"fettle/audio"
-	"fettle/filter"
 )
 
 // Progress is told how a run goes. Its methods are called from several
@@ -35,14 +34,6 @@ type Summary struct {
 // Failed is how many recordings, or places to look for them, failed.
 func (s *Summary) Failed() int { return len(s.Failures) }
 
-// Filter gives the chain realised at a rate, made once and shared.
-func (p *Plan) Filter(rate int) (*filter.Filter, error) { return p.filters().at(rate) }
-
-func (p *Plan) filters() *filters {
-	p.once.Do(func() { p.made = newFilters(p.Chain, p.Options.Phase) })
-	return p.made
-}
-
 // Run treats every recording that is not done, several at once. A recording's
 // failure is counted and the rest go on; the error returned is of the batch as
 // a whole: a record that cannot be written, or ctx's own when it was cancelled,
@@ -52,13 +43,23 @@ func (p *Plan) Run(ctx context.Context, progress Progress) (*Summary, error) {
 	if err != nil {
 		return nil, err
 	}
+	p.sweep()
 	s, err := p.treatAll(ctx, rec, progress)
 	return s, errors.Join(err, rec.close())
 }
 
 // syncsAbreast is how many recordings may be on their way to the disk while
 // others are rendered. File systems settle syncs that come together in one go.
+// One job means one recording at a time, to the end.
 const syncsAbreast = 16
+
+// workers is how many recordings may be under way.
+func (p *Plan) workers() int {
+	if p.Options.Jobs <= 1 {
+		return 1
+	}
+	return min(p.Options.Jobs+syncsAbreast, len(p.Jobs))
+}
 
 // slots bounds how many recordings are rendered at once.
 type slots chan struct{}
@@ -73,12 +74,14 @@ func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*S
 	work := make(chan int)
 	p.slots = make(slots, max(1, p.Options.Jobs))
 	var wg sync.WaitGroup
-	for range min(cap(p.slots)+syncsAbreast, len(p.Jobs)) {
+	for range p.workers() {
 		wg.Go(func() {
 			for i := range work {
 				var err error
 				if results[i], err = p.treat(ctx, p.Jobs[i], rec, progress); err != nil {
 					stop(err)
+				} else if results[i].err != nil && p.Options.StopOnError {
+					stop(errStopped)
 				}
 			}
 		})
@@ -86,8 +89,15 @@ func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*S
 	p.feed(ctx, work)
 	wg.Wait()
 	p.removeEmptyFolders(results)
-	return p.sum(results), context.Cause(ctx)
+	s := p.sum(results)
+	if err := context.Cause(ctx); !errors.Is(err, errStopped) {
+		return s, err
+	}
+	return s, nil // the failure that stopped it is counted
 }
+
+// errStopped ends a batch after a failure.
+var errStopped = errors.New("a recording failed")
 
 // coresEach is how many cores one recording may use.
 func (p *Plan) coresEach() int {
@@ -97,6 +107,9 @@ func (p *Plan) coresEach() int {
 // removeEmptyFolders takes away folders that were made for outputs that did
 // not come about.
 func (p *Plan) removeEmptyFolders(results []result) {
+	if p.Options.Shard.Count > 0 {
+		return // another shard may be about to use them
+	}
 	for i, r := range results {
 		if p.Jobs[i].Done || r.entry != nil && r.err == nil {
 			continue
@@ -109,12 +122,17 @@ func (p *Plan) removeEmptyFolders(results []result) {
 	}
 }
 
-// feed hands out the jobs in order until the context ends.
+// feed hands out the jobs in order, each with a slot, until the context ends.
 func (p *Plan) feed(ctx context.Context, work chan<- int) {
 	defer close(work)
 	for i, j := range p.Jobs {
 		if j.Done {
 			continue
+		}
+		select {
+		case p.slots <- struct{}{}:
+		case <-ctx.Done():
+			return
 		}
 		select {
 		case work <- i:
@@ -154,11 +172,10 @@ func (p *Plan) sum(results []result) *Summary {
 	return s
 }
 
-// treat renders one job, describes it for the record and appends that. It takes
-// a slot, which render gives up as soon as only the disk is to be waited for. The
-// error is the record's.
+// treat renders one job, describes it for the record and appends that. It begins
+// with a slot, which render gives up as soon as only the disk is to be waited for.
+// The error is the record's.
 func (p *Plan) treat(ctx context.Context, j *Job, rec *record, progress Progress) (result, error) {
-	p.slots.enter()
 	e := p.newEntry(j)
 	err := p.render(ctx, j, e, progress)
 	if err != nil && ctx.Err() != nil {
@@ -176,8 +193,9 @@ func (p *Plan) newEntry(j *Job) *Entry {
 		Schema: RecordSchema, Version: p.Options.Version, Status: StatusDone,
 		Treated: time.Now().UTC().Truncate(time.Second),
 		Input:   name(absolute(j.Path)), Output: name(filepath.ToSlash(j.Rel)),
-		Chain: p.Chain.Name, ChainSHA256: fmt.Sprintf("%x", p.Chain.SHA256), Settings: p.settings(),
-		Edges: string(p.Chain.Edges), Kernel: p.Options.Kernel.String(), Warnings: []string{},
+		Chain: j.Chain.Name, ChainSHA256: fmt.Sprintf("%x", j.Chain.SHA256), Settings: p.settings(j),
+		Shard: p.Options.Shard.String(), Batch: p.batch, BatchCount: p.count,
+		Edges: string(j.Chain.Edges), Kernel: p.Options.Kernel.String(), Warnings: []string{},
 		HeadroomDB: p.Options.Headroom.DB, TruePeakOversampling: audio.TruePeakOversampling,
 	}
 }

@@ -97,8 +97,8 @@ func TestInterruptedMidway(t *testing.T) {
 		if !errors.Is(err, context.Canceled) {
 			t.Fatalf("error %v, want context.Canceled", err)
 		}
-		if s.Done < 1 || s.Done > jobs+syncsAbreast || s.Done+s.Left != count || s.Failed() != 0 {
-			t.Errorf("%d jobs: %+v, want 1 to %d done and the rest left", jobs, s, jobs+syncsAbreast)
+		if s.Done < 1 || s.Done > p.workers() || s.Done+s.Left != count || s.Failed() != 0 {
+			t.Errorf("%d jobs: %+v, want 1 to %d done and the rest left", jobs, s, p.workers())
 		}
 		past, err := readRecord(filepath.Join(out, RecordName))
 		mustDo(t, err)

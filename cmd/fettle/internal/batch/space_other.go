@@ -1,0 +1,19 @@
+//go:build !unix
+
+package batch
+
+import (
+	"errors"
+	"os"
+)
+
+// writable says why files cannot be made in a folder.
+func writable(folder string) error {
+	probe, err := os.CreateTemp(folder, ".fettle-*")
+	if err != nil {
+		return err
+	}
+	return errors.Join(probe.Close(), os.Remove(probe.Name()))
+}
+
+func freeSpace(string) (int64, bool) { return 0, false }

@@ -1,0 +1,17 @@
+//go:build unix
+
+package batch
+
+import "golang.org/x/sys/unix"
+
+// writable says why files cannot be made in a folder.
+func writable(folder string) error { return unix.Access(folder, unix.W_OK|unix.X_OK) }
+
+// freeSpace is what an ordinary user may still write where path is, in bytes.
+func freeSpace(path string) (int64, bool) {
+	var s unix.Statfs_t
+	if err := unix.Statfs(path, &s); err != nil {
+		return 0, false
+	}
+	return int64(s.Bavail) * int64(s.Bsize), true
+}
