@@ -3,7 +3,6 @@ package audio
 import (
 	"io"
 	"math"
-	"math/rand/v2"
 	"path/filepath"
 	"testing"
 
@@ -100,60 +99,4 @@ func benchWrite(b *testing.B, spec Spec) {
 		}
 	}
 	reportSamples(b, 2*benchBuffer)
-}
-
-// BenchmarkMeter: the same in both channels, with the peak that it sets itself.
-// Noise, speech and a low tone spare the interpolator most of the time though they
-// are loud; a steady tone of a fifth to a third of the rate hardly ever does, which
-// is the worst case, and material 8 dB or more below a peak always.
-func BenchmarkMeter(b *testing.B) {
-	const frames = 1 << 15
-	tone := func(f float64) []float64 { return sine(frames, math.Round(f*frames)/frames, 1) } // in whole cycles
-	bursts, quiet := tone(0.11), sine(frames, 0.11, 0.4)
-	for i := range bursts {
-		bursts[i] *= math.Pow(math.Sin(math.Pi*float64(i)/1024), 8)
-	}
-	copy(quiet, []float64{1, -1})
-	for _, s := range []struct {
-		name string
-		x    []float64
-	}{
-		{"low tone", tone(0.02)}, {"tone", tone(0.11)}, {"worst tone", tone(0.29)},
-		{"noise", noise(frames)}, {"speech", speechLike(frames)}, {"bursts", bursts}, {"quiet", quiet},
-	} {
-		x := interleave([][]float64{s.x, s.x})
-		b.Run(s.name, func(b *testing.B) {
-			m := metered(x, 2)
-			for b.Loop() {
-				m.Add(x)
-			}
-			reportSamples(b, len(x))
-		})
-	}
-}
-
-// noise is white, uniform up to full scale.
-func noise(n int) []float64 {
-	r := rand.New(rand.NewPCG(1, 2))
-	x := make([]float64, n)
-	for i := range x {
-		x[i] = 2*r.Float64() - 1
-	}
-	return x
-}
-
-// speechLike is noise through a resonance at a twentieth of the rate, in
-// syllables, its peak at full scale.
-func speechLike(n int) []float64 {
-	x := noise(n)
-	var y1, y2 float64
-	for i := range x {
-		y1, y2 = x[i]+1.6*y1-0.7*y2, y1
-		x[i] = y1 * math.Pow(math.Sin(math.Pi*float64(i)/8192), 2)
-	}
-	peak := largest(x)
-	for i := range x {
-		x[i] /= peak
-	}
-	return x
 }

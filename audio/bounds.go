@@ -5,33 +5,57 @@ import "math"
 // bounds says how far the interpolator can reach, so that the meter need not run
 // it where it cannot beat the peak so far.
 //
-// Write a phase as its taps h. Any few taps g in the middle of the window that
-// agree with h on constants and on ramps leave taps h - g with two zeros at z = 1:
-// they are some taps r applied to the second differences Δ²x. Hence
+// Write a phase as its taps h, and let some taps g in the middle of the window, a
+// sketch of it, stand for them. Then, over the window,
+//
+//	|h·x - g·x| <= Σ|h - g| max|x|
+//
+// which is good for noise, with the taps of h themselves. If g agrees with h on
+// constants and on ramps, h - g has two zeros at z = 1: it is some taps r applied
+// to the second differences Δ²x. Hence
 //
 //	|h·x - g·x| <= Σ|r| max|Δ²x|
 //
-// over the window. With s0, s1, s2 the sums of the three pairs in the middle, the
-// inner one first, and d0 the difference of that one,
+// which is good for low frequencies. If g is the straight line between the inner
+// pair, g·x is not larger than the larger of the pair: no point exceeds that by more
+// than Σ|r| max|Δ²x|.
 //
-//	g·x = a s0 + b s1 + c s2, a + b + c = 1/2    at n + 2/4
-//	g·x = a s0 + b s1 + c s2 ± t d0              at n + 1/4, n + 3/4
-//
-// where t is the distance of the phase's centre of gravity from the middle. As s1
-// is s0, and s2 is s0 + 2 (s1 - s0), up to two second differences each,
-//
-//	g·x = s0/2 ± t d0 + (b + 2c) (s1 - s0) + c (s2 - 2 s1 + s0)
-//
-// The first two terms lie on the straight line between the inner pair, since t <=
-// 1/2. So no point exceeds the larger of that pair by more than
-//
-//	(Σ|r| + 2|b + 2c| + 2|c|) max|Δ²x|
+// As the interpolator does, a sketch works on the sums and differences of mirrored
+// samples.
 type bounds struct {
-	norm               float64    // the largest |point| / max|x|
-	lift               float64    // the largest (|point| - max|inner pair|) / max|Δ²x|
-	near               [3]float64 // a, b, c
-	tilt               float64    // t, with its sign
-	middleOff, sideOff float64    // Σ|r|
+	norm        float64 // the largest |point| / max|x|
+	lift        float64 // the largest (|point| - max|inner pair|) / max|Δ²x|
+	rough, bent sketch  // for noise, and for low frequencies
+}
+
+// nearPairs is how many pairs in the middle of a window a sketch takes. Two leave
+// four times as many windows of white noise to the interpolator; four take longer
+// than they spare.
+const nearPairs = 3
+
+// sketch stands for the phases, its coefficients the outer pair first. A point is
+// off by no more than its off times max|x|, or times max|Δ²x|.
+type sketch struct {
+	middle, even, odd  [nearPairs]float64
+	middleOff, sideOff float64
+}
+
+// slacks is how far a sketch may be off.
+type slacks struct{ middle, side float64 }
+
+// most is above every point of windows where max|x| is reach and max|Δ²x| is bend.
+func (b *bounds) most(reach, bend float64) float64 {
+	return min(b.norm*reach, reach+b.lift*bend+rounding*reach)
+}
+
+// sketch returns the one that is off by less in a window where max|x| is reach and
+// max|Δ²x| is bend.
+func (b *bounds) sketch(reach, bend float64) (*sketch, slacks) {
+	s, of := &b.rough, reach
+	if b.bent.middleOff*bend < b.rough.middleOff*reach {
+		s, of = &b.bent, bend
+	}
+	return s, slacks{s.middleOff*of + rounding*reach, s.sideOff*of + rounding*reach}
 }
 
 // rounding is more than all roundings together can add to a point or to a bound
@@ -42,21 +66,69 @@ type bounds struct {
 // begin to lose more.
 const rounding = 1e-12
 
-// The free ones of the taps g. Any values are right; these leave about the
-// smallest Σ|r|, for three pairs that serve all phases.
+// The free coefficients of the bent sketch. Any values are right; these leave about
+// the smallest Σ|r|.
 const (
-	nearNext  = -0.16  // b
-	nearOuter = +0.035 // c
+	middleOuter, middleNext = +0.0417, -0.1755
+	evenOuter, evenNext     = +0.0300, -0.1282
+	oddOuter, oddNext       = +0.0040, -0.0241
 )
 
-func newBounds(quarter, middle window) (b bounds) {
+func newBounds(h *interpolate, quarter, middle window) (b bounds) {
 	b.norm = max(magnitudes(quarter[:]), magnitudes(middle[:])) * (1 + rounding)
-	b.near = [...]float64{0.5 - nearNext - nearOuter, nearNext, nearOuter}
-	b.tilt = -slope(quarter)
-	b.middleOff = magnitudes(remainder(middle, b.near, 0))
-	b.sideOff = magnitudes(remainder(quarter, b.near, b.tilt))
-	b.lift = max(b.middleOff, b.sideOff) + 2*math.Abs(nearNext+2*nearOuter) + 2*math.Abs(nearOuter)
+	b.rough = sketch{middle: h.middle.near(), even: h.even.near(), odd: h.odd.near()}
+	b.rough.measure(quarter, middle, difference)
+
+	tilt := -slope(quarter)
+	b.bent.middle = [...]float64{middleOuter, middleNext, 0.5 - middleNext - middleOuter}
+	b.bent.even = [...]float64{evenOuter, evenNext, 0.5 - evenNext - evenOuter}
+	b.bent.odd = [...]float64{oddOuter, oddNext, tilt - 3*oddNext - 5*oddOuter}
+	b.bent.measure(quarter, middle, remainder)
+
+	constant := [...]float64{0, 0, 0.5}
+	straight := sketch{middle: constant, even: constant, odd: [...]float64{0, 0, tilt}}
+	straight.measure(quarter, middle, remainder)
+	b.lift = max(straight.middleOff, straight.sideOff)
 	return b
+}
+
+// near are the coefficients that a sketch takes over.
+func (h half) near() [nearPairs]float64 { return [nearPairs]float64(h[len(h)-nearPairs:]) }
+
+// measure sets the offs, the sums of the magnitudes that off makes of a phase and
+// its sketch.
+func (s *sketch) measure(quarter, middle window, off func(h, g window) window) {
+	between, beside := off(middle, taps(s.middle, [nearPairs]float64{})), off(quarter, taps(s.even, s.odd))
+	s.middleOff, s.sideOff = magnitudes(between[:]), magnitudes(beside[:])
+}
+
+// taps is what coefficients of sums and differences are on the samples themselves.
+func taps(even, odd [nearPairs]float64) (g window) {
+	const first = interpolatorTaps/2 - nearPairs
+	for i := range even {
+		g[first+i] = even[i] + odd[i]
+		g[interpolatorTaps-1-first-i] = even[i] - odd[i]
+	}
+	return g
+}
+
+func difference(h, g window) window {
+	for k := range h {
+		h[k] -= g[k]
+	}
+	return h
+}
+
+// remainder is r, one for each second difference: h - g divided by (1 - z)²,
+// which is two running sums. The last two entries are 0 up to rounding.
+func remainder(h, g window) window {
+	r := difference(h, g)
+	for range 2 {
+		for k := 1; k < len(r); k++ {
+			r[k] += r[k-1]
+		}
+	}
+	return r
 }
 
 // slope is what a phase makes of the ramp that is 0 in the middle of the window.
@@ -65,24 +137,6 @@ func slope(h window) (sum float64) {
 		sum += c * (float64(k) - (interpolatorTaps-1)/2.)
 	}
 	return sum
-}
-
-// remainder is r, one for each second difference: h - g divided by (1 - z)²,
-// which is two running sums. The last two entries are 0 up to rounding.
-func remainder(h window, near [3]float64, tilt float64) []float64 {
-	r, n := h, len(h)/2
-	for k, c := range near {
-		r[n-1-k] -= c
-		r[n+k] -= c
-	}
-	r[n-1] -= tilt
-	r[n] += tilt
-	for range 2 {
-		for k := 1; k < len(r); k++ {
-			r[k] += r[k-1]
-		}
-	}
-	return r[:]
 }
 
 func magnitudes(h []float64) float64 {

@@ -41,7 +41,7 @@ func newInterpolator() (h interpolate) {
 		h.odd[k] = (quarter[k] - mirrored) / 2
 		h.middle[k] = middle[k]
 	}
-	h.bounds = newBounds(quarter, middle)
+	h.bounds = newBounds(&h, quarter, middle)
 	return h
 }
 
@@ -65,27 +65,29 @@ func (h *interpolate) peak(x *window) float64 {
 }
 
 // middlePeak is the magnitude at n + 2/4. Written out, here and below, the sums
-// take three quarters of the time of a loop.
+// take three quarters of the time of a loop. The conversions keep products from
+// being fused with sums, so that all machines that can fuse give the same bits as
+// those that cannot.
 func (h *interpolate) middlePeak(x *window) float64 {
 	m := &h.middle
-	middle := m[0]*(x[0]+x[23]) + m[1]*(x[1]+x[22]) + m[2]*(x[2]+x[21]) +
-		m[3]*(x[3]+x[20]) + m[4]*(x[4]+x[19]) + m[5]*(x[5]+x[18]) +
-		m[6]*(x[6]+x[17]) + m[7]*(x[7]+x[16]) + m[8]*(x[8]+x[15]) +
-		m[9]*(x[9]+x[14]) + m[10]*(x[10]+x[13]) + m[11]*(x[11]+x[12])
+	middle := float64(m[0]*(x[0]+x[23])) + float64(m[1]*(x[1]+x[22])) + float64(m[2]*(x[2]+x[21])) +
+		float64(m[3]*(x[3]+x[20])) + float64(m[4]*(x[4]+x[19])) + float64(m[5]*(x[5]+x[18])) +
+		float64(m[6]*(x[6]+x[17])) + float64(m[7]*(x[7]+x[16])) + float64(m[8]*(x[8]+x[15])) +
+		float64(m[9]*(x[9]+x[14])) + float64(m[10]*(x[10]+x[13])) + float64(m[11]*(x[11]+x[12]))
 	return math.Abs(middle)
 }
 
 // sidePeak is the larger magnitude at n + 1/4 and n + 3/4.
 func (h *interpolate) sidePeak(x *window) float64 {
 	e, o := &h.even, &h.odd
-	even := e[0]*(x[0]+x[23]) + e[1]*(x[1]+x[22]) + e[2]*(x[2]+x[21]) +
-		e[3]*(x[3]+x[20]) + e[4]*(x[4]+x[19]) + e[5]*(x[5]+x[18]) +
-		e[6]*(x[6]+x[17]) + e[7]*(x[7]+x[16]) + e[8]*(x[8]+x[15]) +
-		e[9]*(x[9]+x[14]) + e[10]*(x[10]+x[13]) + e[11]*(x[11]+x[12])
-	odd := o[0]*(x[0]-x[23]) + o[1]*(x[1]-x[22]) + o[2]*(x[2]-x[21]) +
-		o[3]*(x[3]-x[20]) + o[4]*(x[4]-x[19]) + o[5]*(x[5]-x[18]) +
-		o[6]*(x[6]-x[17]) + o[7]*(x[7]-x[16]) + o[8]*(x[8]-x[15]) +
-		o[9]*(x[9]-x[14]) + o[10]*(x[10]-x[13]) + o[11]*(x[11]-x[12])
+	even := float64(e[0]*(x[0]+x[23])) + float64(e[1]*(x[1]+x[22])) + float64(e[2]*(x[2]+x[21])) +
+		float64(e[3]*(x[3]+x[20])) + float64(e[4]*(x[4]+x[19])) + float64(e[5]*(x[5]+x[18])) +
+		float64(e[6]*(x[6]+x[17])) + float64(e[7]*(x[7]+x[16])) + float64(e[8]*(x[8]+x[15])) +
+		float64(e[9]*(x[9]+x[14])) + float64(e[10]*(x[10]+x[13])) + float64(e[11]*(x[11]+x[12]))
+	odd := float64(o[0]*(x[0]-x[23])) + float64(o[1]*(x[1]-x[22])) + float64(o[2]*(x[2]-x[21])) +
+		float64(o[3]*(x[3]-x[20])) + float64(o[4]*(x[4]-x[19])) + float64(o[5]*(x[5]-x[18])) +
+		float64(o[6]*(x[6]-x[17])) + float64(o[7]*(x[7]-x[16])) + float64(o[8]*(x[8]-x[15])) +
+		float64(o[9]*(x[9]-x[14])) + float64(o[10]*(x[10]-x[13])) + float64(o[11]*(x[11]-x[12]))
 	return math.Abs(even) + math.Abs(odd)
 }
 

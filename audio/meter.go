@@ -17,34 +17,32 @@ import "fmt"
 // Above that the interpolator falls off.
 type Meter struct {
 	channels int
-	size     int         // frames in a block, a multiple of piece
-	lines    [][]float64 // a channel: lineHistory samples, then a block
-	filled   int         // frames in the block
-	sample   float64     // of the blocks before
-	truePeak float64     // of the blocks before, never below sample
+	size     int       // frames in a block, whole chunks
+	line     []float64 // leadFrames, a chunk of history, a block and a chunk of silence
+	filled   int       // frames in the block
+	sample   float64   // of the blocks before
+	truePeak float64   // of the blocks before, never below sample
 	scan     scanner
 }
 
-const (
-	// lineHistory is what a window reaches back, rounded up to whole pieces.
-	lineHistory = interpolatorTaps
-	// meterBlock is the number of samples, over all channels, that are kept
-	// until the interpolator runs.
-	meterBlock = 4096
-)
+// meterBlock is about the number of samples, over all channels, that are kept until
+// the interpolator runs: few enough to stay in the first-level cache.
+const meterBlock = 4096
 
 // NewMeter makes a meter. It panics unless channels is positive.
 func NewMeter(channels int) *Meter {
 	if channels < 1 {
 		panic(fmt.Sprintf("audio: a meter for %d channels", channels))
 	}
-	size := max(piece, meterBlock/channels/piece*piece)
-	longest := lineHistory + size + interpolatorTaps // what TruePeak scans
-	m := &Meter{channels: channels, size: size, lines: make([][]float64, channels), scan: newScanner(longest)}
-	for c := range m.lines {
-		m.lines[c] = make([]float64, lineHistory+size)
-	}
-	return m
+	chunks := max(1, meterBlock/channels/chunkFrames)
+	size := chunks * chunkFrames
+	return &Meter{channels: channels, size: size, scan: newScanner(channels, 1+chunks+1),
+		line: make([]float64, channels*(leadFrames+chunkFrames+size+chunkFrames))}
+}
+
+// from is the line from a frame of the block on, which may be negative.
+func (m *Meter) from(frame int) []float64 {
+	return m.line[(leadFrames+chunkFrames+frame)*m.channels:]
 }
 
 // Add takes in interleaved frames. It panics unless len(frames) is a multiple
@@ -54,62 +52,39 @@ func (m *Meter) Add(frames []float64) {
 		panic(fmt.Sprintf("audio: %d samples are no whole frames of %d channels", len(frames), m.channels))
 	}
 	for len(frames) > 0 {
-		n := min(m.size-m.filled, len(frames)/m.channels)
-		for c, line := range m.lines {
-			pick(line[lineHistory+m.filled:][:n], frames[c:], m.channels)
-		}
-		frames = frames[n*m.channels:]
-		if m.filled += n; m.filled == m.size {
+		room := m.from(m.filled)[:(m.size-m.filled)*m.channels]
+		n := copy(room, frames)
+		frames = frames[n:]
+		if m.filled += n / m.channels; m.filled == m.size {
 			m.scanBlock()
 		}
 	}
 }
 
-// pick copies every step-th of the samples. Inlined, its index would go through
-// memory.
-//
-//go:noinline
-func pick(dst, src []float64, step int) {
-	if step == 1 {
-		copy(dst, src)
-		return
-	}
-	j := 0
-	for i := range dst {
-		dst[i] = src[j]
-		j += step
-	}
-}
-
+// scanBlock looks at all windows but those that start in the last chunk, which
+// becomes the history of the next block.
 func (m *Meter) scanBlock() {
-	m.sample = m.SamplePeak()
-	m.truePeak = max(m.truePeak, m.sample)
-	for _, line := range m.lines {
-		m.truePeak = m.scan.peak(line, m.truePeak)
-		copy(line, line[m.size:])
-	}
+	chunks := 1 + m.size/chunkFrames
+	m.scan.measure(m.line, chunks)
+	m.sample = max(m.sample, m.scan.largest(chunks))
+	m.truePeak = m.scan.peak(m.line, chunks, max(m.truePeak, m.sample))
+	m.scan.keep(chunks)
+	copy(m.line[:(leadFrames+chunkFrames)*m.channels], m.from(m.size-chunkFrames-leadFrames))
 	m.filled = 0
 }
 
 // SamplePeak is the largest magnitude of a sample so far, linear, 1.0 at full
 // scale.
 func (m *Meter) SamplePeak() float64 {
-	peak := m.sample
-	for _, line := range m.lines {
-		peak = max(peak, largest(line[lineHistory:][:m.filled]))
-	}
-	return peak
+	return max(m.sample, largest(m.from(0)[:m.filled*m.channels]))
 }
 
 // TruePeak is the largest magnitude of the waveform so far, linear, as if
 // silence followed. More frames may be added afterwards.
 func (m *Meter) TruePeak() float64 {
-	peak := max(m.truePeak, m.SamplePeak())
-	pending := lineHistory + m.filled
-	tail := make([]float64, (pending+interpolatorTaps+piece-1)/piece*piece)
-	for _, line := range m.lines {
-		copy(tail, line[:pending])
-		peak = m.scan.peak(tail, peak)
-	}
-	return peak
+	chunks := 1 + (m.filled+chunkFrames-1)/chunkFrames + 1
+	silence := (chunks-1)*chunkFrames - m.filled
+	clear(m.from(m.filled)[:silence*m.channels])
+	m.scan.measure(m.line, chunks)
+	return m.scan.peak(m.line, chunks, max(m.truePeak, m.SamplePeak()))
 }

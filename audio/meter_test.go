@@ -6,6 +6,8 @@ import (
 	"slices"
 	"testing"
 
+	"fettle/audio/internal/vector/vectortest"
+
 	"pgregory.net/rapid"
 )
 
@@ -65,7 +67,7 @@ func TestTruePeakTwin(t *testing.T) {
 				x[i] *= math.Pow(0.5, float64(i/16))
 			}
 		}
-		channels := rapid.SampledFrom([]int{1, 2, 3, 8, meterBlock / piece}).Draw(t, "channels") // the last: blocks of 8 frames
+		channels := rapid.SampledFrom([]int{1, 2, 3, 8, meterBlock / chunkFrames}).Draw(t, "channels") // the last: blocks of one chunk
 		spread := make([]float64, len(x)*channels)
 		for i, v := range x {
 			spread[(i+1)*channels-1] = v
@@ -79,7 +81,9 @@ func TestTruePeakTwin(t *testing.T) {
 
 // TestSparingChangesNothing: the same bits as without passing anything over, in
 // several blocks, for channels of different signals, in any split.
-func TestSparingChangesNothing(t *testing.T) {
+func TestSparingChangesNothing(t *testing.T) { vectortest.Each(t, sparingChangesNothing) }
+
+func sparingChangesNothing(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		channels := rapid.SampledFrom([]int{1, 2, 3, 8}).Draw(t, "channels")
 		frames := rapid.SampledFrom([]int{1, 20, 333, meterBlock / channels, 3*meterBlock/channels + 5}).Draw(t, "frames")
@@ -104,7 +108,9 @@ func TestSparingChangesNothing(t *testing.T) {
 
 // TestMeterSplit: the same bits for any split, any order of asking, several
 // channels, and more than one block.
-func TestMeterSplit(t *testing.T) {
+func TestMeterSplit(t *testing.T) { vectortest.Each(t, meterSplit) }
+
+func meterSplit(t *testing.T) {
 	const channels = 3
 	r := rand.New(rand.NewPCG(8, 9))
 	x := make([]float64, channels*3001)
@@ -112,7 +118,7 @@ func TestMeterSplit(t *testing.T) {
 		x[i] = r.NormFloat64() * math.Exp(-math.Abs(float64(i-4000))/800)
 	}
 	want := metered(x, channels)
-	for _, step := range []int{1, 2, 7, 24, 1360, 1361, 3000} { // 1360 is a block
+	for _, step := range []int{1, 2, 7, 24, 1344, 1345, 3000} { // 1344 is a block
 		m := NewMeter(channels)
 		for at := 0; at < len(x); at += step * channels {
 			m.Add(x[at:min(len(x), at+step*channels)])
@@ -127,7 +133,9 @@ func TestMeterSplit(t *testing.T) {
 }
 
 // TestChannelsDoNotMix: several channels give the largest of each alone.
-func TestChannelsDoNotMix(t *testing.T) {
+func TestChannelsDoNotMix(t *testing.T) { vectortest.Each(t, channelsDoNotMix) }
+
+func channelsDoNotMix(t *testing.T) {
 	a, b := sine(500, 0.11, 0.5), sine(500, 0.37, 0.6)
 	both, alone := metered(interleave([][]float64{a, b}), 2), max(metered(a, 1).TruePeak(), metered(b, 1).TruePeak())
 	if both.TruePeak() != alone {
@@ -221,7 +229,9 @@ func TestNorm(t *testing.T) {
 
 // TestNothingIsPassedOver: after a click of 1, samples of less than half of
 // that still count if their signs make the most of them.
-func TestNothingIsPassedOver(t *testing.T) {
+func TestNothingIsPassedOver(t *testing.T) { vectortest.Each(t, nothingIsPassedOver) }
+
+func nothingIsPassedOver(t *testing.T) {
 	const want = 1.001
 	h := designPhase(2. / 4)
 	x := append([]float64{1}, make([]float64, 50)...)
@@ -235,13 +245,16 @@ func TestNothingIsPassedOver(t *testing.T) {
 }
 
 // TestEveryPlaceCounts: two equal samples swing over between them wherever they
-// are, at the ends of blocks too.
-func TestEveryPlaceCounts(t *testing.T) {
+// are, at the ends of chunks and of blocks too.
+func TestEveryPlaceCounts(t *testing.T) { vectortest.Each(t, everyPlaceCounts) }
+
+func everyPlaceCounts(t *testing.T) {
 	want := everyWindow([]float64{1, 1})
-	for _, channels := range []int{1, meterBlock / piece} {
-		block := meterBlock / channels
-		for at := range 3 * block {
-			if at%block > 40 && at%block < block-40 {
+	for _, channels := range []int{1, 3, meterBlock / chunkFrames} {
+		const reach = 2*chunkFrames + 10
+		block := NewMeter(channels).size
+		for at := range 2*block + reach {
+			if at%block > reach && at%block < block-reach {
 				continue
 			}
 			m := metered(make([]float64, at*channels), channels)
@@ -250,7 +263,7 @@ func TestEveryPlaceCounts(t *testing.T) {
 				frame[0] = v
 				m.Add(frame)
 			}
-			m.Add(make([]float64, 2*meterBlock)) // the end is not what is looked at
+			m.Add(make([]float64, 2*block*channels)) // the end is not what is looked at
 			if m.TruePeak() != want {
 				t.Fatalf("%d channels, at frame %d: true peak %v, want %v", channels, at, m.TruePeak(), want)
 			}
@@ -259,7 +272,9 @@ func TestEveryPlaceCounts(t *testing.T) {
 }
 
 // TestTailCounts: the waveform swings over behind the last sample.
-func TestTailCounts(t *testing.T) {
+func TestTailCounts(t *testing.T) { vectortest.Each(t, tailCounts) }
+
+func tailCounts(t *testing.T) {
 	x := []float64{0, 0, 0, 0, 0, 0, 0, 0, 0, 0, 1, 1}
 	m := metered(x, 1)
 	if !(m.TruePeak() > 1.2 && m.TruePeak() < 1.3) { // 4/π for an ideal interpolator

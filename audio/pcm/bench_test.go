@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math/rand/v2"
 	"testing"
+
+	"fettle/audio/internal/vector/vectortest"
 )
 
 // benchSamples is a buffer's worth: what a reader or writer converts at once.
@@ -16,11 +18,13 @@ func reportSamples(b *testing.B) {
 func BenchmarkDecode(b *testing.B) {
 	for _, n := range named {
 		b.Run(n.name, func(b *testing.B) {
-			dst, src := make([]float64, benchSamples), make([]byte, benchSamples*n.e.Bytes)
-			for b.Loop() {
-				Decode(dst, src, n.e)
-			}
-			reportSamples(b)
+			vectortest.EachBenchmark(b, func(b *testing.B) {
+				dst, src := make([]float64, benchSamples), make([]byte, benchSamples*n.e.Bytes)
+				for b.Loop() {
+					Decode(dst, src, n.e)
+				}
+				reportSamples(b)
+			})
 		})
 	}
 }
@@ -31,18 +35,26 @@ func BenchmarkEncode(b *testing.B) {
 			if dithered && n.e.Float {
 				continue
 			}
-			b.Run(fmt.Sprintf("%s/dither=%t", n.name, dithered), func(b *testing.B) { benchEncode(b, n.e, dithered) })
+			b.Run(fmt.Sprintf("%s/dither=%t", n.name, dithered), func(b *testing.B) {
+				vectortest.EachBenchmark(b, func(b *testing.B) { benchEncode(b, n.e, dithered, 0.5) })
+			})
 		}
 	}
 }
 
-func benchEncode(b *testing.B, e Encoding, dithered bool) {
+// BenchmarkOvers encodes what is beyond full scale half of the time: every run of
+// samples is left to plain Go.
+func BenchmarkOvers(b *testing.B) {
+	vectortest.EachBenchmark(b, func(b *testing.B) { benchEncode(b, Encoding{Bytes: 3, Bits: 24}, true, 2) })
+}
+
+func benchEncode(b *testing.B, e Encoding, dithered bool, peak float64) {
 	var dither []*Dither
 	if dithered {
 		dither = []*Dither{NewDither([32]byte{}, "a.wav", 0), NewDither([32]byte{}, "a.wav", 1)}
 	}
 	q := mustQuantiser(b, e, 2, dither)
-	src, dst := noise(benchSamples, 0.5), make([]byte, benchSamples*e.Bytes)
+	src, dst := noise(benchSamples, peak), make([]byte, benchSamples*e.Bytes)
 	for b.Loop() {
 		if err := q.Encode(dst, src); err != nil {
 			b.Fatal(err)

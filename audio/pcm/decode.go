@@ -18,6 +18,11 @@ func Decode(dst []float64, src []byte, e Encoding) {
 	if len(src) != len(dst)*e.Bytes {
 		panic(fmt.Sprintf("pcm: %d bytes for %d samples of %d", len(src), len(dst), e.Bytes))
 	}
+	n := decodeBulk(dst, src, e)
+	decodeGeneric(dst[n:], src[n*e.Bytes:], e)
+}
+
+func decodeGeneric(dst []float64, src []byte, e Encoding) {
 	switch {
 	case e.Float && e.Bytes == 8:
 		decodeFloat64(dst, src)
@@ -47,7 +52,10 @@ func decode16(dst []float64, src []byte) {
 	}
 }
 
-// decode24 puts each sample at the top of 32 bits, which extends its sign.
+// decode24 puts each sample at the top of 32 bits, which extends its sign. Inlined,
+// its index would go through memory.
+//
+//go:noinline
 func decode24(dst []float64, src []byte) {
 	for i := range dst {
 		s := src[3*i : 3*i+3 : 3*i+3]
@@ -79,9 +87,10 @@ func decodeFloat64(dst []float64, src []byte) {
 
 // FirstNonFinite is the index of the first NaN or infinity in x, -1 if none.
 func FirstNonFinite(x []float64) int {
-	for i, v := range x {
+	n := finiteBulk(x)
+	for i, v := range x[n:] {
 		if v-v != 0 { // NaN for both
-			return i
+			return n + i
 		}
 	}
 	return -1

@@ -1,30 +1,75 @@
 package pcm
 
 import (
+	"crypto/sha256"
+	"encoding/binary"
 	"math"
+	"slices"
 	"testing"
+
+	"gonum.org/v1/gonum/dsp/fourier"
+	"pgregory.net/rapid"
 )
 
 // TestGenerator compares with the first outputs of the authors' C program for
 // the state 1, 2, 3, 4, as the tests of other implementations list them
 // (figures from memory).
 func TestGenerator(t *testing.T) {
-	d := Dither{1, 2, 3, 4}
+	g := generator{1, 2, 3, 4}
 	for i, want := range []uint64{41943041, 58720359, 3588806011781223, 3591011842654386, 9228616714210784205,
 		9973669472204895162, 14011001112246962877, 12406186145184390807, 15849039046786891736, 10450023813501588000} {
-		if got := d.next64(); got != want {
+		if got := g.next(); got != want {
 			t.Errorf("output %d: %d, want %d", i, got, want)
 		}
 	}
+}
+
+// TestSeeds: number i is of generator i mod 8, whose seed is the hash that the doc
+// comment describes.
+func TestSeeds(t *testing.T) {
+	chain := sha256.Sum256([]byte("chain"))
+	head := append([]byte("fettle dither 2\x00"), chain[:]...)
+	stream := sha256.Sum256(append(append(head, 3, 0, 0, 0, 0, 0, 0, 0), "deep/a.wav"...))
+	var lanes [8]generator
+	for j := range lanes {
+		seed := sha256.Sum256(append(stream[:], byte(j)))
+		le := binary.LittleEndian
+		lanes[j] = generator{le.Uint64(seed[:]), le.Uint64(seed[8:]), le.Uint64(seed[16:]), le.Uint64(seed[24:])}
+	}
+	got := make([]float64, 1003)
+	NewDither(chain, "deep/a.wav", 3).Fill(got)
+	for i, v := range got {
+		u := lanes[i%8].next()
+		// The halves of u as fractions of 2^32; both are exact.
+		if want := float64(u>>32)/(1<<32) - float64(u&(1<<32-1))/(1<<32); v != want {
+			t.Fatalf("number %d: %v, want %v", i, v, want)
+		}
+	}
+}
+
+// TestFillSplit: any split gives the same numbers.
+func TestFillSplit(t *testing.T) {
+	want := make([]float64, 2000)
+	NewDither([32]byte{3}, "s.wav", 0).Fill(want)
+	rapid.Check(t, func(t *rapid.T) {
+		d := NewDither([32]byte{3}, "s.wav", 0)
+		got := make([]float64, len(want))
+		for rest := got; len(rest) > 0; {
+			n := min(len(rest), rapid.IntRange(0, 3*ditherLanes*rapid.IntRange(1, 9).Draw(t, "scale")).Draw(t, "n"))
+			d.Fill(rest[:n])
+			rest = rest[n:]
+		}
+		if !slices.Equal(got, want) {
+			t.Fatal("other numbers")
+		}
+	})
 }
 
 const drawn = 1 << 18
 
 func draw(d *Dither) []float64 {
 	x := make([]float64, drawn)
-	for i := range x {
-		x[i] = d.Next()
-	}
+	d.Fill(x)
 	return x
 }
 
@@ -62,7 +107,7 @@ func TestDitherIsTriangular(t *testing.T) {
 	if v := product(x, x, 0); !(math.Abs(v-1./6) <= varianceTolerance) {
 		t.Errorf("variance %g, want 1/6, allowed %g", v, varianceTolerance)
 	}
-	for lag := 1; lag <= 4; lag++ {
+	for lag := 1; lag <= 3*ditherLanes; lag++ {
 		if r := product(x, x, lag); !(math.Abs(r) <= productTolerance) {
 			t.Errorf("correlation at lag %d: %g, allowed %g", lag, r, productTolerance)
 		}
@@ -93,6 +138,29 @@ func checkHistogram(t *testing.T, x []float64) {
 	}
 }
 
+// TestDitherIsWhite: in each of 32 bands of 4096 bins, the mean of the periodogram
+// is the variance. A bin of it is the variance times an exponential number of mean
+// and standard deviation 1, nearly independent of the others, so five standard
+// errors of a band are 5/√4096 = 8 %. That the numbers are not Gaussian makes the
+// sum over all bins vary less, not more: their excess kurtosis is -0.6.
+func TestDitherIsWhite(t *testing.T) {
+	const bands, bins = 32, drawn / 2 / 32
+	tolerance := 5 / math.Sqrt(bins)
+	spectrum := fourier.NewFFT(drawn).Coefficients(nil, draw(NewDither([32]byte{1, 2, 3}, "talk/one.wav", 1)))
+	worst := 0.
+	for b := range bands {
+		power := 0.
+		for _, c := range spectrum[1+b*bins : 1+(b+1)*bins] {
+			power += (real(c)*real(c) + imag(c)*imag(c)) / drawn
+		}
+		off := power/bins/(1./6) - 1
+		if worst = max(worst, math.Abs(off)); !(math.Abs(off) <= tolerance) {
+			t.Errorf("band %d: off by %.1f %%, allowed %.1f", b, 100*off, 100*tolerance)
+		}
+	}
+	t.Logf("flat within %.1f %%, allowed %.1f", 100*worst, 100*tolerance)
+}
+
 func TestDitherStreams(t *testing.T) {
 	base := draw(NewDither([32]byte{9}, "a.wav", 0))
 	for name, d := range map[string]*Dither{
@@ -100,8 +168,13 @@ func TestDitherStreams(t *testing.T) {
 		"path":    NewDither([32]byte{9}, "b.wav", 0),
 		"chain":   NewDither([32]byte{8}, "a.wav", 0),
 	} {
-		if r := product(base, draw(d), 0); !(math.Abs(r) <= productTolerance) {
-			t.Errorf("another %s: correlation %g, allowed %g", name, r, productTolerance)
+		other := draw(d)
+		for lag := range 2 * ditherLanes {
+			for _, r := range []float64{product(base, other, lag), product(other, base, lag)} {
+				if !(math.Abs(r) <= productTolerance) {
+					t.Errorf("another %s: correlation %g at lag %d, allowed %g", name, r, lag, productTolerance)
+				}
+			}
 		}
 	}
 	for i, v := range draw(NewDither([32]byte{9}, "a.wav", 0)) {

@@ -19,4 +19,11 @@
 // "Quantization and Dither: A Theoretical Survey", J. Audio Eng. Soc. 40(5)).
 // It costs 4.8 dB of noise against no dither, and silence does not stay digital
 // silence.
+//
+// # Kernels
+//
+// Where the processor has AVX2, samples are converted and dither is drawn eight at
+// a time, by assembly that the program in ../_asm writes: run go generate after
+// changing it. Plain Go does the rest: the ends, samples near or beyond full scale,
+// other processors, and everything with the build tag purego. The bits are the same.
 package pcm

@@ -3,10 +3,12 @@ package pcm
 import (
 	"fmt"
 	"math"
+
+	"fettle/audio/internal/vector"
 )
 
-// blockSamples is how many samples are rounded before they are packed: few
-// enough that the codes stay in the first-level cache.
+// blockSamples is how many samples are rounded at once: few enough that they, their
+// dither and their codes stay in the first-level cache.
 const blockSamples = 2048
 
 // Quantiser turns interleaved float64 samples into bytes, remembers where a
@@ -15,8 +17,16 @@ type Quantiser struct {
 	encoding Encoding
 	channels int
 	dither   []*Dither // one a channel, or none at all
-	codes    []int32
-	frame    int64 // frames encoded so far
+	dithered bool      // some channel is
+	scale    float64   // LSB in full scale
+	safe     float64   // LSB, see setScale
+	frame    int64     // frames encoded so far
+
+	// Of a block: the dither of every channel, 0 where there is none, the same
+	// interleaved, and codes.
+	drawn [][]float64
+	noise []float64
+	codes []int32
 
 	overs     int64
 	overPeak  float64
@@ -24,22 +34,6 @@ type Quantiser struct {
 	headroom  float64 // largest ratio of a sample to what its channel can hold
 	nonFinite place
 	badValue  float64
-}
-
-// place is a sample of a stream; order is by frame, then channel.
-type place struct {
-	set     bool
-	frame   int64
-	channel int
-}
-
-// first keeps the earlier of two places and tells whether that is the new one.
-func (p *place) first(frame int64, channel int) bool {
-	if p.set && (p.frame < frame || p.frame == frame && p.channel < channel) {
-		return false
-	}
-	*p = place{true, frame, channel}
-	return true
 }
 
 // NewQuantiser makes a quantiser for one stream. dither is nil for none, or has
@@ -54,13 +48,40 @@ func NewQuantiser(e Encoding, channels int, dither []*Dither) (*Quantiser, error
 	if dither != nil && len(dither) != channels {
 		return nil, fmt.Errorf("dither for %d channels does not fit %d", len(dither), channels)
 	}
+	q := &Quantiser{encoding: e, channels: channels, dither: dither}
 	for _, d := range dither {
-		if d != nil && e.Float {
-			return nil, fmt.Errorf("%v takes no dither; dither only PCM", e)
-		}
+		q.dithered = q.dithered || d != nil
 	}
-	frames := max(1, blockSamples/channels)
-	return &Quantiser{encoding: e, channels: channels, dither: dither, codes: make([]int32, frames*channels)}, nil
+	if q.dithered && e.Float {
+		return nil, fmt.Errorf("%v takes no dither; dither only PCM", e)
+	}
+	q.setScale()
+	q.allocate(max(1, blockSamples/channels))
+	return q, nil
+}
+
+// ditherPeak bounds the dither, in LSB.
+const ditherPeak = 1
+
+// setScale sets scale, a power of two: scaling is exact, and so a machine that
+// fuses it with the addition of dither gets the same sum. safe is the largest
+// magnitude that fits any channel whatever its sign and its dither, with half an
+// LSB to spare for rounding.
+func (q *Quantiser) setScale() {
+	q.scale = math.Ldexp(1, q.encoding.Bits-1)
+	q.safe = q.scale - 1
+	if q.dithered {
+		q.safe -= ditherPeak
+	}
+}
+
+// allocate makes what blocks of so many frames need.
+func (q *Quantiser) allocate(frames int) {
+	q.codes, q.noise = make([]int32, frames*q.channels), make([]float64, frames*q.channels)
+	q.drawn = make([][]float64, len(q.dither))
+	for c := range q.drawn {
+		q.drawn[c] = make([]float64, frames)
+	}
 }
 
 // Encode converts len(src)/channels whole frames and appends them to the
@@ -92,136 +113,79 @@ func (q *Quantiser) Encode(dst []byte, src []float64) error {
 	return nil
 }
 
+// loudRun is how many samples are rounded in Go where the assembly meets a loud
+// one: others are likely to follow.
+const loudRun = 16
+
 func (q *Quantiser) encodeBlock(dst []byte, src []float64) {
+	if q.dithered {
+		q.drawNoise(len(src) / q.channels)
+	}
+	for at := 0; at < len(src); {
+		at += q.encodeBulk(dst, src, at)
+		run := len(src) - at
+		if vector.Used() != vector.None {
+			run = min(run, loudRun)
+		}
+		q.encodeGeneric(dst, src, at, at+run)
+		at += run
+	}
+}
+
+// drawNoise draws the dither of some frames.
+func (q *Quantiser) drawNoise(frames int) {
+	for c, d := range q.dither {
+		if d != nil {
+			d.Fill(q.drawn[c][:frames])
+		}
+	}
+	interleave(q.noise[:frames*q.channels], q.drawn)
+}
+
+// encodeBulk encodes samples of src from the at-th on with what assembly there is,
+// until one is loud, or not finite, or too few are left. It returns how many.
+func (q *Quantiser) encodeBulk(dst []byte, src []float64, at int) int {
+	dst, src = dst[at*q.encoding.Bytes:], src[at:]
+	if q.encoding.Float {
+		return floatBulk(dst, src, q.encoding)
+	}
+	return roundBulk(dst, src, q.noise[at:], q.encoding, q.scale, q.safe)
+}
+
+// encodeGeneric encodes the samples of src from the first-th up to end.
+func (q *Quantiser) encodeGeneric(dst []byte, src []float64, first, end int) {
+	dst, src = dst[first*q.encoding.Bytes:end*q.encoding.Bytes], src[first:end]
 	switch {
 	case q.encoding.Float && q.encoding.Bytes == 8:
-		q.encodeFloat64(dst, src)
+		q.encodeFloat64(dst, src, first)
 	case q.encoding.Float:
-		q.encodeFloat32(dst, src)
+		q.encodeFloat32(dst, src, first)
 	default:
-		q.round(src)
+		q.round(src, first)
 		pack(dst, q.codes[:len(src)], q.encoding)
 	}
 }
 
-// round fills codes. Channels without dither need no separate passes.
-func (q *Quantiser) round(src []float64) {
-	if q.dither == nil {
-		q.roundPlain(src, 0, 1)
-		return
-	}
-	for c, d := range q.dither {
-		if d == nil {
-			q.roundPlain(src, c, q.channels)
-		} else {
-			q.roundDithered(src, c, d)
+// round fills codes with those of src, whose first sample is the at-th of a block.
+func (q *Quantiser) round(src []float64, at int) {
+	for i := 0; i < len(src); i++ {
+		i += roundQuiet(q.codes[i:], src[i:], q.noise[at+i:], q.scale, q.safe)
+		if i < len(src) {
+			q.codes[i] = q.roundLoud(at+i, src[i], q.noise[at+i])
 		}
 	}
 }
 
-// roundPlain rounds every stride-th sample of src from the first-th on.
-func (q *Quantiser) roundPlain(src []float64, first, stride int) {
-	scale, safe := q.scale(), q.safe(0)
-	codes := q.codes[:len(src)]
-	for i := first; i < len(src); i += stride {
-		y := src[i] * scale
+// roundQuiet rounds samples until one is loud, and returns how many. A sum from
+// 2^52 to 2^53 is a whole number, rounded as wanted, that stands in its lower bits.
+func roundQuiet(codes []int32, src, noise []float64, scale, safe float64) int {
+	codes, noise = codes[:len(src)], noise[:len(src)]
+	for i, x := range src {
+		y := x * scale
 		if !(math.Abs(y) <= safe) {
-			codes[i] = q.roundLoud(i, src[i], 0)
-			continue
+			return i
 		}
-		codes[i] = int32(math.RoundToEven(y))
+		codes[i] = int32(math.Float64bits(y + noise[i] + 0x1.8p52))
 	}
-}
-
-func (q *Quantiser) roundDithered(src []float64, channel int, d *Dither) {
-	scale, safe := q.scale(), q.safe(ditherPeak)
-	codes, state := q.codes[:len(src)], *d
-	for i := channel; i < len(src); i += q.channels {
-		y, noise := src[i]*scale, state.Next()
-		if !(math.Abs(y) <= safe) {
-			codes[i] = q.roundLoud(i, src[i], noise)
-			continue
-		}
-		codes[i] = int32(math.RoundToEven(y + noise))
-	}
-	*d = state
-}
-
-// ditherPeak bounds the dither, in LSB.
-const ditherPeak = 1
-
-// scale is the number of LSB in full scale, a power of two: scaling is exact,
-// and so a machine that fuses it with the addition of dither gets the same sum.
-func (q *Quantiser) scale() float64 { return math.Ldexp(1, q.encoding.Bits-1) }
-
-// safe is the largest magnitude, in LSB, that fits with dither of the given
-// peak and with half an LSB to spare for rounding, whatever its sign.
-func (q *Quantiser) safe(dither float64) float64 { return q.scale() - 1 - dither }
-
-// roundLoud rounds the i-th sample of a block, x, that is near full scale or
-// beyond, or no number at all.
-func (q *Quantiser) roundLoud(i int, x, noise float64) int32 {
-	frame, channel := q.frame+int64(i/q.channels), i%q.channels
-	scale, most := q.scale(), q.safe(0)
-	y := x * scale
-	if y-y != 0 {
-		q.refuse(frame, channel, x)
-		return 0
-	}
-	if q.dither != nil && q.dither[channel] != nil {
-		most = q.safe(ditherPeak)
-	}
-	if y < 0 {
-		most++ // there is one more code below 0 than above
-	}
-	q.headroom = max(q.headroom, math.Abs(y)/most)
-	code := math.RoundToEven(y + noise)
-	fit := min(max(code, -scale), scale-1)
-	if code != fit {
-		q.overs++
-		q.overAt.first(frame, channel)
-		q.overPeak = max(q.overPeak, math.Abs(y)/scale)
-	}
-	return int32(fit)
-}
-
-// refuse notes a sample that cannot be encoded at all.
-func (q *Quantiser) refuse(frame int64, channel int, value float64) {
-	if q.nonFinite.first(frame, channel) {
-		q.badValue = value
-	}
-}
-
-func (q *Quantiser) nonFiniteError() error {
-	at := fmt.Sprintf("frame %d, channel %d", q.nonFinite.frame, q.nonFinite.channel+1)
-	if q.badValue-q.badValue != 0 {
-		return fmt.Errorf("%s: the sample is %v, which no format can hold; check the chain and the input for values beyond all bounds", at, q.badValue)
-	}
-	return fmt.Errorf("%s: the sample is %g times full scale, too much for %v; check the gains of the chain, or use float64", at, q.badValue, q.encoding)
-}
-
-// Overs is the number of samples so far whose code was beyond the range.
-func (q *Quantiser) Overs() int64 { return q.overs }
-
-// OverPeak is the largest magnitude, before dither, among the overs; 0 if none.
-func (q *Quantiser) OverPeak() float64 { return q.overPeak }
-
-// FirstOver is the place of the first over, both counted from 0; -1, -1 if none.
-func (q *Quantiser) FirstOver() (frame int64, channel int) {
-	if !q.overAt.set {
-		return -1, -1
-	}
-	return q.overAt.frame, q.overAt.channel
-}
-
-// HeadroomDB is the attenuation in dB, not rounded, after which the same stream
-// has no overs; 0 if it has none as it is. It brings the loudest sample to the
-// last code on its side of 0, or, in a channel with dither, one LSB short of
-// it, so that dither of any value fits. The half LSB that rounding would still
-// forgive is left as allowance for the arithmetic of the gain.
-func (q *Quantiser) HeadroomDB() float64 {
-	if q.overs == 0 {
-		return 0
-	}
-	return 20 * math.Log10(q.headroom)
+	return len(src)
 }
