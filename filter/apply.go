@@ -143,10 +143,10 @@ func (p *Path) kernel(channels int, run stream.Run) stream.Kernel {
 		ks = append(ks, p.fir.Kernel(channels, run))
 	}
 	if len(p.System.Sections) > 0 {
-		ks = append(ks, stream.NewCascade(p.System.Sections, channels))
+		ks = append(ks, stream.NewCascade(p.System.Sections, channels, run.Kernel))
 	}
 	if len(p.System.Zero) > 0 {
-		ks = append(ks, stream.NewForwardBackward(p.System.Zero, channels))
+		ks = append(ks, stream.NewForwardBackward(p.System.Zero, channels, run.Kernel))
 	}
 	return stream.Series(ks...)
 }

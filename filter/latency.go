@@ -6,6 +6,7 @@ import (
 
 	"fettle/filter/response"
 	"fettle/filter/stream"
+	"fettle/filter/stream/machine"
 )
 
 // Latency is what a path delays and what Apply takes away, in samples. Delay
@@ -94,7 +95,9 @@ func (p *Path) impulse() (h []float64, origin int) {
 
 func run(sections []response.Section, h []float64) {
 	if len(sections) > 0 {
-		stream.NewCascade(sections, 1).Process([][]float64{h}, [][]float64{h})
+		// The portable kernel: what is rounded to whole samples must not depend on
+		// the machine.
+		stream.NewCascade(sections, 1, machine.Portable).Process([][]float64{h}, [][]float64{h})
 	}
 }
 
@@ -103,7 +106,7 @@ func tail(sections []response.Section) int {
 	if len(sections) == 0 {
 		return 0
 	}
-	return stream.NewCascade(sections, 1).Tail()
+	return stream.NewCascade(sections, 1, machine.Portable).Tail()
 }
 
 // wait is by how many samples a path is delayed to keep the latest company.

@@ -2,10 +2,8 @@ package stream
 
 import (
 	"fmt"
-	"slices"
 	"testing"
 
-	"fettle/filter/response"
 	"fettle/filter/stream/machine"
 
 	"gonum.org/v1/gonum/dsp/fourier"
@@ -35,17 +33,6 @@ func BenchmarkFIR(b *testing.B) {
 					benchKernel(b, NewFIR(noise(2, taps)).Kernel(channels, Run{-1, kernel, 1}), channels)
 				})
 			}
-		}
-	}
-}
-
-func BenchmarkCascade(b *testing.B) {
-	for _, count := range []int{1, 4} {
-		for _, channels := range []int{1, 2} {
-			b.Run(fmt.Sprintf("sections=%d/channels=%d", count, channels), func(b *testing.B) {
-				sections := slices.Repeat([]response.Section{highpass(70./48000, 0.7)}, count)
-				benchKernel(b, NewCascade(sections, channels), channels)
-			})
 		}
 	}
 }

@@ -1,53 +1,37 @@
 package stream
 
-import "fettle/filter/response"
+import (
+	"fettle/filter/response"
+	"fettle/filter/stream/abreast"
+	"fettle/filter/stream/machine"
+)
 
-// Cascade is a [Kernel] of second-order sections one after another, in
-// transposed direct form II:
+// Cascade is a [Kernel] of second-order sections one after another; package
+// abreast says how they are computed. Its Delay is 0.
 //
-//	y[n]  = B0 x[n] + s1[n-1]
-//	s1[n] = B1 x[n] - A1 y[n] + s2[n-1]
-//	s2[n] = B2 x[n] - A2 y[n]
-//
-// (Oppenheim and Schafer, "Discrete-Time Signal Processing", 3rd ed., section
-// 6.3). Its Delay is 0.
+// States that have fallen below 1e-30 are set to zero every 512 samples, counted
+// from Reset, so that silence costs no more than sound.
 type Cascade struct {
-	sections []response.Section
-	states   [][]state // a channel, a section
-	tail     int
-	position int // samples into the current block
+	sections       *abreast.Cascade
+	channels, tail int
 }
 
-// state is what a section remembers of one channel.
-type state struct{ s1, s2 float64 }
+// cascadeBlock is after how many samples a cascade sets quiet states to zero.
+const cascadeBlock = abreast.Period
 
-// cascadeBlock is how many samples go through one section before the next
-// takes them; 2 KiB a channel stay in the first-level cache. At the end of
-// each block, counted from Reset, states below quietest are set to zero.
-const cascadeBlock = 256
-
-// quietest is -600 dB full scale. Left alone, a state that decays in silence
-// ends among the denormal numbers, on which processors are many times slower;
-// from here no stable section gets there within a block unless its poles
-// are so small that it leaves them within a few samples.
-const quietest = 1e-30
-
-// NewCascade returns a kernel for one stream of so many channels, one or more.
-// The sections are copied; none at all give a copy of the input. It panics if
-// there are no channels, or if a section is not stable, that is if a pole is
-// on or outside the unit circle, or a coefficient is not finite.
-func NewCascade(sections []response.Section, channels int) *Cascade {
+// NewCascade returns a kernel for one stream of so many channels, one or more,
+// computed by the given machine kernel. No sections at all give a copy of the
+// input. It panics if there are no channels, if the machine kernel does not run
+// here, or if a section is not stable, that is if a pole is on or outside the unit
+// circle, or a coefficient is not finite.
+func NewCascade(sections []response.Section, channels int, kernel machine.Kernel) *Cascade {
 	checkChannels(channels)
 	checkStable(sections)
-	k := &Cascade{
-		sections: append([]response.Section(nil), sections...),
-		states:   make([][]state, channels),
+	return &Cascade{
+		sections: abreast.New(sections, channels, kernel),
+		channels: channels,
 		tail:     ringing(sections),
 	}
-	for c := range k.states {
-		k.states[c] = make([]state, len(sections))
-	}
-	return k
 }
 
 // Delay returns 0.
@@ -59,52 +43,11 @@ func (k *Cascade) Delay() int { return 0 }
 func (k *Cascade) Tail() int { return k.tail }
 
 // Reset forgets all past input.
-func (k *Cascade) Reset() {
-	for _, states := range k.states {
-		clear(states)
-	}
-	k.position = 0
-}
+func (k *Cascade) Reset() { k.sections.Reset() }
 
 // Process filters the next samples; see [Kernel]. It panics unless dst and
 // src hold one slice a channel, all of one length.
 func (k *Cascade) Process(dst, src [][]float64) {
-	frames := checkShape(dst, src, len(k.states))
-	copyPlanes(dst, src)
-	for from := 0; from < frames; {
-		to := min(frames, from+cascadeBlock-k.position)
-		k.filter(dst, from, to)
-		k.position += to - from
-		from = to
-		if k.position == cascadeBlock {
-			k.flush()
-			k.position = 0
-		}
-	}
-}
-
-// filter filters frames from to to in place, two channels abreast.
-func (k *Cascade) filter(x [][]float64, from, to int) {
-	c := 0
-	for ; c+1 < len(x); c += 2 {
-		filterPair(x[c][from:to], x[c+1][from:to], k.sections, k.states[c], k.states[c+1])
-	}
-	if c < len(x) {
-		filterOne(x[c][from:to], k.sections, k.states[c])
-	}
-}
-
-func (k *Cascade) flush() {
-	for _, states := range k.states {
-		for i, s := range states {
-			states[i] = state{audible(s.s1), audible(s.s2)}
-		}
-	}
-}
-
-func audible(s float64) float64 {
-	if -quietest < s && s < quietest {
-		return 0
-	}
-	return s
+	checkShape(dst, src, k.channels)
+	k.sections.Process(dst, src)
 }

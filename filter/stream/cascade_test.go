@@ -1,13 +1,28 @@
 package stream
 
 import (
+	"fmt"
 	"math"
 	"math/big"
 	"slices"
 	"testing"
 
 	"fettle/filter/response"
+	"fettle/filter/stream/machine"
 )
+
+type newCascade func(sections []response.Section, channels int) *Cascade
+
+// onEachMachineKernel runs a test for every kernel that runs here.
+func onEachMachineKernel(t *testing.T, test func(t *testing.T, cascade newCascade)) {
+	for _, kernel := range machine.Available() {
+		t.Run(kernel.String(), func(t *testing.T) {
+			test(t, func(sections []response.Section, channels int) *Cascade {
+				return NewCascade(sections, channels, kernel)
+			})
+		})
+	}
+}
 
 // precision of the reference, in bits.
 const precision = 200
@@ -58,7 +73,7 @@ func cascadeError(sections []response.Section) func(peak float64) float64 {
 	noise := 0.0
 	for i, s := range sections {
 		noisy := append([]response.Section{{B0: 1, A1: s.A1, A2: s.A2}}, sections[i+1:]...)
-		k := NewCascade(noisy, 1)
+		k := NewCascade(noisy, 1, machine.Best())
 		noise += norm(run(k, impulse(0, k.Tail()+1)))
 	}
 	return func(peak float64) float64 { return 8 * eps * noise * peak }
@@ -72,56 +87,73 @@ func TestCascadeAgainstExactRecursion(t *testing.T) {
 		"first order":                         {{B0: 0.1, A1: -0.9}},
 	} {
 		x := noise(7, 4000)
-		got := run(NewCascade(sections, 1), x)
 		want, tol := slowCascade(sections, x), cascadeError(sections)(peak(x))
-		compare(t, name, got, want, tol)
-		t.Logf("%s: off by %.3g, allowed %.3g", name, worst(got, want), tol)
+		onEachMachineKernel(t, func(t *testing.T, cascade newCascade) {
+			got := run(cascade(sections, 1), x)
+			compare(t, name, got, want, tol)
+			t.Logf("%s: off by %.3g, allowed %.3g", name, worst(got, want), tol)
+		})
 	}
+}
+
+func TestCascadeKernels(t *testing.T) {
+	sections := []response.Section{
+		lowpass(0.2, 1), allpass(0.05, 0.7), bandpass(0.1, 0.5), highpass(0.01, 0.5), notch(0.1, 5),
+	}
+	onEachMachineKernel(t, func(t *testing.T, cascade newCascade) {
+		testKernel(t, func(channels int) Kernel { return cascade(sections, channels) },
+			func(x []float64) []float64 { return slowCascade(sections, x) }, cascadeError(sections))
+	})
 }
 
 func TestCascadeIdentityIsExact(t *testing.T) {
 	x := noise(8, 1000)
-	compare(t, "three identities", run(NewCascade(slices.Repeat([]response.Section{{B0: 1}}, 3), 1), x), x, 0)
+	onEachMachineKernel(t, func(t *testing.T, cascade newCascade) {
+		for count := range 4 {
+			compare(t, fmt.Sprintf("%d identities", count), run(cascade(slices.Repeat([]response.Section{{B0: 1}}, count), 1), x), x, 0)
+		}
+	})
 }
 
 // TestCascadeFallsSilent: a 70 Hz high-pass at 48 kHz decays by a factor e in
 // 1/(2 pi 70 0.7) s = 156 samples, so from 1 to 1e-30 in 10800.
 func TestCascadeFallsSilent(t *testing.T) {
-	k := NewCascade([]response.Section{highpass(70./48000, 0.7), highpass(70./48000, 0.7)}, 2)
-	x := [][]float64{impulse(0, 16384), impulse(0, 16384)}
-	k.Process(x, x)
-	if x[0][9000] == 0 {
-		t.Error("silent before its time, at sample 9000")
-	}
-	compare(t, "the end", x[1][16000:], make([]float64, 384), 0)
-	for _, states := range k.states {
-		for _, s := range states {
-			if s != (state{}) {
-				t.Errorf("state %v is left", s)
-			}
+	onEachMachineKernel(t, func(t *testing.T, cascade newCascade) {
+		k := cascade([]response.Section{highpass(70./48000, 0.7), highpass(70./48000, 0.7)}, 2)
+		x := [][]float64{impulse(0, 16384), impulse(0, 16384)}
+		k.Process(x, x)
+		if x[0][9000] == 0 {
+			t.Error("silent before its time, at sample 9000")
 		}
-	}
+		compare(t, "the end", x[1][16000:], make([]float64, 384), 0)
+	})
 }
+
+// quiet is below what states are set to zero at.
+const quiet = 1e-30
 
 // TestCascadeFlushesByItsOwnBlocks: with input so quiet that states are set to
 // zero all the time, the output shows when that happens, and that must depend
 // neither on the calls nor on what was there before Reset.
 func TestCascadeFlushesByItsOwnBlocks(t *testing.T) {
-	k := NewCascade([]response.Section{lowpass(0.01, 0.7), lowpass(0.02, 0.7)}, 3)
+	sections := []response.Section{lowpass(0.01, 0.7), lowpass(0.02, 0.7)}
 	x := noisePlanes(9, 3, 10*cascadeBlock+5)
 	for _, v := range x {
 		for i := range v {
-			v[i] *= quietest
+			v[i] *= quiet
 		}
 	}
-	y := planes(3, len(x[0]))
-	k.Process(y, x)
-	for c := range y {
-		if want := slowCascade(k.sections, x[c]); !(worst(y[c], want) > 1e-3*quietest) {
-			t.Error("the input is too loud for this test: nothing was set to zero")
+	onEachMachineKernel(t, func(t *testing.T, cascade newCascade) {
+		k := cascade(sections, 3)
+		y := planes(3, len(x[0]))
+		k.Process(y, x)
+		for c := range y {
+			if want := slowCascade(sections, x[c]); !(worst(y[c], want) > 1e-3*quiet) {
+				t.Error("the input is too loud for this test: nothing was set to zero")
+			}
 		}
-	}
-	testSplits(t, k, x, y)
+		testSplits(t, k, x, y)
+	})
 }
 
 func TestCascadeTail(t *testing.T) {
@@ -151,7 +183,7 @@ func TestCascadeTail(t *testing.T) {
 // times that: most are within 1.5, but many zeros close to many poles take
 // more off the response than off the largest gain on a circle.
 func checkTail(t *testing.T, name string, sections []response.Section) {
-	k := NewCascade(sections, 1)
+	k := NewCascade(sections, 1, machine.Best())
 	h := run(k, impulse(0, 2*k.Tail()+10))
 	level, last := 1e-15*peak(h), 0
 	for n, v := range h {
@@ -175,7 +207,7 @@ func TestCascadeTailWithoutPoles(t *testing.T) {
 		{[]response.Section{{B0: 2, B1: 1}, {B0: 1, B2: 1}}, 3},
 		{[]response.Section{{A1: -0.5}}, 0},
 	} {
-		if got := NewCascade(c.sections, 1).Tail(); got != c.want {
+		if got := NewCascade(c.sections, 1, machine.Best()).Tail(); got != c.want {
 			t.Errorf("%+v: tail %d, want %d", c.sections, got, c.want)
 		}
 	}

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"fettle/filter/response"
+	"fettle/filter/stream/machine"
 )
 
 // ForwardBackward is a [Kernel] that runs a cascade forward and then backward
@@ -35,10 +36,10 @@ const leastChunk = 8192
 
 // NewForwardBackward returns a kernel for one stream of so many channels, one
 // or more. It panics where NewCascade does.
-func NewForwardBackward(sections []response.Section, channels int) *ForwardBackward {
+func NewForwardBackward(sections []response.Section, channels int, kernel machine.Kernel) *ForwardBackward {
 	k := &ForwardBackward{
-		forward:   NewCascade(sections, channels),
-		backward:  NewCascade(sections, channels),
+		forward:   NewCascade(sections, channels, kernel),
+		backward:  NewCascade(sections, channels, kernel),
 		lookAhead: LookAhead(sections),
 	}
 	k.chunk = max(leastChunk, 2*k.lookAhead)
@@ -52,7 +53,7 @@ func NewForwardBackward(sections []response.Section, channels int) *ForwardBackw
 // backward run: the sum of |h| beyond them is below 1e-7 of the greatest gain,
 // so that a signal at full scale loses less than -140 dB of it.
 func LookAhead(sections []response.Section) int {
-	h := response.Impulse(sections, NewCascade(sections, 1).Tail()+1)
+	h := response.Impulse(sections, ringing(sections)+1)
 	total := 0.0
 	for _, v := range h {
 		total += v * v

@@ -46,7 +46,7 @@ func TestKernels(t *testing.T) {
 		{lowpass(0.2, 1), allpass(0.05, 0.7), bandpass(0.1, 0.5)},
 	} {
 		t.Run(fmt.Sprintf("Cascade of %d", len(sections)), func(t *testing.T) {
-			testKernel(t, func(channels int) Kernel { return NewCascade(sections, channels) },
+			testKernel(t, func(channels int) Kernel { return NewCascade(sections, channels, machine.Best()) },
 				func(x []float64) []float64 { return slowCascade(sections, x) }, cascadeError(sections))
 		})
 	}
@@ -84,7 +84,7 @@ func testSeries(t *testing.T) {
 	f, e := NewFIR(h), NewFIR(g)
 	sections := []response.Section{lowpass(0.1, 0.7)}
 	testKernel(t, func(channels int) Kernel {
-		return Series(f.Kernel(channels, Anything()), NewDelay(5, channels), NewCascade(sections, channels), e.Kernel(channels, Anything()))
+		return Series(f.Kernel(channels, Anything()), NewDelay(5, channels), NewCascade(sections, channels, machine.Best()), e.Kernel(channels, Anything()))
 	}, func(x []float64) []float64 {
 		return slowFIR(g, slowCascade(sections, slowDelay(5, slowFIR(h, x))))
 	}, func(peak float64) float64 {

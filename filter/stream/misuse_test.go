@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"fettle/filter/response"
+	"fettle/filter/stream/machine"
 )
 
 func TestMisusePanics(t *testing.T) {
@@ -18,11 +19,11 @@ func TestMisusePanics(t *testing.T) {
 		"FIR, no channels":   {func() { NewFIR([]float64{1}).Kernel(0, Anything()) }, "0 channels"},
 		"delay, no channels": {func() { NewDelay(1, 0) }, "0 channels"},
 		"negative delay":     {func() { NewDelay(-1, 1) }, "-1 samples"},
-		"no cascade channel": {func() { NewCascade(nil, -1) }, "-1 channels"},
-		"pole on the circle": {func() { NewCascade([]response.Section{{B0: 1}, {B0: 1, A1: -1}}, 1) }, "section 2 of 2"},
-		"poles outside":      {func() { NewCascade([]response.Section{{B0: 1, A2: 1.1}}, 1) }, "not stable"},
-		"NaN":                {func() { NewCascade([]response.Section{{B0: math.NaN()}}, 1) }, "not finite"},
-		"infinity":           {func() { NewCascade([]response.Section{{B0: 1, A1: math.Inf(1)}}, 1) }, "not finite"},
+		"no cascade channel": {func() { NewCascade(nil, -1, machine.Best()) }, "-1 channels"},
+		"pole on the circle": {func() { NewCascade([]response.Section{{B0: 1}, {B0: 1, A1: -1}}, 1, machine.Best()) }, "section 2 of 2"},
+		"poles outside":      {func() { NewCascade([]response.Section{{B0: 1, A2: 1.1}}, 1, machine.Best()) }, "not stable"},
+		"NaN":                {func() { NewCascade([]response.Section{{B0: math.NaN()}}, 1, machine.Best()) }, "not finite"},
+		"infinity":           {func() { NewCascade([]response.Section{{B0: 1, A1: math.Inf(1)}}, 1, machine.Best()) }, "not finite"},
 		"channel missing":    {func() { stereo().Process(planes(2, 4), planes(1, 4)) }, "2 slices out and 1 in"},
 		"short output":       {func() { stereo().Process(planes(2, 3), planes(2, 4)) }, "channel 0 has 3 samples out"},
 		"uneven input":       {func() { stereo().Process(planes(2, 4), [][]float64{{1, 2, 3, 4}, {1}}) }, "channel 1"},
@@ -45,9 +46,9 @@ func TestProcessDoesNotAllocate(t *testing.T) {
 	for name, k := range map[string]Kernel{
 		"direct":       NewFIR(noise(30, 9)).Kernel(3, Anything()),
 		"overlap-save": NewFIR(noise(31, 300)).Kernel(3, Anything()),
-		"cascade":      NewCascade(sections, 3),
+		"cascade":      NewCascade(sections, 3, machine.Best()),
 		"delay":        NewDelay(100, 3),
-		"series":       Series(NewDelay(100, 3), NewCascade(sections, 3)),
+		"series":       Series(NewDelay(100, 3), NewCascade(sections, 3, machine.Best())),
 	} {
 		x := noisePlanes(32, 3, 5000)
 		if got := testing.AllocsPerRun(10, func() { k.Process(x, x) }); got != 0 {
