@@ -63,18 +63,6 @@ func TestPlain(t *testing.T) {
 	}
 }
 
-// canceller is standard output that interrupts the program as soon as
-// something is printed.
-type canceller struct {
-	strings.Builder
-	cancel func()
-}
-
-func (c *canceller) Write(p []byte) (int, error) {
-	c.cancel()
-	return c.Builder.Write(p)
-}
-
 // TestInterruptedBeforeTheFirst: nothing is written but an empty record, and
 // the next run does it all.
 func TestInterruptedBeforeTheFirst(t *testing.T) {
@@ -82,10 +70,9 @@ func TestInterruptedBeforeTheFirst(t *testing.T) {
 	b.plain("in/a.wav")
 	b.plain("in/deep/b.wav")
 	ctx, cancel := context.WithCancel(context.Background())
-	var stderr strings.Builder
-	args := []string{"fettle", "render", "--chain", b.chain(filterChain), "--out", b.Out, b.path("in")}
-	status := run(ctx, args, &canceller{cancel: cancel}, &stderr)
-	outcome{status, "", stderr.String()}.must(t, exitInterrupted, "interrupted", "the same command goes on")
+	cancel()
+	got := fettleIn(ctx, "render", "--chain", b.chain(filterChain), "--out", b.Out, b.path("in"))
+	got.must(t, exitInterrupted, "interrupted", "the same command goes on")
 	b.mustHold()
 	b.render(filterChain, b.path("in")).must(t, exitDone)
 	b.mustHold("a.wav", "deep/b.wav")

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"sync"
 
 	"fettle/cmd/fettle/internal/batch"
 
@@ -13,30 +14,38 @@ import (
 	"golang.org/x/term"
 )
 
-// progress shows a bar on a terminal: bytes read, files done, time left. In a
-// pipe it shows nothing.
+// progress counts bytes read and files done. From start on it shows a bar for
+// each on a terminal, and the time left; in a pipe it shows nothing.
 type progress struct {
-	bars  *mpb.Progress
-	bytes *mpb.Bar
-	files *mpb.Bar
+	plan         *batch.Plan
+	mu           sync.Mutex
+	read, done   int64 // until the bars are there
+	bars         *mpb.Progress
+	bytes, files *mpb.Bar
 }
 
-func newProgress(ctx context.Context, w io.Writer, plan *batch.Plan) *progress {
-	bytes, files := toDo(plan)
+func newProgress(plan *batch.Plan) *progress { return &progress{plan: plan} }
+
+// start shows the bars, at what was counted so far.
+func (p *progress) start(ctx context.Context, w io.Writer) {
+	bytes, files := toDo(p.plan)
 	f, ok := w.(*os.File)
 	if files == 0 || !ok || !term.IsTerminal(int(f.Fd())) {
-		return &progress{}
+		return
 	}
 	// A terminal prints ^C where the cursor stands; the bars count on column 0.
 	context.AfterFunc(ctx, func() { fmt.Fprint(f, "\r") })
+	p.mu.Lock()
+	defer p.mu.Unlock()
 	// With this width the longest line still fits 80 columns.
-	p := &progress{bars: mpb.New(mpb.WithOutput(f), mpb.WithWidth(36))}
+	p.bars = mpb.New(mpb.WithOutput(f), mpb.WithWidth(36))
 	p.bytes = p.bars.AddBar(bytes,
 		mpb.PrependDecorators(decor.CountersKibiByte("% .1f of % .1f", decor.WCSyncWidth)),
 		mpb.AppendDecorators(decor.AverageETA(decor.ET_STYLE_MMSS), decor.Name(" left")))
 	p.files = p.bars.AddBar(files,
 		mpb.PrependDecorators(decor.CountersNoUnit("%d of %d recordings", decor.WCSyncWidth)))
-	return p
+	p.bytes.IncrInt64(p.read)
+	p.files.IncrInt64(p.done)
 }
 
 func toDo(plan *batch.Plan) (bytes, files int64) {
@@ -50,13 +59,17 @@ func toDo(plan *batch.Plan) (bytes, files int64) {
 }
 
 func (p *progress) Bytes(n int64) {
-	if p.bars != nil {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if p.read += n; p.bars != nil {
 		p.bytes.IncrInt64(n)
 	}
 }
 
 func (p *progress) Finished(*batch.Job, error) {
-	if p.bars != nil {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if p.done++; p.bars != nil {
 		p.files.Increment()
 	}
 }

@@ -23,7 +23,7 @@ const largestCalibrated = 1 << 21
 // TestCalibrate writes costs.go. It is a program rather than a test, and needs
 // all kernels and a quiet machine:
 //
-//	GOMAXPROCS=1 go test -run TestCalibrate -calibrate ./filter/stream
+//	GOMAXPROCS=1 go test -run TestCalibrate ./filter/stream -calibrate
 func TestCalibrate(t *testing.T) {
 	if !*calibrate {
 		t.Skip("measures only with -calibrate")

@@ -4,55 +4,55 @@ package stream
 
 // Measured with go1.26.8 on linux/amd64; the best of 15 rounds.
 
-var directCosts = [2]float64{0.33, 0.17}
+var directCosts = [2]float64{0.28, 0.17}
 
 var portableCosts = blockCosts{
-	1.79e+03, // 256 points
-	4.22e+03, // 512 points
-	8.59e+03, // 1024 points
-	2e+04,    // 2048 points
-	4.09e+04, // 4096 points
-	9.18e+04, // 8192 points
-	1.88e+05, // 16384 points
-	4.1e+05,  // 32768 points
-	8.24e+05, // 65536 points
-	1.46e+06, // 131072 points
-	3.08e+06, // 262144 points
-	7.23e+06, // 524288 points
-	1.51e+07, // 1048576 points
-	3.25e+07, // 2097152 points
+	1.78e+03, // 256 points
+	4.19e+03, // 512 points
+	8.71e+03, // 1024 points
+	2.05e+04, // 2048 points
+	4.13e+04, // 4096 points
+	9.41e+04, // 8192 points
+	1.89e+05, // 16384 points
+	4.13e+05, // 32768 points
+	8.44e+05, // 65536 points
+	1.51e+06, // 131072 points
+	3.17e+06, // 262144 points
+	7.44e+06, // 524288 points
+	1.56e+07, // 1048576 points
+	3.35e+07, // 2097152 points
 }
 
 var avx2Costs = blockCosts{
-	572,      // 256 points
-	1.12e+03, // 512 points
-	2.29e+03, // 1024 points
-	4.95e+03, // 2048 points
-	1.01e+04, // 4096 points
-	2.25e+04, // 8192 points
-	4.73e+04, // 16384 points
-	1.04e+05, // 32768 points
-	2.07e+05, // 65536 points
-	3.68e+05, // 131072 points
-	1.03e+06, // 262144 points
-	3.03e+06, // 524288 points
-	6.79e+06, // 1048576 points
-	1.48e+07, // 2097152 points
+	583,      // 256 points
+	1.13e+03, // 512 points
+	2.36e+03, // 1024 points
+	5.13e+03, // 2048 points
+	1.04e+04, // 4096 points
+	2.3e+04,  // 8192 points
+	4.87e+04, // 16384 points
+	1.06e+05, // 32768 points
+	2.1e+05,  // 65536 points
+	3.78e+05, // 131072 points
+	8.92e+05, // 262144 points
+	2.87e+06, // 524288 points
+	7.37e+06, // 1048576 points
+	1.55e+07, // 2097152 points
 }
 
 var avx512Costs = blockCosts{
-	475,      // 256 points
-	817,      // 512 points
-	1.82e+03, // 1024 points
-	3.68e+03, // 2048 points
-	7.61e+03, // 4096 points
-	1.61e+04, // 8192 points
-	3.64e+04, // 16384 points
-	7.72e+04, // 32768 points
-	1.74e+05, // 65536 points
-	2.72e+05, // 131072 points
-	7.86e+05, // 262144 points
-	2.74e+06, // 524288 points
-	6.3e+06,  // 1048576 points
+	451,      // 256 points
+	783,      // 512 points
+	1.77e+03, // 1024 points
+	3.48e+03, // 2048 points
+	7.32e+03, // 4096 points
+	1.6e+04,  // 8192 points
+	3.49e+04, // 16384 points
+	7.57e+04, // 32768 points
+	1.59e+05, // 65536 points
+	2.65e+05, // 131072 points
+	7.92e+05, // 262144 points
+	2.54e+06, // 524288 points
+	6.37e+06, // 1048576 points
 	1.33e+07, // 2097152 points
 }

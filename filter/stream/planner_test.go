@@ -76,7 +76,38 @@ func TestPlannedBlocks(t *testing.T) {
 		frames   int64
 		channels int
 		want     int
-	}{} {
+	}{
+		{machine.Portable, 3, -1, 2, 0},
+		{machine.Portable, 15, -1, 2, 0},
+		{machine.Portable, 255, -1, 2, 4096},
+		{machine.Portable, 1023, -1, 2, 16384},
+		{machine.Portable, 4095, -1, 2, 131072},
+		{machine.Portable, 16383, -1, 1, 262144},
+		{machine.Portable, 65535, -1, 2, 1048576},
+		{machine.Portable, 4095, 48000, 1, 32768},
+		{machine.Portable, 4095, 480000, 2, 131072},
+		{machine.Portable, 530333, -1, 2, 8388608},
+		{machine.AVX2, 3, -1, 2, 0},
+		{machine.AVX2, 15, -1, 2, 512},
+		{machine.AVX2, 255, -1, 2, 4096},
+		{machine.AVX2, 1023, -1, 2, 16384},
+		{machine.AVX2, 4095, -1, 2, 131072},
+		{machine.AVX2, 16383, -1, 1, 131072},
+		{machine.AVX2, 65535, -1, 2, 262144},
+		{machine.AVX2, 4095, 48000, 1, 32768},
+		{machine.AVX2, 4095, 480000, 2, 131072},
+		{machine.AVX2, 530333, -1, 2, 8388608},
+		{machine.AVX512, 3, -1, 2, 512},
+		{machine.AVX512, 15, -1, 2, 512},
+		{machine.AVX512, 255, -1, 2, 4096},
+		{machine.AVX512, 1023, -1, 2, 8192},
+		{machine.AVX512, 4095, -1, 2, 131072},
+		{machine.AVX512, 16383, -1, 1, 131072},
+		{machine.AVX512, 65535, -1, 2, 262144},
+		{machine.AVX512, 4095, 48000, 1, 32768},
+		{machine.AVX512, 4095, 480000, 2, 131072},
+		{machine.AVX512, 530333, -1, 2, 8388608},
+	} {
 		if got := blockSize(c.taps, c.channels, Run{c.frames, c.kernel, 1}); got != c.want {
 			t.Errorf("%v, %d taps, %d frames, %d channels: blocks of %d, want %d", c.kernel, c.taps, c.frames, c.channels, got, c.want)
 		}
