@@ -4,55 +4,55 @@ package stream
 
 // Measured with go1.26.8 on linux/amd64; the best of 15 rounds.
 
-var directCosts = [2]float64{0.28, 0.17}
+var directCosts = [2]float64{0.3, 0.17}
 
 var portableCosts = blockCosts{
-	1.78e+03, // 256 points
-	4.19e+03, // 512 points
-	8.71e+03, // 1024 points
+	1.82e+03, // 256 points
+	4.31e+03, // 512 points
+	8.82e+03, // 1024 points
 	2.05e+04, // 2048 points
-	4.13e+04, // 4096 points
-	9.41e+04, // 8192 points
-	1.89e+05, // 16384 points
-	4.13e+05, // 32768 points
-	8.44e+05, // 65536 points
+	4.19e+04, // 4096 points
+	9.4e+04,  // 8192 points
+	1.96e+05, // 16384 points
+	4.21e+05, // 32768 points
+	8.59e+05, // 65536 points
 	1.51e+06, // 131072 points
-	3.17e+06, // 262144 points
-	7.44e+06, // 524288 points
-	1.56e+07, // 1048576 points
-	3.35e+07, // 2097152 points
+	3.26e+06, // 262144 points
+	7.41e+06, // 524288 points
+	1.71e+07, // 1048576 points
+	3.48e+07, // 2097152 points
 }
 
 var avx2Costs = blockCosts{
-	583,      // 256 points
-	1.13e+03, // 512 points
-	2.36e+03, // 1024 points
-	5.13e+03, // 2048 points
-	1.04e+04, // 4096 points
-	2.3e+04,  // 8192 points
-	4.87e+04, // 16384 points
-	1.06e+05, // 32768 points
-	2.1e+05,  // 65536 points
-	3.78e+05, // 131072 points
-	8.92e+05, // 262144 points
-	2.87e+06, // 524288 points
-	7.37e+06, // 1048576 points
-	1.55e+07, // 2097152 points
+	599,      // 256 points
+	1.16e+03, // 512 points
+	2.43e+03, // 1024 points
+	5.16e+03, // 2048 points
+	1.05e+04, // 4096 points
+	2.12e+04, // 8192 points
+	4.93e+04, // 16384 points
+	1.08e+05, // 32768 points
+	2.27e+05, // 65536 points
+	3.86e+05, // 131072 points
+	9.41e+05, // 262144 points
+	3.36e+06, // 524288 points
+	7.27e+06, // 1048576 points
+	1.54e+07, // 2097152 points
 }
 
 var avx512Costs = blockCosts{
-	451,      // 256 points
-	783,      // 512 points
-	1.77e+03, // 1024 points
-	3.48e+03, // 2048 points
-	7.32e+03, // 4096 points
-	1.6e+04,  // 8192 points
-	3.49e+04, // 16384 points
-	7.57e+04, // 32768 points
-	1.59e+05, // 65536 points
-	2.65e+05, // 131072 points
-	7.92e+05, // 262144 points
-	2.54e+06, // 524288 points
-	6.37e+06, // 1048576 points
-	1.33e+07, // 2097152 points
+	476,      // 256 points
+	803,      // 512 points
+	1.83e+03, // 1024 points
+	3.57e+03, // 2048 points
+	7.53e+03, // 4096 points
+	1.38e+04, // 8192 points
+	3.61e+04, // 16384 points
+	7.62e+04, // 32768 points
+	1.66e+05, // 65536 points
+	2.7e+05,  // 131072 points
+	7.56e+05, // 262144 points
+	2.68e+06, // 524288 points
+	6.82e+06, // 1048576 points
+	1.4e+07,  // 2097152 points
 }

@@ -14,7 +14,7 @@ const leafPoints = 2048
 
 // widePoints is the least block of which the two outermost passes are done in
 // one sweep, so that it is taken from a far cache only once.
-const widePoints = 8192
+const widePoints = 16384
 
 // stretch is how many points of a row such a sweep does before it goes on to the
 // next stretch: sixteen of them stay in a first-level cache.
