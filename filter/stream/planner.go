@@ -2,6 +2,7 @@ package stream
 
 import (
 	"math"
+	"math/bits"
 
 	"fettle/filter/stream/lanes"
 	"fettle/filter/stream/machine"
@@ -37,18 +38,21 @@ func (c blockCosts) of(size int) float64 {
 // and of a short stream its end is empty.
 func blockSize(taps, channels int, run Run) int {
 	best, least := 0, directCost(taps, channels, run)
-	for size := lanes.MinSize; size <= lanes.MaxSize; size *= 2 {
+	for size := lanes.MinSize; size <= largestBlock(taps); size *= 2 {
 		if size < taps {
 			continue
 		}
 		if cost := blocksCost(taps, size, channels, run); cost < least {
 			best, least = size, cost
 		}
-		if size > 64*taps && size > 64*lanes.MinSize {
-			break
-		}
 	}
 	return best
+}
+
+// largestBlock bounds what a block takes in memory, which is some 100 bytes a
+// point: 26 MB, or what leaves long taps at most half of a block.
+func largestBlock(taps int) int {
+	return min(lanes.MaxSize, max(1<<18, 2<<bits.Len(uint(taps-1))))
 }
 
 // unknownLength is how long a stream is taken to be of which nothing is known.
