@@ -80,7 +80,7 @@ func TestPlannedBlocks(t *testing.T) {
 		{machine.Portable, 3, -1, 2, 0},
 		{machine.Portable, 15, -1, 2, 0},
 		{machine.Portable, 255, -1, 2, 4096},
-		{machine.Portable, 1023, -1, 2, 16384},
+		{machine.Portable, 1023, -1, 2, 131072},
 		{machine.Portable, 4095, -1, 2, 131072},
 		{machine.Portable, 16383, -1, 1, 131072},
 		{machine.Portable, 65535, -1, 2, 262144},
