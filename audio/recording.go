@@ -8,6 +8,7 @@ import (
 	"io"
 	"io/fs"
 	"os"
+	"slices"
 	"time"
 
 	"fettle/audio/container"
@@ -47,9 +48,9 @@ type Recording struct {
 	hashed int64 // bytes of the file that hash has seen, from the start
 }
 
-// Open opens a WAV file for reading: PCM of 4 to 32 bits in 1 to 4 bytes or
-// IEEE float of 32 or 64, any rate and channel count, with a plain or an
-// EXTENSIBLE fmt chunk. Errors begin with the path and unwrap to an error of
+// Open opens a WAV file for reading, be it RIFF, RF64, BW64 or RIFX: PCM of 4 to
+// 32 bits in 1 to 4 bytes or IEEE float of 32 or 64, any rate and channel count,
+// with a plain or an EXTENSIBLE fmt chunk. Errors begin with the path and unwrap to an error of
 // the system, to [container.ErrMalformed] or to [container.ErrUnsupported].
 func Open(path string) (*Recording, error) {
 	// Looked at before it is opened: opening a pipe may wait for ever.
@@ -127,8 +128,16 @@ func (r *Recording) Warnings() []string {
 
 // Rewind makes the next frame the first one again. It also clears an error that
 // ended the stream.
-func (r *Recording) Rewind() error {
-	r.frame, r.next, r.rest, r.err = 0, r.layout.Data.Offset, nil, nil
+func (r *Recording) Rewind() error { return r.SeekFrame(0) }
+
+// SeekFrame makes `frame`, 0 to Frames, the next one. It also clears an error
+// that ended the stream.
+func (r *Recording) SeekFrame(frame int64) error {
+	if frame < 0 || frame > r.Frames() {
+		return fmt.Errorf("%s: frame %d is none of its %d", r.path, frame, r.Frames())
+	}
+	r.frame, r.next = frame, r.layout.Data.Offset+frame*int64(r.layout.Format.FrameBytes())
+	r.rest, r.err = nil, nil
 	return nil
 }
 
@@ -190,9 +199,19 @@ func (r *Recording) fill() error {
 		return err
 	}
 	r.addToHash(b, r.next)
+	if r.layout.Form == container.RIFX {
+		reverseSamples(b, r.encoding.Bytes)
+	}
 	r.next += int64(len(b))
 	r.rest = b
 	return nil
+}
+
+// reverseSamples makes big-endian samples little-endian.
+func reverseSamples(b []byte, size int) {
+	for ; len(b) > 0; b = b[size:] {
+		slices.Reverse(b[:size])
+	}
 }
 
 // readAt fills b from byte `at` of the file.

@@ -128,10 +128,10 @@ func TestFacts(t *testing.T) {
 		t.Fatal(err)
 	}
 	r := mustOpen(t, path)
-	if r.Size() != info.Size() || r.Size() != 44+100 || !r.ModTime().Equal(info.ModTime()) {
+	if r.Size() != info.Size() || r.Size() != 80+100 || !r.ModTime().Equal(info.ModTime()) {
 		t.Errorf("size %d, changed %v; want %d, %v", r.Size(), r.ModTime(), info.Size(), info.ModTime())
 	}
-	if r.Layout().Data != (container.Extent{Offset: 44, Size: 100}) {
+	if r.Layout().Data != (container.Extent{Offset: 80, Size: 100}) {
 		t.Errorf("data at %+v", r.Layout().Data)
 	}
 }
@@ -155,7 +155,8 @@ func TestOpenRefuses(t *testing.T) {
 		{put("empty.wav", ""), container.ErrMalformed, "byte 0: the file is empty"},
 		{put("text.wav", "once upon a time"), container.ErrMalformed, "byte 0: not a WAV file"},
 		{put("short.wav", "RIFF\x24\x00\x00\x00WAVEfmt "), container.ErrMalformed, "byte 12: the file ends inside a chunk header"},
-		{put("big.wav", "RF64\xFF\xFF\xFF\xFFWAVEds64"), container.ErrUnsupported, "byte 0: RF64"},
+		{put("companded.wav", "RIFF\x26\x00\x00\x00WAVEfmt \x10\x00\x00\x00\x06\x00\x01\x00\x40\x1F\x00\x00\x40\x1F\x00\x00\x01\x00\x08\x00data\x02\x00\x00\x00\xD5\xD5"),
+			container.ErrUnsupported, "byte 20: the samples are coded as A-law"},
 	}
 	for _, test := range tests {
 		r, err := Open(test.path)

@@ -27,9 +27,20 @@ type Spec struct {
 	FmtChunk []byte
 	// ChannelMask assigns loudspeakers where FmtChunk is nil; 0: as usual.
 	ChannelMask uint32
-	Frames      int64         // exactly so many will be written
-	Dither      []*pcm.Dither // nil, or an entry a channel, nil for none
-	Mode        fs.FileMode   // permissions before the umask; 0: 0o644
+	Frames      int64 // exactly so many will be written
+	// Carriage is what goes over from the original, see [Recording.Carry]; nil:
+	// no chunks but the samples'.
+	Carriage *container.Carriage
+	// Limit is the size in bytes beyond which the file is RF64; 0: 4 GiB.
+	Limit  int64
+	Dither []*pcm.Dither // nil, or an entry a channel, nil for none
+	Mode   fs.FileMode   // permissions before the umask; 0: 0o644
+}
+
+// Outline is the file that a Writer of the Spec will write, but for the samples.
+// It tells the file's size and form.
+func (s Spec) Outline() (*container.Outline, error) {
+	return container.Plan{Format: s.Format(), Fmt: s.FmtChunk, Frames: s.Frames, Carriage: s.Carriage, Limit: s.Limit}.Outline()
 }
 
 // defaultMode are the permissions of a file that everyone may read.
@@ -39,6 +50,7 @@ const defaultMode = 0o644
 type Writer struct {
 	path      string
 	spec      Spec
+	outline   *container.Outline
 	file      *renameio.PendingFile
 	out       io.Writer // the file
 	hash      hash.Hash
@@ -54,13 +66,14 @@ type Writer struct {
 var errDone = errors.New("the output was already committed or aborted")
 
 // Create begins a WAV file in a temporary file next to path, which must be in
-// a folder that exists. What may stand under path is replaced at Commit.
+// a folder that exists. What may stand under path is replaced at Commit. The
+// original that a Carriage reads from must stay open until then.
 func Create(path string, spec Spec) (*Writer, error) {
 	quantiser, err := pcm.NewQuantiser(spec.Encoding, spec.Channels, spec.Dither)
 	if err != nil {
 		return nil, fmt.Errorf("%s: %w", path, err)
 	}
-	header, err := container.Header(spec.format(), spec.FmtChunk, spec.Frames)
+	outline, err := spec.Outline()
 	if err != nil {
 		return nil, fmt.Errorf("%s: %w", path, err)
 	}
@@ -68,16 +81,17 @@ func Create(path string, spec Spec) (*Writer, error) {
 	if err != nil {
 		return nil, err
 	}
-	frame := spec.format().FrameBytes()
-	w := &Writer{path: path, spec: spec, file: file, out: file, hash: sha256.New(), quantiser: quantiser,
+	frame := spec.Format().FrameBytes()
+	w := &Writer{path: path, spec: spec, outline: outline, file: file, out: file, hash: sha256.New(), quantiser: quantiser,
 		buffer: make([]byte, max(1, bufferBytes/frame)*frame)}
-	if err := w.put(header); err != nil {
+	if err := outline.WriteHead(putter{w}); err != nil {
 		return nil, w.abandon(err)
 	}
 	return w, nil
 }
 
-func (s Spec) format() container.Format {
+// Format is what the Spec says of the samples, for [Recording.Carry] too.
+func (s Spec) Format() container.Format {
 	return container.Format{Float: s.Encoding.Float, Channels: s.Channels, Rate: s.Rate,
 		Bytes: s.Encoding.Bytes, ValidBits: s.Encoding.Bits, ChannelMask: s.ChannelMask}
 }
@@ -104,6 +118,16 @@ func (w *Writer) put(b []byte) error {
 	}
 	w.hash.Write(b) // never fails
 	return nil
+}
+
+// putter is what the outline writes itself to.
+type putter struct{ w *Writer }
+
+func (p putter) Write(b []byte) (int, error) {
+	if err := p.w.put(b); err != nil {
+		return 0, err
+	}
+	return len(b), nil
 }
 
 // WriteFrames quantises frames and appends them. Samples beyond an integer
@@ -184,7 +208,7 @@ func (w *Writer) finish() error {
 	if err := w.flush(); err != nil {
 		return err
 	}
-	if err := w.put(make([]byte, container.Pad(w.frames*int64(w.spec.format().FrameBytes())))); err != nil {
+	if err := w.outline.WriteTail(putter{w}); err != nil {
 		return err
 	}
 	w.sum = hex.EncodeToString(w.hash.Sum(nil))

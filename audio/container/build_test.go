@@ -3,6 +3,7 @@ package container
 import (
 	"bytes"
 	"encoding/binary"
+	"io"
 	"strings"
 	"testing"
 )
@@ -14,12 +15,23 @@ func riff(chunks ...[]byte) []byte {
 	return append(append(b, "WAVE"...), body...)
 }
 
+// rf64 wraps chunks in a form header that leaves its size to ds64.
+func rf64(chunks ...[]byte) []byte {
+	return append([]byte("RF64\xFF\xFF\xFF\xFFWAVE"), bytes.Join(chunks, nil)...)
+}
+
 // chunk is a whole chunk with its pad byte.
 func chunk(id string, payload []byte) []byte { return appendChunk(nil, id, payload) }
 
 // sized is a chunk whose header says `size`, whatever the payload; no pad byte.
 func sized(id string, size uint32, payload []byte) []byte {
 	return append(binary.LittleEndian.AppendUint32([]byte(id), size), payload...)
+}
+
+// appendChunk adds a whole chunk.
+func appendChunk(b []byte, id string, payload []byte) []byte {
+	b = append(b, sized(id, uint32(len(payload)), payload)...)
+	return append(b, make([]byte, len(payload)%2)...)
 }
 
 // fields are the numbers of a fmt chunk, in order.
@@ -60,7 +72,7 @@ func samples(n int) []byte { return bytes.Repeat([]byte{0x80, 0x01, 0xFE, 0x7F},
 
 func parse(b []byte) (*Layout, error) { return Parse(bytes.NewReader(b), int64(len(b))) }
 
-func mustParse(t *testing.T, b []byte) *Layout {
+func mustParse(t testing.TB, b []byte) *Layout {
 	t.Helper()
 	l, err := parse(b)
 	if err != nil {
@@ -69,9 +81,36 @@ func mustParse(t *testing.T, b []byte) *Layout {
 	return l
 }
 
+// sparse is a long file of zeros but for some pieces.
+type sparse struct {
+	size   int64
+	pieces []piece
+}
+
+type piece struct {
+	at int64
+	b  []byte
+}
+
+func (s sparse) ReadAt(p []byte, at int64) (int, error) {
+	n := int(min(int64(len(p)), max(0, s.size-at)))
+	clear(p[:n])
+	for _, piece := range s.pieces {
+		if from := piece.at - at; from >= 0 && from < int64(n) {
+			copy(p[from:n], piece.b)
+		} else if from < 0 && -from < int64(len(piece.b)) {
+			copy(p[:n], piece.b[-from:])
+		}
+	}
+	if n < len(p) {
+		return n, io.EOF
+	}
+	return n, nil
+}
+
 // checkWarnings wants exactly one warning for each of the given fragments, in
 // order.
-func checkWarnings(t *testing.T, got []string, want ...string) {
+func checkWarnings(t testing.TB, got []string, want ...string) {
 	t.Helper()
 	if len(got) != len(want) {
 		t.Fatalf("warnings %q, want %d", got, len(want))

@@ -1,75 +1,26 @@
 package container
 
 import (
+	"bytes"
 	"encoding/binary"
 	"fmt"
 	"math"
 )
 
-// maxRIFF is the largest file whose size the RIFF header can tell; FFFFFFFFh
-// itself means unknown.
-const maxRIFF = headerBytes + unknownSize - 1
+// maxData bounds the samples so that with other chunks the sum fits in 64 bits.
+const maxData = math.MaxInt64 / 2
 
-// Pad is the number of bytes, 0 or 1, to be written after a payload of n bytes.
-// [Header] has counted it.
-func Pad(n int64) int { return int(n & 1) }
-
-// Header returns all bytes of a WAV file that stand before the samples of
-// `frames` frames: the RIFF header, fmt, fact (for every tag but PCM) and the
-// head of the data chunk. Behind the samples the writer owes [Pad] bytes.
-//
-// fmtChunk, if not nil, is written as it is and must say the same as f does of
-// coding, channels, rate, container and valid bits. Otherwise the plainest fmt
-// that the standard allows is made: tag PCM with 16 bytes, or tag IEEE float
-// with 18, where f has 1 or 2 channels and no channel mask and, if PCM, 8 or 16
-// bits filling its container; EXTENSIBLE in all other cases. f.Tag and
-// f.SubFormat are not looked at. Without a mask EXTENSIBLE mono is front
-// centre, stereo front left and right, and more channels are unassigned.
-//
-// It fails if f cannot be written, if fmtChunk contradicts it, and if the file
-// would exceed what 32-bit sizes can tell.
+// Header returns all bytes that stand before the samples of a file without
+// other chunks, as a [Plan] arranges them; fmtChunk may be nil. Behind the
+// samples the writer owes [Pad] bytes.
 func Header(f Format, fmtChunk []byte, frames int64) ([]byte, error) {
-	if err := checkWritable(f, frames); err != nil {
-		return nil, err
-	}
-	if fmtChunk == nil {
-		fmtChunk = makeFmt(f)
-	} else if err := checkAgrees(f, fmtChunk); err != nil {
-		return nil, err
-	}
-	le := binary.LittleEndian
-	b := append([]byte("RIFF"), 0, 0, 0, 0)
-	b = append(b, "WAVE"...)
-	b = appendChunk(b, "fmt ", fmtChunk)
-	if le.Uint16(fmtChunk) != TagPCM {
-		b = appendChunk(b, "fact", le.AppendUint32(nil, uint32(frames)))
-	}
-	b = append(b, "data"...)
-	data, err := dataSize(f, frames, int64(len(b))+4)
+	o, err := Plan{Format: f, Fmt: fmtChunk, Frames: frames}.Outline()
 	if err != nil {
 		return nil, err
 	}
-	b = le.AppendUint32(b, uint32(data))
-	le.PutUint32(b[4:], uint32(int64(len(b))-headerBytes+data+int64(Pad(data))))
-	return b, nil
-}
-
-func appendChunk(b []byte, id string, payload []byte) []byte {
-	b = append(b, id...)
-	b = binary.LittleEndian.AppendUint32(b, uint32(len(payload)))
-	b = append(b, payload...)
-	return append(b, make([]byte, Pad(int64(len(payload))))...)
-}
-
-// dataSize is the payload of the data chunk, checked against the 4 GiB that a
-// RIFF file may have, of which `head` bytes stand before it.
-func dataSize(f Format, frames, head int64) (int64, error) {
-	frame := int64(f.FrameBytes())
-	if most := (maxRIFF - head - 1) / frame; frames > most {
-		return 0, fmt.Errorf("%d frames of %d bytes make a file of %.2f GiB, a WAV file holds at most 4 GiB (here %d frames): split the recording, or choose a format with fewer bytes a sample",
-			frames, frame, float64(frames)*float64(frame)/(1<<30), most)
-	}
-	return frames * frame, nil
+	var b bytes.Buffer
+	err = o.WriteHead(&b)
+	return b.Bytes(), err
 }
 
 func checkWritable(f Format, frames int64) error {
@@ -85,6 +36,8 @@ func checkWritable(f Format, frames int64) error {
 		return fmt.Errorf("samples of %d bits in %d bytes cannot be written to WAV, only PCM of %d to 32 bits and float of 32 and 64", f.ValidBits, f.Bytes, leastBits)
 	case f.FrameBytes() > maxFrameBytes:
 		return fmt.Errorf("%d channels of %d bytes cannot be written to WAV, a frame holds at most %d bytes: choose a smaller format or fewer channels", f.Channels, f.Bytes, maxFrameBytes)
+	case frames > maxData/int64(f.FrameBytes()):
+		return fmt.Errorf("%d frames of %d bytes cannot be written to WAV, that is more than 64-bit sizes can tell", frames, f.FrameBytes())
 	}
 	return nil
 }

@@ -11,12 +11,14 @@ type Chunk struct {
 	ID     string // 4 bytes, printable ASCII
 	Offset int64  // of the first byte of the payload
 	Size   int64  // of the payload that is really there, without the pad byte
+	Cut    bool   // the file ends before the payload does
 }
 
 // Layout is where everything in a WAV file is.
 type Layout struct {
+	Form   Form
 	Format Format
-	Fmt    []byte // payload of the fmt chunk, as stored
+	Fmt    []byte // payload of the fmt chunk; as stored, but little-endian
 	// Data are the samples: whole frames only, and within the file. The row of
 	// the data chunk in Chunks may be a few bytes longer.
 	Data     Extent

@@ -1,13 +1,14 @@
 package container
 
 // knownIDs are chunk ids of the RIFF specification (1991), of EBU Tech 3285 and
-// its supplements, and of ITU-R BS.2088. They only help to tell a chunk from
+// its supplements, of EBU Tech 3306, and of ITU-R BS.2088. They only help to tell a chunk from
 // chance where a pad byte may be missing.
 var knownIDs = map[string]bool{
 	"fmt ": true, "data": true, "fact": true, "LIST": true, "JUNK": true, "PAD ": true,
 	"cue ": true, "plst": true, "smpl": true, "inst": true, "wavl": true, "slnt": true,
 	"bext": true, "mext": true, "qlty": true, "levl": true, "link": true, "iXML": true,
 	"axml": true, "bxml": true, "chna": true, "sxml": true, "PEAK": true, "CSET": true, "DISP": true,
+	"ds64": true, "r64m": true,
 }
 
 // next tells where the chunk after c begins. After an odd payload that is one

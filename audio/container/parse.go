@@ -2,7 +2,6 @@ package container
 
 import (
 	"bytes"
-	"encoding/binary"
 	"fmt"
 	"io"
 )
@@ -16,16 +15,17 @@ const (
 	maxChunks = 4096
 )
 
-// Parse walks the chunks of a WAV file of `size` bytes and returns where they
-// are. Every size in the file is checked against the file; what can be put
-// right is put right with a warning:
+// Parse walks the chunks of a WAV file of `size` bytes, of any [Form], and
+// returns where they are. Every size in the file is checked against the file;
+// what can be put right is put right with a warning:
 //
 //   - a data size that is unknown (FFFFFFFFh), or that reaches beyond the end,
 //     stands for all whole frames up to the end; so does a data size of 0 that
 //     something other than chunks follows,
 //   - bytes after the last whole frame, and bytes after the data that are no
 //     chunk, are left out,
-//   - a missing pad byte, a wrong size in the form header, a wrong byte rate.
+//   - a missing pad byte, a wrong size in the form header, a wrong byte rate,
+//   - an RF64 or BW64 file without its ds64 chunk, whose sizes are then unknown.
 //
 // Anything else is an [*Error]: [ErrMalformed] or [ErrUnsupported], or the
 // cause of a read that failed. A file without a single frame is malformed.
@@ -51,8 +51,10 @@ type parser struct {
 	r      io.ReaderAt
 	size   int64
 	layout Layout
-	// Offsets of the payloads, 0 while not found, and the data size as stored.
-	fmtAt, dataAt, dataSaid int64
+	long   *longSizes // nil while there are none
+	// Offsets of the payloads, 0 while not found, and sizes as stored.
+	fmtAt, dataAt      int64
+	formSaid, dataSaid int64
 }
 
 func (p *parser) warn(format string, args ...any) {
@@ -80,40 +82,32 @@ func (p *parser) form() error {
 	if err := p.read(b, 0); err != nil {
 		return err
 	}
-	if err := checkFormID(b); err != nil {
+	form, err := parseForm(b)
+	if err != nil {
 		return err
 	}
 	if p.size < formBytes {
-		return malformed(p.size, "the file ends inside the %d-byte RIFF header; record or copy it again", formBytes)
+		return malformed(p.size, "the file ends inside the %d-byte %s header; record or copy it again", formBytes, form)
 	}
 	if kind := b[8:]; !bytes.Equal(kind, []byte("WAVE")) {
-		return malformed(8, "a RIFF file of type %q, not WAVE; only WAV recordings are read", kind)
+		return malformed(8, "a %s file of type %q, not WAVE; only WAV recordings are read", form, kind)
 	}
-	said, is := int64(binary.LittleEndian.Uint32(b[4:])), p.size-headerBytes
-	// A last pad byte is counted by some programs and not by others.
-	if said != is && said+said&1 != is {
-		p.warn("byte 4: the RIFF header says %d bytes follow, the file has %d; ignored", said, is)
+	p.layout.Form, p.formSaid = form, int64(form.order().Uint32(b[4:]))
+	if form == RIFX {
+		p.warn("byte 0: a big-endian file (RIFX); an output of it is little-endian (RIFF)")
+	}
+	if !form.long() || p.formSaid != unknownSize {
+		p.checkFormSize(4, p.formSaid)
 	}
 	return nil
 }
 
-// checkFormID looks at the first bytes of a file, of which there is at least one.
-func checkFormID(b []byte) error {
-	id := string(b[:min(4, len(b))])
-	switch id {
-	case "RIFF":
-		return nil
-	case "RF64", "BW64":
-		return unsupported(0, "%s (WAV with 64-bit sizes) is not read yet; split the recording into RIFF files under 4 GiB", id)
-	case "RIFX":
-		return unsupported(0, "RIFX (big-endian WAV) is not read; convert the recording to little-endian RIFF")
+// checkFormSize compares the size of the form, as stored at byte `at`, with the
+// file. A last pad byte is counted by some programs and not by others.
+func (p *parser) checkFormSize(at, said int64) {
+	if is := p.size - headerBytes; said != is && said+said&1 != is {
+		p.warn("byte %d: the header says %d bytes follow, the file has %d; ignored", at, said, is)
 	}
-	for _, f := range foreignForms {
-		if bytes.HasPrefix(b, []byte(f.magic)) {
-			return malformed(0, "not a WAV file but %s; convert it to WAV first", f.name)
-		}
-	}
-	return malformed(0, "not a WAV file: it begins with %q, not \"RIFF\"; give a WAV recording", id)
 }
 
 // chunk takes in the chunk whose header stands at pos and tells where the next
@@ -134,6 +128,8 @@ func (p *parser) chunk(pos int64) (next int64, err error) {
 		err = p.fmtChunk(c)
 	case "data":
 		err = p.dataChunk(&c)
+	case "ds64":
+		err = p.ds64Chunk(&c)
 	default:
 		err = p.otherChunk(&c)
 	}
@@ -154,12 +150,24 @@ func (p *parser) header(pos int64) (c Chunk, plausible bool, err error) {
 	if err := p.read(b[:], pos); err != nil {
 		return c, false, err
 	}
-	for _, ch := range b[:4] {
-		if ch < ' ' || ch > '~' {
-			return c, false, nil
+	if !printable(b[:4]) {
+		return c, false, nil
+	}
+	c = Chunk{ID: string(b[:4]), Offset: pos + headerBytes, Size: int64(p.layout.Form.order().Uint32(b[4:]))}
+	if c.Size == unknownSize {
+		c.Size = p.long.of(c.ID)
+	}
+	return c, true, nil
+}
+
+// printable tells whether an id is ASCII that can be seen, or blanks.
+func printable(id []byte) bool {
+	for _, c := range id {
+		if c < ' ' || c > '~' {
+			return false
 		}
 	}
-	return Chunk{string(b[:4]), pos + headerBytes, int64(binary.LittleEndian.Uint32(b[4:]))}, true, nil
+	return true
 }
 
 // fits tells whether all of a chunk's payload is in the file.
@@ -192,6 +200,9 @@ func (p *parser) fmtChunk(c Chunk) error {
 	if err := p.read(raw, c.Offset); err != nil {
 		return err
 	}
+	if p.layout.Form == RIFX {
+		swapFmt(raw)
+	}
 	f, warnings, err := parseFormat(raw, c.Offset)
 	if err != nil {
 		return err
@@ -207,7 +218,7 @@ func (p *parser) dataChunk(c *Chunk) error {
 		return p.otherChunk(c)
 	}
 	p.dataAt, p.dataSaid = c.Offset, c.Size
-	open := c.Size == unknownSize || !p.fits(*c)
+	open := c.Size == unknownSize && p.long == nil || !p.fits(*c)
 	if c.Size == 0 {
 		only, err := p.onlyChunks(c.Offset)
 		if err != nil {
@@ -231,7 +242,7 @@ func (p *parser) otherChunk(c *Chunk) error {
 		return malformed(c.Offset-headerBytes, "the chunk %q says %d bytes where %d are left, and the samples come after it; the file is cut short, copy it again", c.ID, c.Size, rest)
 	}
 	p.warn("byte %d: the chunk %q says %d bytes, the file ends after %d of them", c.Offset-headerBytes, c.ID, c.Size, rest)
-	c.Size = rest
+	c.Size, c.Cut = rest, true
 	return nil
 }
 
@@ -245,6 +256,9 @@ func (p *parser) settle() error {
 		return malformed(p.size, "no data chunk: the file ends before any samples; record or copy it again")
 	case p.dataAt < p.fmtAt:
 		return malformed(p.fmtAt-headerBytes, "the fmt chunk stands after the data chunk at byte %d; export the recording again", p.dataAt-headerBytes)
+	}
+	if p.layout.Form.long() && p.long == nil {
+		p.warn("byte %d: no ds64 chunk, so this %s file does not tell its sizes", formBytes, p.layout.Form)
 	}
 	d := &p.layout.Data
 	is, frame := d.Size, int64(p.layout.Format.FrameBytes())

@@ -9,25 +9,49 @@ const (
 	TagExtensible = 0xFFFE
 )
 
-// tagNames names the codings most often met in WAV files that are not linear.
-// Numbers and names follow the registry in RFC 2361, appendix A, quoted from
-// memory; those above 1000h were registered after it.
+// tagNames names the codings met in WAV files that are not linear. Numbers and
+// names follow the registry in RFC 2361, appendix A, quoted from memory; those
+// that were registered after it, from 0092h on, are common practice, no source.
 var tagNames = map[uint16]string{
 	0x0002: "Microsoft ADPCM",
+	0x0004: "VSELP",
+	0x0005: "CVSD",
 	0x0006: "A-law",
 	0x0007: "mu-law",
+	0x0008: "DTS",
 	0x0010: "OKI ADPCM",
 	0x0011: "IMA ADPCM",
+	0x0012: "MediaSpace ADPCM",
+	0x0013: "Sierra ADPCM",
 	0x0014: "G.723 ADPCM",
+	0x0017: "Dialogic OKI ADPCM",
+	0x0018: "MediaVision ADPCM",
+	0x0020: "Yamaha ADPCM",
+	0x0022: "TrueSpeech",
+	0x0030: "AC-2",
 	0x0031: "GSM 06.10",
+	0x003B: "Rockwell ADPCM",
 	0x0040: "G.721 ADPCM",
+	0x0041: "G.728 CELP",
+	0x0045: "G.726 ADPCM",
 	0x0050: "MPEG layer 1 or 2",
 	0x0055: "MPEG layer 3",
 	0x0064: "G.726 ADPCM",
 	0x0065: "G.722 ADPCM",
+	0x0092: "AC-3 over S/PDIF",
 	0x00FF: "AAC",
+	0x0160: "Windows Media Audio 1",
+	0x0161: "Windows Media Audio 2",
+	0x0162: "Windows Media Audio Professional",
+	0x0163: "Windows Media Audio Lossless",
+	0x0200: "Creative ADPCM",
+	0x0270: "ATRAC3",
 	0x1600: "AAC in ADTS",
+	0x1602: "AAC in LATM",
+	0x1610: "HE-AAC",
 	0x2000: "AC-3",
+	0x2001: "DTS",
+	0x674F: "Vorbis",
 	0xF1AC: "FLAC",
 }
 
@@ -58,14 +82,4 @@ func guidTag(guid [16]byte) (tag uint16, ok bool) {
 func guidText(g [16]byte) string {
 	return fmt.Sprintf("%02X%02X%02X%02X-%02X%02X-%02X%02X-%X-%X",
 		g[3], g[2], g[1], g[0], g[5], g[4], g[7], g[6], g[8:10], g[10:])
-}
-
-// foreignForms names what a file is when its first bytes are not a WAV file's.
-var foreignForms = []struct{ magic, name string }{
-	{"FORM", "an IFF file, most likely AIFF"},
-	{"fLaC", "a FLAC file"},
-	{"OggS", "an Ogg file"},
-	{"caff", "a CAF file"},
-	{"ID3", "an MPEG audio file"},
-	{"riff", "a Wave64 file"},
 }

@@ -16,11 +16,11 @@ import soundfile
 FRAMES = 101
 
 
-def codes(channels, bits):
-    i = np.arange(FRAMES * channels, dtype=np.uint64)
+def codes(channels, bits, frames=FRAMES):
+    i = np.arange(frames * channels, dtype=np.uint64)
     k = (i * np.uint64(2654435761)) % np.uint64(2**32)
     k = k.astype(np.int64) - 2**31
-    return (k >> (32 - bits)).reshape(FRAMES, channels)
+    return (k >> (32 - bits)).reshape(frames, channels)
 
 
 def main():
