@@ -6,8 +6,8 @@ import (
 	"slices"
 	"testing"
 
-	"fettle/audio/internal/vector/vectortest"
 	"fettle/audio/asmtest"
+	"fettle/audio/internal/vector/vectortest"
 )
 
 func TestAssemblyIsCurrent(t *testing.T) {

@@ -8,9 +8,9 @@ import (
 	"slices"
 	"testing"
 
+	"fettle/audio/asmtest"
 	"fettle/audio/internal/vector"
 	"fettle/audio/internal/vector/vectortest"
-	"fettle/audio/asmtest"
 
 	"pgregory.net/rapid"
 )

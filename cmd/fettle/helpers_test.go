@@ -155,7 +155,13 @@ func (b *bench) mustHold(want ...string) {
 // record reads the treatment record, in its order.
 func (b *bench) record() []map[string]any {
 	b.t.Helper()
-	f, err := os.Open(filepath.Join(b.Out, batch.RecordName))
+	return b.recordNamed(batch.RecordName)
+}
+
+// recordNamed reads a record by its file's name.
+func (b *bench) recordNamed(file string) []map[string]any {
+	b.t.Helper()
+	f, err := os.Open(filepath.Join(b.Out, file))
 	mustDo(b.t, err)
 	defer f.Close()
 	var out []map[string]any

@@ -58,7 +58,7 @@ func printPlan(w io.Writer, p *batch.Plan) error {
 		}
 		state := "done"
 		if !j.Done {
-			state, bytes, todo = "to do", bytes+j.Need, todo+1
+			state, bytes, todo = "to do", bytes+j.Need+j.NeedRemoved, todo+1
 		}
 		fmt.Fprintf(t, "%s\t%s\t%s\t%s\t%s\t%s\n", state, plain(j.Path), plain(j.Chain.Name), rate, length, plain(j.Output))
 	}

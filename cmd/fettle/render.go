@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"runtime"
+	"sync"
 
 	"fettle/audio/pcm"
 	"fettle/audit"
@@ -58,6 +59,7 @@ func render(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
+	boundMemory(options.Jobs)
 	plan, err := planOf(c, options)
 	if err != nil {
 		return err
@@ -71,10 +73,31 @@ func render(c *cli.Context) error {
 	if err := tryWriting(c.String("json")); err != nil {
 		return err
 	}
-	if err := auditPlan(c, plan); err != nil {
+	return auditAndRun(c, plan)
+}
+
+// auditAndRun renders while the audit is under way, as nothing that is written
+// depends on it; of both, its figures come first.
+func auditAndRun(c *cli.Context, plan *batch.Plan) error {
+	ctx, cancel := context.WithCancel(c.Context)
+	defer cancel()
+	show := newProgress(plan)
+	var summary *batch.Summary
+	var failed error
+	var done sync.WaitGroup
+	done.Go(func() { summary, failed = plan.Run(ctx, show) })
+	err := auditPlan(c, plan)
+	if err != nil {
+		cancel()
+	} else {
+		show.start(c.Context, c.App.ErrWriter)
+	}
+	done.Wait()
+	show.close()
+	if err != nil && c.Context.Err() == nil {
 		return err
 	}
-	return runPlan(c, plan)
+	return finishRun(c, plan, summary, failed)
 }
 
 func renderOptions(c *cli.Context) (batch.Options, error) {
@@ -189,10 +212,7 @@ func audits(plan *batch.Plan) ([]*audit.Result, error) {
 	return results, nil
 }
 
-func runPlan(c *cli.Context, plan *batch.Plan) error {
-	show := newProgress(c.Context, c.App.ErrWriter, plan)
-	summary, err := plan.Run(c.Context, show)
-	show.close()
+func finishRun(c *cli.Context, plan *batch.Plan, summary *batch.Summary, err error) error {
 	if summary != nil {
 		complain(c.App.ErrWriter, summary.Warnings)
 		complain(c.App.ErrWriter, summary.Failures)
@@ -215,7 +235,7 @@ func printSummary(c *cli.Context, plan *batch.Plan, s *batch.Summary) {
 		n    int
 		what string
 	}{
-		{s.Skipped, "already done"}, {s.Failed(), "failed"}, {s.Left, "left"}, {len(s.Warnings), "warnings"}, {s.Uncarried, "without chunks that the record names"},
+		{s.Skipped, "already done"}, {s.Failed(), "failed"}, {s.Left, "left"}, {len(s.Warnings), "warnings"},
 	} {
 		if more.n > 0 {
 			fmt.Fprintf(c.App.Writer, ", %d %s", more.n, more.what)

@@ -15,7 +15,7 @@ func (p *Plan) isDone(j *Job, e *Entry) bool {
 	if err != nil || out.Size() != e.OutputBytes {
 		return false
 	}
-	if path := p.removedPath(j); path != "" && e.Removed != name(absolute(path)) {
+	if path := p.removedPath(j); path != "" && !p.isRemoved(path, e) {
 		return false
 	}
 	if p.Options.Rehash {
@@ -23,6 +23,18 @@ func (p *Plan) isDone(j *Job, e *Entry) bool {
 	}
 	in, err := os.Stat(j.Path)
 	return err == nil && in.Size() == e.InputBytes && in.ModTime().Equal(e.InputModified)
+}
+
+// isRemoved tells whether a file is what the record says was taken out.
+func (p *Plan) isRemoved(path string, e *Entry) bool {
+	if e.Removed != name(absolute(path)) {
+		return false
+	}
+	if p.Options.Rehash {
+		return hasHash(path, e.SHA256Removed)
+	}
+	_, err := os.Stat(path)
+	return err == nil
 }
 
 // settings identifies all that decides an output beside its input.

@@ -5,6 +5,7 @@ import (
 	"os"
 	"path/filepath"
 	"strings"
+	"unicode/utf8"
 
 	"golang.org/x/text/cases"
 	"golang.org/x/text/unicode/norm"
@@ -48,30 +49,42 @@ func (p *Plan) refuseOutput(j *Job, output string, originals, outputs map[string
 }
 
 // refuseStrangers stops a batch from replacing files that are not fettle's own:
-// without a treatment record the output folder is somebody else's.
+// without its mark a folder is somebody else's.
 func (p *Plan) refuseStrangers() error {
-	if isTreated(p.Options.Out) || p.Options.Again {
+	if p.Options.Again {
 		return nil
 	}
+	ours := len(recordsIn(p.Options.Out)) > 0
+	oursToo := p.Options.Removed == "" || holdsRemoved(p.Options.Removed)
 	for _, j := range p.Jobs {
-		for _, output := range []string{j.Output, p.removedPath(j)} {
-			if _, err := os.Lstat(output); output != "" && err == nil {
-				return fmt.Errorf("%s: is there already, and %s has no %s that says it is an output; choose another folder, or replace it with --again", output, p.Options.Out, RecordName)
-			}
+		if !ours && isThere(j.Output) {
+			return stranger(j.Output, p.Options.Out, RecordName)
+		}
+		if !oursToo && isThere(p.removedPath(j)) {
+			return stranger(p.removedPath(j), p.Options.Removed, removedMark)
 		}
 	}
 	return nil
 }
 
+func isThere(path string) bool {
+	_, err := os.Lstat(path)
+	return err == nil
+}
+
+func stranger(path, folder, mark string) error {
+	return fmt.Errorf("%s: is there already, and %s has no %s that says it is an output; choose another folder, or replace it with --again", path, folder, mark)
+}
+
 // refuseMix stops a batch from going on with another kernel than it began with,
 // as on another machine, unless that is what was asked for.
-func (p *Plan) refuseMix(past map[string]*Entry) error {
+func (p *Plan) refuseMix() error {
 	o := p.Options
 	if o.KernelGiven || o.Again || p.pending() == 0 {
 		return nil
 	}
 	for _, j := range p.Jobs {
-		if e := past[j.Rel]; j.Done && e.Kernel != o.Kernel.String() {
+		if e := j.past; j.Done && e.Kernel != o.Kernel.String() {
 			return fmt.Errorf("the treatment record of %s: %s was made with kernel %s, but this run would use %s, whose outputs differ by rounding; give --kernel %[3]s to go on as before, --kernel %[4]s to mix them, or --again to treat all anew",
 				o.Out, j.Rel, e.Kernel, o.Kernel)
 		}
@@ -79,14 +92,17 @@ func (p *Plan) refuseMix(past map[string]*Entry) error {
 	return nil
 }
 
-// folded makes names alike that differ by case or by the form of their
+// folded makes paths alike whose names differ by case or by the form of their
 // characters, since not every file system tells them apart. Those that do take
 // names that are no text, too, which stay as they are.
 func folded(path string) string {
-	if strings.ToValidUTF8(path, "") != path {
-		return path
+	names := strings.Split(path, string(filepath.Separator))
+	for i, n := range names {
+		if utf8.ValidString(n) {
+			names[i] = norm.NFC.String(cases.Fold().String(norm.NFD.String(n)))
+		}
 	}
-	return norm.NFC.String(cases.Fold().String(norm.NFD.String(path)))
+	return strings.Join(names, string(filepath.Separator))
 }
 
 func sameFile(a, b string) bool {

@@ -179,7 +179,7 @@ func isWAV(path string) bool {
 	return false
 }
 
-// absolute is a path's one name, links resolved if it exists.
+// absolute is a path's one name, links resolved as far as it exists.
 func absolute(path string) string {
 	abs, err := filepath.Abs(path)
 	if err != nil {
@@ -187,6 +187,9 @@ func absolute(path string) string {
 	}
 	if real, err := filepath.EvalSymlinks(abs); err == nil {
 		return real
+	}
+	if parent := filepath.Dir(abs); parent != abs {
+		return filepath.Join(absolute(parent), filepath.Base(abs))
 	}
 	return abs
 }

@@ -14,10 +14,13 @@ type Job struct {
 	Chain  *filter.Chain
 	Output string // path
 	Rate   int    // Hz, 0 when the header could not be read
-	Frames int64
-	Bytes  int64 // of the recording's file
-	Need   int64 // bytes that its outputs will take, about
-	Done   bool  // the record says so, and nothing it depends on changed
+	Frames int64  // that will be rendered
+	Bytes  int64  // of the recording's file
+	// Need and NeedRemoved are the bytes that the output, and what is removed, will
+	// take, about.
+	Need, NeedRemoved int64
+	Done              bool   // the record says so, and nothing it depends on changed
+	past              *Entry // of an earlier run, or nil
 }
 
 // inspect reads the header; what is wrong with it comes up again when the job is
@@ -31,10 +34,17 @@ func (p *Plan) inspect(j *Job) {
 		return
 	}
 	defer r.Close()
-	j.Rate, j.Frames = r.Format().SampleRate, r.Frames()
-	j.Need = j.Bytes + j.Frames*int64(r.Format().NumChannels*(p.encoding(r).Bytes-r.Encoding().Bytes))
+	j.Rate = r.Format().SampleRate
+	from, to, err := p.Options.Stretch.frames(j.Rate, r.Frames())
+	if err != nil {
+		return
+	}
+	j.Frames = to - from
+	channels := int64(r.Format().NumChannels)
+	beside := j.Bytes - r.Frames()*channels*int64(r.Encoding().Bytes)
+	j.Need = beside + j.Frames*channels*int64(p.encoding(r).Bytes)
 	if p.Options.Removed != "" {
-		j.Need += j.Frames * int64(r.Format().NumChannels*removedEncoding.Bytes)
+		j.NeedRemoved = j.Frames * channels * int64(removedEncoding.Bytes)
 	}
 }
 

@@ -1,6 +1,7 @@
 package batch
 
 import (
+	"bufio"
 	"encoding/csv"
 	"errors"
 	"fmt"
@@ -25,7 +26,7 @@ func ReadList(path string) ([]Listed, error) {
 		return nil, fmt.Errorf("the list %s: cannot be read: %w; check its name and permissions", path, cause(err))
 	}
 	defer f.Close()
-	in := csv.NewReader(f)
+	in := csv.NewReader(withoutMark(f))
 	in.FieldsPerRecord = 0 // as many as the first line has
 	header, err := in.Read()
 	if err != nil {
@@ -59,9 +60,18 @@ func badList(path string, err error) error {
 	return fmt.Errorf("the list %s: %w; it must be comma-separated, with the columns recording and chain", path, err)
 }
 
+// withoutMark skips the byte order mark that some programs put before text.
+func withoutMark(r io.Reader) io.Reader {
+	in := bufio.NewReader(r)
+	if start, _ := in.Peek(3); string(start) == "\ufeff" {
+		in.Discard(3)
+	}
+	return in
+}
+
 func column(header []string, name string) int {
 	for i, h := range header {
-		if strings.EqualFold(strings.TrimSpace(strings.TrimPrefix(h, "\ufeff")), name) {
+		if strings.EqualFold(strings.TrimSpace(h), name) {
 			return i
 		}
 	}
@@ -75,12 +85,20 @@ func beside(list, path string) string {
 	return filepath.Join(filepath.Dir(list), path)
 }
 
+// rooted makes a path begin at the root, where links stay as they are.
+func rooted(path string) string {
+	if abs, err := filepath.Abs(path); err == nil {
+		return abs
+	}
+	return path
+}
+
 // inputs are the recordings of a list, with the paths they have below the list's
 // folder; one that lies elsewhere goes by its name alone.
 func inputs(list string, listed []Listed) []Input {
 	var out []Input
 	for _, l := range listed {
-		rel, err := filepath.Rel(filepath.Dir(list), l.Recording)
+		rel, err := filepath.Rel(rooted(filepath.Dir(list)), rooted(l.Recording))
 		if err != nil || !filepath.IsLocal(rel) {
 			rel = filepath.Base(l.Recording)
 		}

@@ -27,11 +27,14 @@ const recordExt = ".jsonl"
 var shardRecord = regexp.MustCompile(`(?i)^treatment\.[0-9]+-of-[0-9]+\.jsonl$`)
 
 func isRecordName(rel string) bool {
-	return strings.EqualFold(rel, RecordName) || shardRecord.MatchString(rel)
+	return strings.EqualFold(rel, RecordName) || strings.EqualFold(rel, removedMark) || shardRecord.MatchString(rel)
 }
 
-// isTreated tells an output folder: what is in it has been treated already.
-func isTreated(folder string) bool { return len(recordsIn(folder)) > 0 }
+// isTreated tells a folder that fettle wrote to: what is in it has been treated
+// already, or was taken out.
+func isTreated(folder string) bool {
+	return len(recordsIn(folder)) > 0 || holdsRemoved(folder)
+}
 
 // recordsIn lists the paths of a folder's records: the whole one first, then
 // those of shards by name.
@@ -66,13 +69,38 @@ func readPast(folder string) (map[string]*Entry, error) {
 	return past, nil
 }
 
-// readRecord gives the last entry of each output; none for a missing record.
-// A line that cannot be read is an error, but for a torn last one.
+// removedFiles are the files that hold what chains took out.
+func removedFiles(past map[string]*Entry) map[name]bool {
+	out := map[name]bool{}
+	for _, e := range past {
+		if e.Removed != "" {
+			out[e.Removed] = true
+		}
+	}
+	return out
+}
+
+// readRecord gives the last entry of each output.
 func readRecord(path string) (map[string]*Entry, error) {
+	entries, err := readEntries(path)
+	return latest(entries), err
+}
+
+// latest gives the last entry of each output.
+func latest(entries []*Entry) map[string]*Entry {
 	out := map[string]*Entry{}
+	for _, e := range entries {
+		out[filepath.FromSlash(string(e.Output))] = e
+	}
+	return out
+}
+
+// readEntries gives a record's entries in its order; none for a missing record.
+// A line that cannot be read is an error, but for a torn last one.
+func readEntries(path string) ([]*Entry, error) {
 	f, err := os.Open(path)
 	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, syscall.ENOTDIR) {
-		return out, nil
+		return nil, nil
 	}
 	if err != nil {
 		return nil, unreadableRecord(path, err)
@@ -81,6 +109,7 @@ func readRecord(path string) (map[string]*Entry, error) {
 	if info, err := f.Stat(); err == nil && !info.Mode().IsRegular() {
 		return nil, unreadableRecord(path, errors.New("it is no regular file"))
 	}
+	var out []*Entry
 	in := bufio.NewReader(f)
 	for n := 1; ; n++ {
 		line, err := in.ReadBytes('\n')
@@ -94,6 +123,6 @@ func readRecord(path string) (map[string]*Entry, error) {
 		if err := json.Unmarshal(line, e); err != nil || e.Schema != RecordSchema {
 			return nil, fmt.Errorf("the treatment record %s: line %d is none of its kind; move the file away to begin a new one", path, n)
 		}
-		out[filepath.FromSlash(string(e.Output))] = e
+		out = append(out, e)
 	}
 }

@@ -33,6 +33,7 @@ type Options struct {
 	NoProof     bool // do not read outputs back
 	Shard       Shard
 	Version     string
+	Limit       int64 // size in bytes beyond which outputs are RF64; 0: 4 GiB
 }
 
 // Headroom says how outputs are kept within full scale.
@@ -101,7 +102,7 @@ func (p *Plan) prepare() error {
 	for _, j := range p.Jobs {
 		p.inspect(j)
 	}
-	p.batch, p.count = identify(p.Jobs), len(p.Jobs)
+	p.batch, p.count = p.identify(), len(p.Jobs)
 	p.Jobs = p.Options.Shard.share(p.Jobs)
 	past, err := readPast(p.Options.Out)
 	if err != nil {
@@ -111,9 +112,10 @@ func (p *Plan) prepare() error {
 		return err
 	}
 	for _, j := range p.Jobs {
-		j.Done = !p.Options.Again && p.isDone(j, past[j.Rel])
+		j.past = past[j.Rel]
+		j.Done = !p.Options.Again && p.isDone(j, j.past)
 	}
-	return errors.Join(p.refuseMix(past), p.refuseFullDisk())
+	return errors.Join(p.refuseMix(), p.refuseFullDisk())
 }
 
 // pending is how many recordings are still to be treated.
@@ -139,7 +141,10 @@ func (p *Plan) PrepareOut() error {
 	if p.Options.Removed == "" {
 		return nil
 	}
-	return prepareFolder(p.Options.Removed, "folder for what is removed", "--removed")
+	if err := prepareFolder(p.Options.Removed, "folder for what is removed", "--removed"); err != nil {
+		return err
+	}
+	return p.markRemoved()
 }
 
 func prepareFolder(path, what, flag string) error {

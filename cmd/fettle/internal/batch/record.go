@@ -8,6 +8,8 @@ import (
 	"os"
 	"sync"
 	"time"
+
+	"fettle/audio/container"
 )
 
 // RecordName is the treatment record's file name in the output folder. A shard
@@ -77,9 +79,12 @@ type Entry struct {
 	Batch      string `json:"batch"`
 	BatchCount int    `json:"batch_recordings"`
 
-	Warnings []string `json:"warnings"`
+	// What became of the original's chunks beside its sound.
+	Kept      []container.Note `json:"chunks_kept"`
+	Corrected []container.Note `json:"chunks_corrected"`
+	Dropped   []container.Note `json:"chunks_dropped"`
 
-	loud int // how many of Warnings are said aloud; the last is of chunks left behind
+	Warnings []string `json:"warnings"`
 }
 
 // record appends entries to the treatment record, each flushed to disk. Those
@@ -132,24 +137,35 @@ func dropTorn(f *os.File) error {
 	return f.Truncate(end)
 }
 
-func (r *record) append(e *Entry) error {
-	var line bytes.Buffer
-	enc := json.NewEncoder(&line)
-	enc.SetEscapeHTML(false)
-	if err := enc.Encode(e); err != nil {
+func (r *record) append(entries ...*Entry) error {
+	lines, err := encode(entries)
+	if err != nil {
 		return err
 	}
 	r.mu.Lock()
 	defer r.mu.Unlock()
 	if r.err == nil {
-		_, r.err = r.file.Write(line.Bytes())
+		_, r.err = r.file.Write(lines)
 	}
-	r.written++
+	r.written += len(entries)
 	r.flush(r.written)
 	if r.err != nil {
 		return unwritableRecord(r.file.Name(), r.err)
 	}
 	return nil
+}
+
+// encode gives entries as they stand in a record, a line each.
+func encode(entries []*Entry) ([]byte, error) {
+	var lines bytes.Buffer
+	enc := json.NewEncoder(&lines)
+	enc.SetEscapeHTML(false)
+	for _, e := range entries {
+		if err := enc.Encode(e); err != nil {
+			return nil, err
+		}
+	}
+	return lines.Bytes(), nil
 }
 
 // flush returns once the first so many entries are on disk, or never will be.

@@ -12,6 +12,7 @@ import (
 	"sync"
 
 	"fettle/audio"
+	"fettle/audio/container"
 	"fettle/audio/pcm"
 	"fettle/filter"
 )
@@ -46,8 +47,6 @@ func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) 
 		return fmt.Errorf("%s: %w", j.Path, err)
 	}
 	describe(e, r.filter)
-	e.loud = len(e.Warnings)
-	e.Warnings = append(e.Warnings, notCarried(rec)...)
 	r.gain = math.Pow(10, -p.Options.Headroom.DB/20)
 	return r.fit(ctx, r.pass(ctx))
 }
@@ -75,24 +74,6 @@ func (p *Plan) encoding(rec *audio.Recording) pcm.Encoding {
 		return *p.Options.Encoding
 	}
 	return rec.Encoding()
-}
-
-// notCarried warns of chunks that stay behind: only sound is carried over.
-func notCarried(rec *audio.Recording) []string {
-	var ids []string
-	for _, c := range rec.Layout().Chunks {
-		switch c.ID {
-		case "fmt ", "data", "fact", "JUNK", "PAD ", "FLLR":
-		default:
-			if !slices.Contains(ids, c.ID) {
-				ids = append(ids, c.ID)
-			}
-		}
-	}
-	if ids == nil {
-		return nil
-	}
-	return []string{fmt.Sprintf("not carried over: chunks %q; they stand in the original", ids)}
 }
 
 // rendering is one recording on its way through.
@@ -201,7 +182,13 @@ func (r *rendering) filtered() (out audio.Source, before *audio.Meter, rest func
 // that it comes out as it would of the whole recording.
 func (r *rendering) context() (before, after int64) {
 	before, after = reach(r.filter)
-	return min(before, r.from), min(after, r.rec.Frames()-r.to)
+	length := r.rec.Frames()
+	if r.job.Chain.Edges == filter.Mirror {
+		// What stands before the first frame and after the last is a reflection, and
+		// comes from as far inside.
+		before, after = max(before, r.from-(length-1)+(r.to-1+after)-(length-1)), max(after, before-r.from-(r.to-1))
+	}
+	return min(before, r.from), min(after, length-r.to)
 }
 
 // overlapFrom is the least length in frames for which goroutines of their own pay.
@@ -210,7 +197,11 @@ const overlapFrom = 8 * block
 // create begins all that a recording becomes.
 func (r *rendering) create() (*outputs, error) {
 	o := &outputs{rec: r.rec, meter: audio.NewMeter(r.rec.Format().NumChannels)}
-	w, err := createIn(r.job.Output, "--out", r.spec())
+	spec, err := r.spec()
+	if err != nil {
+		return nil, err
+	}
+	w, err := createIn(r.job.Output, "--out", spec)
 	if err != nil {
 		return nil, err
 	}
@@ -233,14 +224,47 @@ func createIn(path, flag string, spec audio.Spec) (*audio.Writer, error) {
 
 // spec describes the output file. An unchanged sample format keeps the
 // original's own description, and with it valid bits and speaker positions.
-func (r *rendering) spec() audio.Spec {
+func (r *rendering) spec() (audio.Spec, error) {
 	format, encoding := r.rec.Format(), r.plan.encoding(r.rec)
-	s := audio.Spec{Rate: format.SampleRate, Channels: format.NumChannels, Encoding: encoding, Frames: r.to - r.from, Mode: 0o666}
+	s := audio.Spec{Rate: format.SampleRate, Channels: format.NumChannels, Encoding: encoding, Frames: r.to - r.from, Limit: r.plan.Options.Limit, Mode: 0o666}
 	if encoding == r.rec.Encoding() {
 		s.FmtChunk = r.rec.Layout().Fmt
 	}
 	s.Dither = r.dither(encoding)
-	return s
+	return s, r.carry(&s)
+}
+
+// carry takes over what else the original holds, as far as it stays true.
+func (r *rendering) carry(s *audio.Spec) error {
+	c, err := r.rec.Carry(container.Change{
+		Format: s.Format(), From: r.from, Frames: s.Frames,
+		Samples: r.gain != 1 || !r.untouched(), Text: r.history(),
+	})
+	if err != nil {
+		return err
+	}
+	s.Carriage = c
+	r.entry.Kept, r.entry.Corrected, r.entry.Dropped = c.Kept, c.Corrected, c.Dropped
+	return nil
+}
+
+// untouched tells whether no channel's samples change.
+func (r *rendering) untouched() bool {
+	for c := range r.rec.Format().NumChannels {
+		if !r.filter.Untouched(c + 1) {
+			return false
+		}
+	}
+	return true
+}
+
+// history says in a coding history what was done.
+func (r *rendering) history() string {
+	text := fmt.Sprintf("fettle %s; chain %s %.8s; %s", r.plan.Options.Version, r.job.Chain.Name, r.entry.ChainSHA256, r.filter.Phase())
+	if r.entry.Dither != "none" {
+		text += "; dither TPDF"
+	}
+	return text
 }
 
 // dither gives one to every channel that is requantised.
@@ -352,18 +376,20 @@ func (o *outputs) abort() error {
 	return err
 }
 
-// commit makes the files appear and enters them in the record.
+// commit makes the files appear and enters them in the record. The output goes
+// first: that it exceeds full scale shows here, and what an earlier run removed
+// must outlast it.
 func (o *outputs) commit(e *Entry) error {
-	if o.removed != nil {
-		if err := o.removed.commit(e); err != nil {
-			return errors.Join(err, o.writer.Abort())
-		}
-	}
 	if err := o.writer.Commit(); err != nil {
 		if o.removed != nil {
-			err = errors.Join(err, os.Remove(o.removed.path))
+			err = errors.Join(err, o.removed.abort())
 		}
 		return err
+	}
+	if o.removed != nil {
+		if err := o.removed.commit(e); err != nil {
+			return errors.Join(err, os.Remove(o.path))
+		}
 	}
 	info, err := os.Stat(o.path)
 	if err != nil {

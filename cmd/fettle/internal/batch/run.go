@@ -11,6 +11,7 @@ import (
 	"time"
 
 	"fettle/audio"
+	"fettle/audio/container"
 )
 
 // Progress is told how a run goes. Its methods are called from several
@@ -27,8 +28,7 @@ type Summary struct {
 	Done, Skipped int
 	Left          int      // not begun or not finished when the run was stopped
 	Failures      Problems // what could not be listed, then in the order of the plan
-	Warnings      Problems // of those done, but for chunks that were not carried over
-	Uncarried     int      // done, with chunks that were not carried over
+	Warnings      Problems // of those done
 }
 
 // Failed is how many recordings, or places to look for them, failed.
@@ -44,6 +44,9 @@ func (p *Plan) Run(ctx context.Context, progress Progress) (*Summary, error) {
 		return nil, err
 	}
 	p.sweep()
+	if err := p.adopt(rec); err != nil {
+		return nil, errors.Join(err, rec.close())
+	}
 	s, err := p.treatAll(ctx, rec, progress)
 	return s, errors.Join(err, rec.close())
 }
@@ -70,6 +73,8 @@ func (s slots) leave() { <-s }
 func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*Summary, error) {
 	ctx, stop := context.WithCancelCause(ctx)
 	defer stop(nil)
+	begin, beginNoMore := context.WithCancel(ctx)
+	defer beginNoMore()
 	results := make([]result, len(p.Jobs))
 	work := make(chan int)
 	p.slots = make(slots, max(1, p.Options.Jobs))
@@ -77,27 +82,24 @@ func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*S
 	for range p.workers() {
 		wg.Go(func() {
 			for i := range work {
+				if begin.Err() != nil {
+					p.slots.leave()
+					continue
+				}
 				var err error
 				if results[i], err = p.treat(ctx, p.Jobs[i], rec, progress); err != nil {
 					stop(err)
 				} else if results[i].err != nil && p.Options.StopOnError {
-					stop(errStopped)
+					beginNoMore()
 				}
 			}
 		})
 	}
-	p.feed(ctx, work)
+	p.feed(begin, work)
 	wg.Wait()
 	p.removeEmptyFolders(results)
-	s := p.sum(results)
-	if err := context.Cause(ctx); !errors.Is(err, errStopped) {
-		return s, err
-	}
-	return s, nil // the failure that stopped it is counted
+	return p.sum(results), context.Cause(ctx)
 }
-
-// errStopped ends a batch after a failure.
-var errStopped = errors.New("a recording failed")
 
 // coresEach is how many cores one recording may use.
 func (p *Plan) coresEach() int {
@@ -114,10 +116,19 @@ func (p *Plan) removeEmptyFolders(results []result) {
 		if p.Jobs[i].Done || r.entry != nil && r.err == nil {
 			continue
 		}
-		for rel := filepath.Dir(p.Jobs[i].Rel); rel != "."; rel = filepath.Dir(rel) {
-			if os.Remove(filepath.Join(p.Options.Out, rel)) != nil {
-				break // not empty, or not there
-			}
+		removeEmpty(p.Options.Out, p.Jobs[i].Rel)
+		if p.Options.Removed != "" {
+			removeEmpty(p.Options.Removed, p.Jobs[i].Rel)
+		}
+	}
+}
+
+// removeEmpty takes away the folders below root that rel is in and that hold
+// nothing.
+func removeEmpty(root, rel string) {
+	for rel = filepath.Dir(rel); rel != "."; rel = filepath.Dir(rel) {
+		if os.Remove(filepath.Join(root, rel)) != nil {
+			break // not empty, or not there
 		}
 	}
 }
@@ -161,11 +172,8 @@ func (p *Plan) sum(results []result) *Summary {
 			s.Failures = append(s.Failures, r.err)
 		default:
 			s.Done++
-			for _, w := range r.entry.Warnings[:r.entry.loud] {
+			for _, w := range r.entry.Warnings {
 				s.Warnings = append(s.Warnings, fmt.Errorf("%s: warning: %s", p.Jobs[i].Path, w))
-			}
-			if len(r.entry.Warnings) > r.entry.loud {
-				s.Uncarried++
 			}
 		}
 	}
@@ -196,6 +204,7 @@ func (p *Plan) newEntry(j *Job) *Entry {
 		Chain: j.Chain.Name, ChainSHA256: fmt.Sprintf("%x", j.Chain.SHA256), Settings: p.settings(j),
 		Shard: p.Options.Shard.String(), Batch: p.batch, BatchCount: p.count,
 		Edges: string(j.Chain.Edges), Kernel: p.Options.Kernel.String(), Warnings: []string{},
+		Kept: []container.Note{}, Corrected: []container.Note{}, Dropped: []container.Note{},
 		HeadroomDB: p.Options.Headroom.DB, TruePeakOversampling: audio.TruePeakOversampling,
 	}
 }

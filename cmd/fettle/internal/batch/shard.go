@@ -48,6 +48,9 @@ func shardOfArray(getenv func(string) string) (Shard, error) {
 		v[i] = n
 	}
 	id, least, step, count := v[0], v[1], max(1, v[2]), v[3]
+	if least > 1 {
+		return Shard{}, fmt.Errorf("auto: the array begins at %d, as one does that repeats a few tasks of another; give the part itself, such as %d/8", least, least)
+	}
 	s := Shard{(id-least)/step + 1, count}
 	if (id-least)%step != 0 || s.Index < 1 || s.Index > count {
 		return Shard{}, fmt.Errorf("auto: task %d of an array of %d from %d by %d has no place in a row; use an array without gaps, such as 1-%[2]d", id, count, least, step)
@@ -63,7 +66,7 @@ func (s Shard) share(jobs []*Job) []*Job {
 	}
 	order := slices.Clone(jobs)
 	slices.SortStableFunc(order, func(a, b *Job) int { return cmp.Compare(b.Bytes, a.Bytes) })
-	load := make([]int64, s.Count)
+	load := make([]int64, min(s.Count, len(jobs))) // more have nothing to do
 	mine := map[*Job]bool{}
 	for _, j := range order {
 		least := 0
@@ -81,12 +84,34 @@ func (s Shard) share(jobs []*Job) []*Job {
 // perRecording is what a recording costs beside its bytes, in bytes.
 const perRecording = 1 << 16
 
-// identify sums up which recordings a batch holds, so that parts of different
-// batches are not taken for parts of one.
-func identify(jobs []*Job) string {
+// identify sums up which recordings a batch holds and how they are treated, so that
+// parts of different batches are not taken for parts of one.
+func (p *Plan) identify() string {
 	h := sha256.New()
-	for _, j := range jobs {
-		fmt.Fprintf(h, "%q %d\n", j.Rel, j.Bytes)
+	for _, j := range p.Jobs {
+		fmt.Fprintf(h, "%q %d %s\n", j.Rel, j.Bytes, p.settings(j))
 	}
 	return fmt.Sprintf("%x", h.Sum(nil)[:8])
+}
+
+// adopt enters in a shard's record what is its part and was done before, for another
+// batch or as another shard, so that the record tells of the whole part.
+func (p *Plan) adopt(rec *record) error {
+	if p.Options.Shard.Count == 0 {
+		return nil
+	}
+	own, err := readRecord(p.recordPath())
+	if err != nil {
+		return err
+	}
+	var adopted []*Entry
+	for _, j := range p.Jobs {
+		if !j.Done || own[j.Rel] != nil && own[j.Rel].Batch == p.batch {
+			continue
+		}
+		e := *j.past
+		e.Shard, e.Batch, e.BatchCount = p.Options.Shard.String(), p.batch, p.count
+		adopted = append(adopted, &e)
+	}
+	return rec.append(adopted...)
 }

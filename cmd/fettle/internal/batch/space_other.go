@@ -16,4 +16,6 @@ func writable(folder string) error {
 	return errors.Join(probe.Close(), os.Remove(probe.Name()))
 }
 
+func sameVolume(string, string) bool { return false }
+
 func freeSpace(string) (int64, bool) { return 0, false }

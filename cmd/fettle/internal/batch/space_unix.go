@@ -7,6 +7,12 @@ import "golang.org/x/sys/unix"
 // writable says why files cannot be made in a folder.
 func writable(folder string) error { return unix.Access(folder, unix.W_OK|unix.X_OK) }
 
+// sameVolume tells whether two paths lie in one file system.
+func sameVolume(a, b string) bool {
+	var x, y unix.Stat_t
+	return unix.Stat(a, &x) == nil && unix.Stat(b, &y) == nil && x.Dev == y.Dev
+}
+
 // freeSpace is what an ordinary user may still write where path is, in bytes.
 func freeSpace(path string) (int64, bool) {
 	var s unix.Statfs_t

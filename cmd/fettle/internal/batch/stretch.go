@@ -35,7 +35,7 @@ func ParseStretch(from, to string) (Stretch, error) {
 		}
 	}
 	if !(s.To > s.From) {
-		return s, fmt.Errorf("--to: %s is not after --from %s", to, from)
+		return s, fmt.Errorf("--to: %s is not after %g s, where the stretch begins", to, s.From)
 	}
 	return s, nil
 }

@@ -7,41 +7,65 @@ import (
 	"strings"
 )
 
-// temporary is how the files are called that become outputs when they are whole:
-// hidden, and with digits behind the output's name.
-var temporary = regexp.MustCompile(`(?i)^\..+\.wave?[0-9]+$`)
+// Files that become outputs when they are whole are hidden and have a random number
+// of 63 bits behind the output's name. One in a million numbers is shorter than
+// fewestDigits, which keeps hidden files out that are numbered or dated.
+const (
+	fewestDigits = 13
+	mostDigits   = 19
+)
+
+var temporary = regexp.MustCompile(`(?i)^\..+\.wave?[0-9]{13,19}$`)
 
 func isTemporary(path string) bool { return temporary.MatchString(filepath.Base(path)) }
 
-// sweep removes what a run that was killed left of the recordings that are about
-// to be treated. What cannot be removed stays; verify tells of it.
+// sweep removes what a run that was killed left behind. What cannot be removed
+// stays; verify tells of it.
 func (p *Plan) sweep() {
-	bases := map[string][]string{} // of outputs, by folder
-	for _, j := range p.Jobs {
-		for _, path := range []string{j.Output, p.removedPath(j)} {
-			if path != "" {
-				bases[filepath.Dir(path)] = append(bases[filepath.Dir(path)], filepath.Base(path))
-			}
-		}
-	}
-	for folder, names := range bases {
-		sweepFolder(folder, names)
+	for _, path := range p.leftovers() {
+		os.Remove(path)
 	}
 }
 
-func sweepFolder(folder string, outputs []string) {
-	entries, err := os.ReadDir(folder)
-	if err != nil {
-		return // it is not there yet
+// leftovers lists the temporary files of the recordings that are about to be
+// treated, and of the record.
+func (p *Plan) leftovers() []string {
+	outputs := map[string]map[string]bool{} // names, by folder
+	enter := func(path string) {
+		folder, name := filepath.Split(path)
+		if outputs[folder] == nil {
+			outputs[folder] = map[string]bool{}
+		}
+		outputs[folder][name] = true
 	}
-	ours := map[string]bool{}
-	for _, o := range outputs {
-		ours["."+o] = true
-	}
-	for _, e := range entries {
-		name := e.Name()
-		if stem := strings.TrimRight(name, "0123456789"); stem != name && ours[stem] {
-			os.Remove(filepath.Join(folder, name))
+	enter(filepath.Join(p.Options.Out, RecordName))
+	for _, j := range p.Jobs {
+		enter(j.Output)
+		if path := p.removedPath(j); path != "" {
+			enter(path)
 		}
 	}
+	var out []string
+	for folder, names := range outputs {
+		entries, _ := os.ReadDir(filepath.Clean(folder)) // one that is not there yet holds none
+		for _, e := range entries {
+			if isTemporaryOf(e.Name(), names) {
+				out = append(out, filepath.Join(folder, e.Name()))
+			}
+		}
+	}
+	return out
+}
+
+// isTemporaryOf tells whether a file is one of these outputs on its way. Their names
+// may end in digits, too.
+func isTemporaryOf(file string, outputs map[string]bool) bool {
+	hidden, ok := strings.CutPrefix(file, ".")
+	digits := len(hidden) - len(strings.TrimRight(hidden, "0123456789"))
+	for n := fewestDigits; ok && n <= min(digits, mostDigits); n++ {
+		if outputs[hidden[:len(hidden)-n]] {
+			return true
+		}
+	}
+	return false
 }

@@ -29,7 +29,7 @@ type Check struct {
 // and unchanged since, and so is what was removed. Of an output that was treated
 // more than once, the last entry counts.
 func Verify(ctx context.Context, folder string, c Check) (*Verified, error) {
-	if !isTreated(folder) {
+	if len(recordsIn(folder)) == 0 {
 		return nil, fmt.Errorf("%s: there is no %s; name a folder that render wrote to", folder, RecordName)
 	}
 	past, err := readPast(folder)
@@ -116,12 +116,13 @@ func hasFrames(path string, want int64) error {
 // temporary files that a killed run left.
 func strangers(folder string, past map[string]*Entry) []string {
 	var out []string
+	removed := removedFiles(past)
 	_ = filepath.WalkDir(folder, func(path string, e fs.DirEntry, err error) error {
 		if err != nil || e.IsDir() {
 			return nil // what cannot be looked into has failed as an output
 		}
 		rel, _ := filepath.Rel(folder, path)
-		if past[rel] == nil && (isWAV(path) || isTemporary(path)) {
+		if past[rel] == nil && !removed[name(absolute(path))] && (isWAV(path) || isTemporary(path)) {
 			out = append(out, path)
 		}
 		return nil
