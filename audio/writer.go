@@ -32,7 +32,10 @@ type Spec struct {
 	// no chunks but the samples'.
 	Carriage *container.Carriage
 	// Limit is the size in bytes beyond which the file is RF64; 0: 4 GiB.
-	Limit  int64
+	Limit int64
+	// Proof, if not nil, looks at the whole file, whose bytes have the given SHA-256,
+	// before it gets its name. What it finds wrong makes Commit fail.
+	Proof  func(path, sha256 string) error
 	Dither []*pcm.Dither // nil, or an entry a channel, nil for none
 	Mode   fs.FileMode   // permissions before the umask; 0: 0o644
 }
@@ -212,6 +215,11 @@ func (w *Writer) finish() error {
 		return err
 	}
 	w.sum = hex.EncodeToString(w.hash.Sum(nil))
+	if w.spec.Proof != nil {
+		if err := w.spec.Proof(w.file.Name(), w.sum); err != nil {
+			return fmt.Errorf("%s: %w", w.path, err)
+		}
+	}
 	if err := w.file.CloseAtomicallyReplace(); err != nil {
 		return fmt.Errorf("%s: cannot be put in place: %w; check the disk and the folder", w.path, err)
 	}

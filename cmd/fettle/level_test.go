@@ -122,3 +122,15 @@ func fade(x []float64, n int) {
 		x[len(x)-1-i] *= w
 	}
 }
+
+// TestFitOneAtATime: a second pass takes its turn among the others.
+func TestFitOneAtATime(t *testing.T) {
+	for _, jobs := range []string{"1", "2"} {
+		b := newBench(t)
+		for _, name := range []string{"in/a.wav", "in/b.wav", "in/c.wav", "in/d.wav"} {
+			b.recording(name, "pcm16", rate, 1, tone(400, 0.9, 0.01, 0))
+		}
+		b.render(loudChain, "--headroom", "fit", "--jobs", jobs, b.path("in")).must(t, exitDone)
+		b.mustHold("a.wav", "b.wav", "c.wav", "d.wav")
+	}
+}

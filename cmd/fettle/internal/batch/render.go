@@ -231,6 +231,9 @@ func (r *rendering) spec() (audio.Spec, error) {
 		s.FmtChunk = r.rec.Layout().Fmt
 	}
 	s.Dither = r.dither(encoding)
+	if !r.plan.Options.NoProof {
+		s.Proof = r.prove
+	}
 	return s, r.carry(&s)
 }
 

@@ -133,17 +133,12 @@ func removeEmpty(root, rel string) {
 	}
 }
 
-// feed hands out the jobs in order, each with a slot, until the context ends.
+// feed hands out the jobs in order until the context ends.
 func (p *Plan) feed(ctx context.Context, work chan<- int) {
 	defer close(work)
 	for i, j := range p.Jobs {
 		if j.Done {
 			continue
-		}
-		select {
-		case p.slots <- struct{}{}:
-		case <-ctx.Done():
-			return
 		}
 		select {
 		case work <- i:
@@ -180,10 +175,15 @@ func (p *Plan) sum(results []result) *Summary {
 	return s
 }
 
-// treat renders one job, describes it for the record and appends that. It begins
-// with a slot, which render gives up as soon as only the disk is to be waited for.
-// The error is the record's.
+// treat renders one job, describes it for the record and appends that. It takes
+// a slot, which render gives up as soon as only the disk is to be waited for. The
+// error is the record's.
 func (p *Plan) treat(ctx context.Context, j *Job, rec *record, progress Progress) (result, error) {
+	p.slots.enter() // goroutines that wait for a channel get it in their order
+	if ctx.Err() != nil {
+		p.slots.leave()
+		return result{}, nil
+	}
 	e := p.newEntry(j)
 	err := p.render(ctx, j, e, progress)
 	if err != nil && ctx.Err() != nil {
