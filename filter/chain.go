@@ -20,6 +20,7 @@ type Chain struct {
 	Stages    []*Stage
 	Align     Align
 	Edges     Edges
+	Limits    []Limit // what the audit shall judge
 
 	// SHA256 is taken over the chain's text and the coefficient files it
 	// names: what must be the same for an output to be the same.
@@ -129,6 +130,7 @@ func (c *Chain) read(d *decoder, body ast.Node) {
 		c.Align = d.align(n)
 	}
 	c.Edges = Edges(f.word("edges", string(Silence), string(Silence), string(Hold), string(Mirror)))
+	c.Limits = d.limits(f)
 	f.done()
 }
 

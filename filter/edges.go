@@ -178,9 +178,7 @@ func copySteps(dst, ring []float64, channels, k, step int) {
 	size := len(ring) / channels
 	at := k % size
 	for ; len(dst) > 0; dst = dst[channels:] {
-		for c, v := range ring[at*channels:][:channels] {
-			dst[c] = v
-		}
+		copy(dst, ring[at*channels:][:channels])
 		if at += step; at < 0 {
 			at = size - 1
 		} else if at == size {

@@ -61,6 +61,7 @@ func TestBrokenChains(t *testing.T) {
 		"top":        brokenTop,
 		"yaml":       brokenYAML,
 		"given":      brokenGiven,
+		"limits":     brokenLimits,
 	} {
 		t.Run(name, func(t *testing.T) {
 			for _, b := range group {
@@ -74,7 +75,6 @@ var brokenKeys = []broken{
 	{"»colour: red\nstages: []", []string{`"colour"`, "name, phase, tolerance, stages, align, edges"}},
 	{"»stagez: []", []string{`no key "stagez"`, "stages"}}, // before: stages are missing
 	{"»name: x", []string{"lacks 'stages'"}},
-	{"stages: []\n»limits: [audibility]", []string{`"limits"`}},
 	{in("highpass: {at: 70 Hz, order: 4, »slope: 2}"), []string{"stage highpass", `"slope"`, "family, at, pass, order, phase, when, channels"}},
 	{in("highpass:\n      at: 70 Hz\n      order: 4\n      »slope: 2"), []string{`"slope"`}},
 	{in("highpass: {»att: 70 Hz, order: 4}"), []string{`"att"`, "at, pass, order"}},
