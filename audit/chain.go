@@ -3,6 +3,7 @@ package audit
 import (
 	"fettle/audio"
 	"fettle/audit/figures"
+	"fettle/audit/limits"
 	"fettle/filter"
 	"fettle/filter/stream/machine"
 )
@@ -11,8 +12,9 @@ import (
 type Result struct {
 	Chain   string
 	Phase   filter.Realisation
-	Rate    int // Hz
-	Channel int // from 1; 0: every channel that no stage names
+	Rate    int    // Hz
+	Channel int    // from 1; 0: every channel that no stage names
+	Stage   string // of one stage by itself, its text; "": the whole chain
 	// Shared tells that the path serves all channels alike.
 	Shared bool
 
@@ -34,6 +36,8 @@ type Result struct {
 	TargetErrorDB, ToleranceDB float64
 
 	Figures *figures.Figures
+	// Verdicts are on the limits that Judge was given.
+	Verdicts []limits.Verdict
 	// Disagreement in seconds between the arrivals by impulse and by chirp,
 	// and AnalyticDisagreement between impulse and the coefficients' own
 	// formulas, in the worst carried band; NaN when no band is carried.

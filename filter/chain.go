@@ -110,6 +110,14 @@ func Parse(text []byte, file string) (*Chain, error) {
 	return c, nil
 }
 
+// Alone is the chain with only one of its stages, by index: for what that stage
+// costs by itself.
+func (c *Chain) Alone(stage int) *Chain {
+	alone := *c
+	alone.Stages, alone.Limits = c.Stages[stage:stage+1], nil
+	return &alone
+}
+
 func (c *Chain) read(d *decoder, body ast.Node) {
 	f := d.mapping(body, "a chain", body)
 	if n, ok := f.get("name"); ok {

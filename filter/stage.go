@@ -38,6 +38,7 @@ func ParseRealisation(name string) (Realisation, error) {
 // Stage is one step of a chain as its file has it.
 type Stage struct {
 	Kind     string
+	Text     string      // as it stands in the file, on one line
 	Phase    Realisation // as written at the stage, Written if it is not
 	Channels []int       // from 1; empty: all
 	When     *Condition  // nil: always
@@ -131,7 +132,7 @@ func (c *Chain) readStage(d *decoder, n ast.Node) *Stage {
 	}
 	d.highest = 0
 	f := d.mapping(entry.Value, "stage "+name, entry.Key)
-	s := &Stage{Kind: name, kind: k}
+	s := &Stage{Kind: name, Text: oneLine(entry), kind: k}
 	s.at.line, s.at.column = position(entry.Key)
 	build := k.read(f, c)
 	s.readCommon(f)
@@ -286,3 +287,6 @@ func (c *Condition) Holds(rate float64) bool {
 	}
 	return rate < c.rate
 }
+
+// oneLine is a stage's text with its blanks and line ends made single blanks.
+func oneLine(n ast.Node) string { return strings.Join(strings.Fields(n.String()), " ") }

@@ -51,6 +51,7 @@ var briefRows = []struct {
 	{"pre-ring beyond 5 ms, white", ofFigures(func(f *figures.Figures) string { return ringLevel(f.PreRing.White.Beyond[1]) })},
 	{"post-ring to -60 dB, white", ofFigures(func(f *figures.Figures) string { return milliseconds(f.PostRing.White.Length) })},
 	{"sum test, dB", ofFigures(func(f *figures.Figures) string { return decimal(f.SumTest, 1) })},
+	{"limits", func(r *audit.Result) string { return limitsCell(r.Verdicts) }},
 	{"probes disagree by", func(r *audit.Result) string { return microseconds(r.Disagreement) }},
 }
 

@@ -51,7 +51,7 @@ type result struct {
 	Bands             []band            `json:"bands"`
 	Curve             curve             `json:"curve"`
 	Probes            probes            `json:"probes"`
-	Limits            []struct{}        `json:"limits"`
+	Limits            []verdict         `json:"limits"`
 	NotStated         map[string]string `json:"not_stated"`
 }
 
@@ -144,7 +144,7 @@ func resultOf(r *audit.Result) result {
 		PreRing: ringOf(f.PreRing), PostRing: ringOf(f.PostRing),
 		Bands: []band{}, Curve: curveOf(f.Curve),
 		Probes:    probes{number(r.Disagreement * toUS), number(r.AnalyticDisagreement * toUS)},
-		Limits:    []struct{}{},
+		Limits:    verdictsOf(r.Verdicts),
 		NotStated: map[string]string{},
 	}
 	for figure, reason := range f.NotStated {
@@ -152,6 +152,9 @@ func resultOf(r *audit.Result) result {
 	}
 	if r.Character != "" {
 		out.Character = &r.Character
+	}
+	if r.Stage != "" {
+		out.Stage = &r.Stage
 	}
 	if r.Channel > 0 {
 		out.Channel = &r.Channel

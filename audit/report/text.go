@@ -15,13 +15,14 @@ import (
 // Width is the most columns that a text report takes.
 const Width = 100
 
-// Text writes one result for a terminal: what was built, what it does to time
-// as a whole, and band by band. No line is longer than Width.
+// Text writes one result for a terminal: sentences, what was built, what it does
+// to time as a whole, and band by band. No line is longer than Width.
 func Text(w io.Writer, r *audit.Result) error {
 	var b strings.Builder
 	heading(&b, r)
 	whole(&b, r)
 	rings(&b, r.Figures)
+	limitsTable(&b, r.Verdicts)
 	bands(&b, r.Figures.Bands)
 	_, err := io.WriteString(w, b.String())
 	return err
@@ -30,6 +31,12 @@ func Text(w io.Writer, r *audit.Result) error {
 func heading(b *strings.Builder, r *audit.Result) {
 	title := fmt.Sprintf("%s, %s, %s", clip(r.Chain, 48), r.Phase, place(r))
 	fmt.Fprintf(b, "%s\n%s\n", title, strings.Repeat("=", len([]rune(title))))
+	for _, sentence := range Words(r) {
+		for i, line := range wrapped(sentence, Width-4) {
+			fmt.Fprintf(b, "%s%s\n", [...]string{"  ", "    "}[min(i, 1)], line)
+		}
+	}
+	b.WriteByte('\n')
 	fmt.Fprintf(b, "  %-22s %s\n", "built as", builtOf(r))
 	if r.Character != "" {
 		fmt.Fprintf(b, "  %-22s %s\n", "which is", r.Character)

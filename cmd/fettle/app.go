@@ -18,12 +18,13 @@ const (
 	exitDone        = 0
 	exitNotStarted  = 1 // usage, chain, no input: nothing was done
 	exitSomeFailed  = 2 // finished, but some recordings failed
+	exitLimit       = 3 // a limit is exceeded
 	exitInterrupted = 130
 )
 
 const exitHelp = `EXIT STATUS
    0 done; 1 could not start (usage, chain, no input); 2 finished, but some
-   recordings failed; 130 interrupted`
+   recordings failed; 3 a limit is exceeded; 130 interrupted`
 
 // failure carries an exit status; its error may be nil when all was said.
 type failure struct {
@@ -78,7 +79,7 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 	app := &cli.App{
 		Name:      "fettle",
 		Usage:     "clean recordings, aligned to the sample",
-		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN\nfettle export CHAIN\nfettle verify FOLDER\nfettle gather FOLDER",
+		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN\nfettle audit limits\nfettle export CHAIN\nfettle verify FOLDER\nfettle gather FOLDER",
 		Description: "Puts recordings through one chain of filters and hands them back aligned\n" +
 			"to the sample, with a record of what was done; and says in numbers what\n" +
 			"the chain does to time. Flags may stand before or after arguments.",

@@ -10,8 +10,10 @@ import (
 	"strings"
 
 	"fettle/audit"
+	"fettle/audit/limits"
 	"fettle/audit/report"
 	"fettle/filter"
+	"fettle/filter/stream/machine"
 
 	"github.com/urfave/cli/v2"
 )
@@ -20,8 +22,8 @@ func auditCommand() *cli.Command {
 	return &cli.Command{
 		Name:        "audit",
 		Usage:       "say what a chain does to time",
-		UsageText:   "fettle audit chain CHAIN",
-		Subcommands: []*cli.Command{auditChainCommand()},
+		UsageText:   "fettle audit chain CHAIN\nfettle audit limits",
+		Subcommands: []*cli.Command{auditChainCommand(), auditLimitsCommand()},
 		Action: func(c *cli.Context) error {
 			if c.Args().Present() {
 				return fmt.Errorf("%q: there is no such audit; see fettle audit --help", c.Args().First())
@@ -37,16 +39,28 @@ func auditChainCommand() *cli.Command {
 		Usage:     "measure a chain by impulse and by chirp",
 		UsageText: "fettle audit chain [options] CHAIN",
 		Description: "Sends both probes through the very path that render uses; nothing is\n" +
-			"played. Delay spread, smear and rings are defined in the README.\n\n" +
-			"EXIT STATUS\n   0 done; 1 could not start (usage, chain); 130 interrupted",
+			"played. Delay spread, smear and rings are defined in the README. A limit is\n" +
+			"a named set, see fettle audit limits, or a bound such as\n" +
+			"\"pre-ring=-60 dB beyond 5 ms\"; those of the chain are judged too.\n\n" +
+			"EXIT STATUS\n   0 done; 1 could not start (usage, chain); 3 a limit is exceeded;\n   130 interrupted",
 		Flags: []cli.Flag{
 			rateFlag(),
+			&cli.StringFlag{Name: "rates", Usage: "compare sample rates `LIST`, such as 44.1k,48k,96k"},
 			phaseFlag(),
+			limitFlag(),
+			flag("stages", "what each stage costs by itself, too"),
+			flag("methods", "print a paragraph for a treatment report instead"),
 			kernelFlag(),
 			jsonFlag(),
+			&cli.StringFlag{Name: "csv", Usage: "write the bands to `FILE`; -: in place of the table"},
+			&cli.StringFlag{Name: "curve-csv", Usage: "write the response over frequency to `FILE`"},
 		},
 		Action: auditChain,
 	}
+}
+
+func limitFlag() cli.Flag {
+	return &cli.GenericFlag{Name: "limit", Value: new(texts), Usage: "judge by `LIMIT`; may be given more than once"}
 }
 
 func rateFlag() cli.Flag {
@@ -62,64 +76,171 @@ func jsonFlag() cli.Flag {
 }
 
 func auditChain(c *cli.Context) error {
-	realise, err := oneChain(c)
+	a, err := newChainAudit(c)
 	if err != nil {
 		return err
 	}
-	kernel, _, err := kernelOf(c)
+	for _, name := range []string{c.String("json"), c.String("csv"), c.String("curve-csv")} {
+		if err := tryWriting(name); err != nil {
+			return err
+		}
+	}
+	results, err := unlessInterrupted(c.Context, a.run)
 	if err != nil {
 		return err
 	}
-	if err := tryWriting(c.String("json")); err != nil {
+	if err := a.print(c, results); err != nil {
 		return err
 	}
-	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) {
-		f, err := realise()
+	if err := writeReports(c, append(results, a.stages...)); err != nil {
+		return err
+	}
+	if audit.Exceeded(results) {
+		return &failure{exitLimit, nil}
+	}
+	return nil
+}
+
+// chainAudit is what the command line asks of a chain.
+type chainAudit struct {
+	chain  *filter.Chain
+	phase  filter.Realisation
+	rates  []int
+	kernel machine.Kernel
+	limits []limits.Limit
+	apart  bool            // each stage by itself, too
+	stages []*audit.Result // of the first rate
+}
+
+func newChainAudit(c *cli.Context) (a *chainAudit, err error) {
+	a = &chainAudit{apart: c.Bool("stages")}
+	if a.chain, a.phase, err = oneChain(c); err != nil {
+		return nil, err
+	}
+	if a.rates, err = ratesOf(c); err != nil {
+		return nil, err
+	}
+	if a.kernel, _, err = kernelOf(c); err != nil {
+		return nil, err
+	}
+	if a.limits, err = limitsOf(c, a.chain); err != nil {
+		return nil, err
+	}
+	return a, nil
+}
+
+// limitsOf are the chain's limits and then those of the command line.
+func limitsOf(c *cli.Context, chain *filter.Chain) ([]limits.Limit, error) {
+	all, err := limits.Resolve(chain.Limits)
+	if err != nil {
+		return nil, err
+	}
+	more, err := limits.Parse(*c.Generic("limit").(*texts)...)
+	if err != nil {
+		return nil, fmt.Errorf("--limit: %w", err)
+	}
+	return append(all, more...), nil
+}
+
+func (a *chainAudit) run() ([]*audit.Result, error) {
+	var all []*audit.Result
+	for _, rate := range a.rates {
+		f, err := a.chain.Realise(rate, a.phase)
 		if err != nil {
 			return nil, err
 		}
-		return audit.Chain(f, kernel)
-	})
-	if err != nil {
+		results, err := audit.Chain(f, a.kernel)
+		if err != nil {
+			return nil, err
+		}
+		for _, r := range results {
+			r.Judge(a.limits)
+		}
+		all = append(all, results...)
+	}
+	if !a.apart {
+		return all, nil
+	}
+	var err error
+	a.stages, err = audit.Stages(a.chain, a.rates[0], a.phase, a.kernel)
+	return all, err
+}
+
+// print prints the figures, unless standard output is for another form of them.
+func (a *chainAudit) print(c *cli.Context, results []*audit.Result) error {
+	w := c.App.Writer
+	switch {
+	case c.String("json") == "-", c.String("csv") == "-", c.String("curve-csv") == "-":
+		return nil
+	case c.Bool("methods"):
+		return printEach(w, results, func(r *audit.Result) error { return report.Methods(w, a.chain, r, c.App.Version) })
+	case len(a.rates) > 1:
+		fmt.Fprintf(w, "audit of %s\n", plain(a.chain.Name))
+		if err := report.Brief(w, results); err != nil {
+			return err
+		}
+	default:
+		if err := printEach(w, results, func(r *audit.Result) error { return report.Text(w, r) }); err != nil {
+			return err
+		}
+	}
+	if !a.apart {
+		return nil
+	}
+	fmt.Fprintln(w)
+	return report.Stages(w, a.stages)
+}
+
+// printEach puts an empty line between results.
+func printEach(w io.Writer, results []*audit.Result, print func(*audit.Result) error) error {
+	for i, r := range results {
+		if i > 0 {
+			fmt.Fprintln(w)
+		}
+		if err := print(r); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// writeReports writes the files that were asked for.
+func writeReports(c *cli.Context, results []*audit.Result) error {
+	if err := writeTo(c, c.String("csv"), func(w io.Writer) error { return report.BandsCSV(w, results) }); err != nil {
 		return err
 	}
-	if err := printTables(c, results); err != nil {
+	if err := writeTo(c, c.String("curve-csv"), func(w io.Writer) error { return report.CurveCSV(w, results) }); err != nil {
 		return err
 	}
 	return writeJSON(c, results)
 }
 
-// oneChain reads the one chain that is named, the rate and the phase; realising
-// it, which may take seconds, is left to the caller.
-func oneChain(c *cli.Context) (realise func() (*filter.Filter, error), err error) {
+// oneChain reads the one chain that is named, and the phase.
+func oneChain(c *cli.Context) (*filter.Chain, filter.Realisation, error) {
 	if c.NArg() != 1 {
-		return nil, fmt.Errorf("%s: takes one chain file, not %d; see fettle %s --help", c.Command.FullName(), c.NArg(), c.Command.FullName())
+		return nil, "", fmt.Errorf("%s: takes one chain file, not %d; see fettle %s --help", c.Command.FullName(), c.NArg(), c.Command.FullName())
 	}
-	rate, err := rateOf(c.String("rate"))
-	if err != nil {
-		return nil, err
-	}
-	chain, phase, err := loadChain(c.Args().First(), c.String("phase"))
-	if err != nil {
-		return nil, err
-	}
-	return func() (*filter.Filter, error) { return chain.Realise(rate, phase) }, nil
+	return loadChain(c.Args().First(), c.String("phase"))
 }
 
-// printTables prints the figures, unless standard output is for JSON.
-func printTables(c *cli.Context, results []*audit.Result) error {
-	if c.String("json") == "-" {
-		return nil
-	}
-	for i, r := range results {
-		if i > 0 {
-			fmt.Fprintln(c.App.Writer)
+// ratesOf reads the sample rates to audit at.
+func ratesOf(c *cli.Context) ([]int, error) {
+	texts := []string{c.String("rate")}
+	if list := c.String("rates"); list != "" {
+		if c.IsSet("rate") {
+			return nil, errors.New("--rates: names them all; leave out --rate")
 		}
-		if err := report.Text(c.App.Writer, r); err != nil {
-			return err
-		}
+		texts = strings.Split(list, ",")
 	}
-	return nil
+	var rates []int
+	for _, text := range texts {
+		rate, err := rateOf(strings.TrimSpace(text))
+		if err != nil {
+			return nil, err
+		}
+		rates = append(rates, rate)
+	}
+	return rates, nil
 }
 
 // writeJSON writes the report that --json asks for.
@@ -142,6 +263,10 @@ func loadChain(path, phaseName string) (*filter.Chain, filter.Realisation, error
 		return nil, "", err
 	}
 	chain, err := filter.Load(path)
+	if err != nil {
+		return nil, phase, err
+	}
+	_, err = limits.Resolve(chain.Limits) // whose names are known here only
 	return chain, phase, err
 }
 

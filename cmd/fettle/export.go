@@ -31,7 +31,11 @@ func exportCommand() *cli.Command {
 }
 
 func export(c *cli.Context) error {
-	realise, err := oneChain(c)
+	chain, phase, err := oneChain(c)
+	if err != nil {
+		return err
+	}
+	rate, err := rateOf(c.String("rate"))
 	if err != nil {
 		return err
 	}
@@ -39,7 +43,7 @@ func export(c *cli.Context) error {
 	if !slices.Contains(filter.Forms, form) {
 		return fmt.Errorf("--as: there is no form %q; allowed are %s", form, strings.Join(filter.Forms, ", "))
 	}
-	f, err := unlessInterrupted(c.Context, realise)
+	f, err := unlessInterrupted(c.Context, func() (*filter.Filter, error) { return chain.Realise(rate, phase) })
 	if err != nil {
 		return err
 	}

@@ -9,6 +9,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"unicode"
 	"unicode/utf8"
@@ -19,7 +20,11 @@ import (
 
 // ours is how a file begins that fettle wrote and may replace; a recording, a
 // chain or anybody's notes named by mistake must not be lost.
-var ours = []byte("{\n \"schema\": \"fettle.")
+var ours = [][]byte{[]byte("{\n \"schema\": \"fettle."), []byte("chain,phase,rate_hz,channel,stage,")}
+
+func isOurs(start []byte) bool {
+	return slices.ContainsFunc(ours, func(o []byte) bool { return bytes.HasPrefix(start, o) })
+}
 
 // tryWriting proves before any work is done that writeTo will succeed.
 func tryWriting(name string) error {
@@ -49,8 +54,8 @@ func mayReplace(name string) error {
 		return unwritable(name, err)
 	}
 	defer f.Close()
-	start := make([]byte, len(ours))
-	if n, _ := io.ReadFull(f, start); n > 0 && !bytes.Equal(start, ours) {
+	start := make([]byte, 64)
+	if n, _ := io.ReadFull(f, start); n > 0 && !isOurs(start[:n]) {
 		return fmt.Errorf("%s: is there already and is no report of fettle's; choose another file, or remove it", name)
 	}
 	return nil

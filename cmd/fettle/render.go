@@ -9,6 +9,7 @@ import (
 
 	"fettle/audio/pcm"
 	"fettle/audit"
+	"fettle/audit/limits"
 	"fettle/audit/report"
 	"fettle/cmd/fettle/internal/batch"
 	"fettle/filter"
@@ -45,6 +46,7 @@ func renderCommand() *cli.Command {
 			&cli.StringFlag{Name: "shard", Usage: "treat `PART` of the batch: 2/8, or auto in a Slurm array"},
 			flag("again", "treat again what is already done"),
 			flag("rehash", "tell by contents, not by size and time, what is done"),
+			flag("over-limit", "render although a limit of the chain is exceeded"),
 			flag("stop-on-error", "begin no more once a recording has failed"),
 			flag("no-proof", "do not read outputs back"),
 			flag("dry-run", "print what would be done, and do nothing"),
@@ -79,6 +81,9 @@ func render(c *cli.Context) error {
 // auditAndRun renders while the audit is under way, as nothing that is written
 // depends on it; of both, its figures come first.
 func auditAndRun(c *cli.Context, plan *batch.Plan) error {
+	if plan.HasLimits() {
+		return auditThenRun(c, plan)
+	}
 	ctx, cancel := context.WithCancel(c.Context)
 	defer cancel()
 	show := newProgress(plan)
@@ -86,7 +91,7 @@ func auditAndRun(c *cli.Context, plan *batch.Plan) error {
 	var failed error
 	var done sync.WaitGroup
 	done.Go(func() { summary, failed = plan.Run(ctx, show) })
-	err := auditPlan(c, plan)
+	_, err := auditPlan(c, plan)
 	if err != nil {
 		cancel()
 	} else {
@@ -98,6 +103,28 @@ func auditAndRun(c *cli.Context, plan *batch.Plan) error {
 		return err
 	}
 	return finishRun(c, plan, summary, failed)
+}
+
+// auditThenRun writes nothing if the audit finds a limit of a chain exceeded.
+func auditThenRun(c *cli.Context, plan *batch.Plan) error {
+	exceeded, err := auditPlan(c, plan)
+	if err != nil {
+		return err
+	}
+	if exceeded && !c.Bool("over-limit") {
+		return &failure{exitLimit, errors.New("a limit of the chain is exceeded, and nothing was written; fettle audit chain says by how much; change the chain, or render in spite of it with --over-limit")}
+	}
+	show := newProgress(plan)
+	show.start(c.Context, c.App.ErrWriter)
+	summary, err := plan.Run(c.Context, show)
+	show.close()
+	if err := finishRun(c, plan, summary, err); err != nil {
+		return err
+	}
+	if exceeded {
+		return &failure{exitLimit, nil}
+	}
+	return nil
 }
 
 func renderOptions(c *cli.Context) (batch.Options, error) {
@@ -169,11 +196,11 @@ func headroomOf(text string) (batch.Headroom, error) {
 }
 
 // auditPlan audits the chain at every rate that is about to be treated, and
-// prints and writes the figures.
-func auditPlan(c *cli.Context, plan *batch.Plan) error {
+// prints and writes the figures, and tells whether a limit is exceeded.
+func auditPlan(c *cli.Context, plan *batch.Plan) (exceeded bool, err error) {
 	all, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) { return audits(plan) })
 	if err != nil {
-		return err
+		return false, err
 	}
 	results := all
 	for c.String("json") != "-" && len(results) > 0 {
@@ -183,12 +210,12 @@ func auditPlan(c *cli.Context, plan *batch.Plan) error {
 		}
 		fmt.Fprintf(c.App.Writer, "audit of %s\n", plain(results[0].Chain))
 		if err := report.Brief(c.App.Writer, results[:n]); err != nil {
-			return err
+			return false, err
 		}
 		fmt.Fprintln(c.App.Writer)
 		results = results[n:]
 	}
-	return writeJSON(c, all)
+	return audit.Exceeded(all), writeJSON(c, all)
 }
 
 // audits leaves out a rate that the chain cannot serve: its recordings fail
@@ -206,6 +233,13 @@ func audits(plan *batch.Plan) ([]*audit.Result, error) {
 		of, err := audit.Chain(f, plan.Options.Kernel)
 		if err != nil {
 			return nil, err
+		}
+		judges, err := limits.Resolve(use.Chain.Limits)
+		if err != nil {
+			return nil, err
+		}
+		for _, r := range of {
+			r.Judge(judges)
 		}
 		results = append(results, of...)
 	}

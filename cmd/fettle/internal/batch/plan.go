@@ -129,6 +129,11 @@ func (p *Plan) pending() int {
 	return n
 }
 
+// HasLimits tells whether a chain of the plan asks for any.
+func (p *Plan) HasLimits() bool {
+	return slices.ContainsFunc(p.Jobs, func(j *Job) bool { return len(j.Chain.Limits) > 0 })
+}
+
 func (p *Plan) recordPath() string {
 	return filepath.Join(p.Options.Out, recordNameOf(p.Options.Shard))
 }
