@@ -6,6 +6,7 @@ import (
 	"errors"
 	"fmt"
 	"hash"
+	"hash/maphash"
 	"io"
 	"io/fs"
 	"os"
@@ -33,9 +34,10 @@ type Spec struct {
 	Carriage *container.Carriage
 	// Limit is the size in bytes beyond which the file is RF64; 0: 4 GiB.
 	Limit int64
-	// Proof, if not nil, looks at the whole file, whose bytes have the given SHA-256,
-	// before it gets its name. What it finds wrong makes Commit fail.
-	Proof  func(path, sha256 string) error
+	// Proof, if not nil, looks at the whole file before it gets its name, after its
+	// bytes were read back and compared with those sent. What it finds wrong makes
+	// Commit fail.
+	Proof  func(path string) error
 	Dither []*pcm.Dither // nil, or an entry a channel, nil for none
 	Mode   fs.FileMode   // permissions before the umask; 0: 0o644
 }
@@ -57,7 +59,8 @@ type Writer struct {
 	file      *renameio.PendingFile
 	out       io.Writer // the file
 	hash      hash.Hash
-	sum       string // set by Commit
+	sent      maphash.Hash // of the same bytes, for the proof
+	sum       string       // set by Commit
 	quantiser *pcm.Quantiser
 	buffer    []byte
 	used      int   // bytes of buffer that hold encoded frames
@@ -120,6 +123,9 @@ func (w *Writer) put(b []byte) error {
 		return fmt.Errorf("%s: cannot be written: %w; free space, or choose another folder", w.path, bare(err))
 	}
 	w.hash.Write(b) // never fails
+	if w.spec.Proof != nil {
+		w.sent.Write(b)
+	}
 	return nil
 }
 
@@ -215,15 +221,35 @@ func (w *Writer) finish() error {
 		return err
 	}
 	w.sum = hex.EncodeToString(w.hash.Sum(nil))
-	if w.spec.Proof != nil {
-		if err := w.spec.Proof(w.file.Name(), w.sum); err != nil {
-			return fmt.Errorf("%s: %w", w.path, err)
-		}
+	if err := w.prove(); err != nil {
+		return fmt.Errorf("%s: %w", w.path, err)
 	}
 	if err := w.file.CloseAtomicallyReplace(); err != nil {
 		return fmt.Errorf("%s: cannot be put in place: %w; check the disk and the folder", w.path, err)
 	}
 	return nil
+}
+
+// prove reads the file back. A keyed hash of 64 bits, many times as fast as
+// SHA-256, is enough to compare what was sent with what is there.
+func (w *Writer) prove() error {
+	if w.spec.Proof == nil {
+		return nil
+	}
+	f, err := os.Open(w.file.Name())
+	if err != nil {
+		return fmt.Errorf("cannot be read back: %w; check the disk", bare(err))
+	}
+	defer f.Close()
+	var back maphash.Hash
+	back.SetSeed(w.sent.Seed())
+	if _, err := io.CopyBuffer(struct{ io.Writer }{&back}, f, make([]byte, bufferBytes)); err != nil {
+		return fmt.Errorf("cannot be read back: %w; check the disk", bare(err))
+	}
+	if back.Sum64() != w.sent.Sum64() {
+		return errors.New("read back, it is not what was written; check the disk and the memory")
+	}
+	return w.spec.Proof(w.file.Name())
 }
 
 func (w *Writer) overs() error {

@@ -3,10 +3,12 @@ package audio
 import (
 	"bytes"
 	"errors"
+	"io"
 	"io/fs"
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"syscall"
 	"testing"
@@ -341,5 +343,63 @@ func TestCannotBePutInPlace(t *testing.T) {
 	entries, err := os.ReadDir(folder)
 	if err != nil || len(entries) != 1 || strings.HasPrefix(entries[0].Name(), ".") {
 		t.Errorf("left in the folder: %v, %v", entries, err)
+	}
+}
+
+// TestProofFindsDamage: bytes that changed on their way to the disk keep the
+// output from getting its name, and so does whatever the caller's proof finds.
+func TestProofFindsDamage(t *testing.T) {
+	for _, at := range []int64{0, 50, 100} {
+		path := filepath.Join(t.TempDir(), "a.wav")
+		var w *Writer
+		spec := Spec{Rate: 8000, Channels: 1, Encoding: pcm.Encoding{Bytes: 2, Bits: 16}, Frames: 100, Proof: func(string) error { return nil }}
+		w, err := Create(path, spec)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := w.WriteFrames(make([]float64, 100)); err != nil {
+			t.Fatal(err)
+		}
+		w.out = damaging{w.file, at}
+		if err := w.Commit(); err == nil || !strings.Contains(err.Error(), "not what was written") {
+			t.Errorf("byte %d damaged: %v", at, err)
+		}
+		if left, _ := os.ReadDir(filepath.Dir(path)); len(left) > 0 {
+			t.Errorf("%d files are left", len(left))
+		}
+	}
+}
+
+// damaging changes a byte of each piece.
+type damaging struct {
+	io.Writer
+	at int64
+}
+
+func (d damaging) Write(b []byte) (int, error) {
+	c := slices.Clone(b)
+	if d.at < int64(len(c)) {
+		c[d.at]++
+	}
+	return d.Writer.Write(c)
+}
+
+func TestProofIsAsked(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "a.wav")
+	asked := errors.New("asked")
+	w, err := Create(path, Spec{Rate: 8000, Channels: 1, Encoding: pcm.Encoding{Bytes: 2, Bits: 16}, Frames: 1, Proof: func(p string) error {
+		if _, err := Open(p); err != nil {
+			t.Error(err)
+		}
+		return asked
+	}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := errors.Join(w.WriteFrames([]float64{0}), w.Commit()); !errors.Is(err, asked) {
+		t.Errorf("error %v", err)
+	}
+	if _, err := os.Stat(path); err == nil {
+		t.Error("it is there all the same")
 	}
 }

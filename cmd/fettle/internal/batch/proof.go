@@ -6,18 +6,11 @@ import (
 	"fettle/audio"
 )
 
-// prove reads an output back before it gets its name: it is what was sent, a
-// recording of as many frames, and in step with the original.
-func (r *rendering) prove(path, want string) error {
+// prove looks at an output before it gets its name: it is a recording of as many
+// frames as were sent.
+func (r *rendering) prove(path string) error {
 	r.plan.slots.enter()
 	defer r.plan.slots.leave()
-	sum, _, err := hashFile(path)
-	if err != nil {
-		return fmt.Errorf("cannot be read back: %w; check the disk", cause(err))
-	}
-	if sum != want {
-		return fmt.Errorf("read back, it is not what was written: SHA-256 %s, sent %s; check the disk and the memory", sum, want)
-	}
 	out, err := audio.Open(path)
 	if err != nil {
 		return fmt.Errorf("read back, it is no recording: %w", err)
