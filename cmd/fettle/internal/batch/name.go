@@ -47,6 +47,9 @@ func (n *name) UnmarshalJSON(raw []byte) error {
 		if err != nil {
 			return fmt.Errorf("%q: U+0000 without two hexadecimal digits: %w", text, err)
 		}
+		if b[0] == 0 {
+			return fmt.Errorf("%q: no path holds a byte of 0", text)
+		}
 		parts[i+1] = string(b) + part[2:]
 	}
 	*n = name(strings.Join(parts, ""))

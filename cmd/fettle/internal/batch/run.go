@@ -82,12 +82,8 @@ func (p *Plan) treatAll(ctx context.Context, rec *record, progress Progress) (*S
 	for range p.workers() {
 		wg.Go(func() {
 			for i := range work {
-				if begin.Err() != nil {
-					p.slots.leave()
-					continue
-				}
 				var err error
-				if results[i], err = p.treat(ctx, p.Jobs[i], rec, progress); err != nil {
+				if results[i], err = p.treat(ctx, begin, p.Jobs[i], rec, progress); err != nil {
 					stop(err)
 				} else if results[i].err != nil && p.Options.StopOnError {
 					beginNoMore()
@@ -176,11 +172,11 @@ func (p *Plan) sum(results []result) *Summary {
 }
 
 // treat renders one job, describes it for the record and appends that. It takes
-// a slot, which render gives up as soon as only the disk is to be waited for. The
-// error is the record's.
-func (p *Plan) treat(ctx context.Context, j *Job, rec *record, progress Progress) (result, error) {
+// a slot, which render gives up as soon as only the disk is to be waited for, unless
+// begin has ended by then. The error is the record's.
+func (p *Plan) treat(ctx, begin context.Context, j *Job, rec *record, progress Progress) (result, error) {
 	p.slots.enter() // goroutines that wait for a channel get it in their order
-	if ctx.Err() != nil {
+	if begin.Err() != nil {
 		p.slots.leave()
 		return result{}, nil
 	}

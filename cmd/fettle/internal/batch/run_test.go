@@ -230,7 +230,7 @@ func TestNames(t *testing.T) {
 	if raw, err := name("a/\xe9.wav").MarshalJSON(); err != nil || strings.TrimSpace(string(raw)) != `"a/\u0000e9.wav"` {
 		t.Errorf("%s, %v", raw, err)
 	}
-	for _, bad := range []string{`"\u0000"`, `"\u00004"`, `"\u0000xy"`, `1`} {
+	for _, bad := range []string{`"\u0000"`, `"\u00004"`, `"\u0000xy"`, `"\u000000"`, `1`} {
 		if err := json.Unmarshal([]byte(bad), new(name)); err == nil {
 			t.Errorf("%s is taken for a name", bad)
 		}
