@@ -59,7 +59,9 @@ type Plan struct {
 	count int    // of them
 	mu    sync.Mutex
 	made  map[Use]func() (*filter.Filter, error)
-	slots slots // of the run
+
+	responses map[*filter.Path][]complex128 // see known
+	slots     slots                         // of the run
 }
 
 // New plans a batch that puts everything through one chain. It reads headers and

@@ -2,12 +2,17 @@ package batch
 
 import (
 	"fmt"
+	"io"
+	"math"
+	"math/cmplx"
 
 	"fettle/audio"
+	"fettle/audit/pair"
+	"fettle/filter"
 )
 
 // prove looks at an output before it gets its name: it is a recording of as many
-// frames as were sent.
+// frames as were sent, and in step with the original.
 func (r *rendering) prove(path string) error {
 	r.plan.slots.enter()
 	defer r.plan.slots.leave()
@@ -19,5 +24,177 @@ func (r *rendering) prove(path string) error {
 	if out.Frames() != r.entry.Frames {
 		return fmt.Errorf("read back, it has %d frames instead of %d; check the disk", out.Frames(), r.entry.Frames)
 	}
+	return r.proveAlignment(out)
+}
+
+// mostOff is how many samples an output may be off.
+const mostOff = 0.01
+
+// proveAlignment compares windows of the original and of the output, spread over
+// them, channel by channel. The record gets the channel that is worst off.
+func (r *rendering) proveAlignment(out *audio.Recording) error {
+	channels := out.Format().NumChannels
+	alignments := make([]*pair.Alignment, channels)
+	windows, length := r.windows()
+	for c := range alignments {
+		known := r.plan.known(r.filter, r.filter.PathOf(c+1))
+		alignments[c] = pair.NewAlignment(out.Format().SampleRate, int64(len(windows))*length, known)
+	}
+	if err := r.compareWindows(out, windows, length, alignments); err != nil {
+		return err
+	}
+	for c, a := range alignments {
+		p := a.Result()
+		if err := r.judge(p, c); err != nil {
+			return err
+		}
+		r.enter(p)
+	}
 	return nil
+}
+
+// judge makes of an output that is certainly off an error.
+func (r *rendering) judge(p pair.Placement, channel int) error {
+	switch {
+	case p.Unrelated && r.loud():
+		return fmt.Errorf("channel %d is not what the chain makes of the original: %s; please report this", channel+1, p.NotStated)
+	case p.NotStated == "" && p.Inverted:
+		return fmt.Errorf("channel %d is inverted against what the chain makes of the original; please report this", channel+1)
+	case math.Abs(p.Delay)-p.Err > mostOff:
+		return fmt.Errorf("channel %d is %.3f samples (±%.3f) off its place; please report this", channel+1, p.Delay, p.Err)
+	}
+	return nil
+}
+
+// loud tells whether an output stands 40 dB above the rounding of 16 bits, so that
+// what it consists of is signal.
+func (r *rendering) loud() bool { return r.entry.PeakOut != nil && *r.entry.PeakOut > -50 }
+
+// enter keeps the channel that is worst off, one that states something before one
+// that does not.
+func (r *rendering) enter(p pair.Placement) {
+	e := r.entry
+	switch {
+	case p.NotStated != "":
+		if e.Alignment == nil {
+			e.AlignmentNotStated = p.NotStated
+		}
+	case e.Alignment == nil || math.Abs(p.Delay) > math.Abs(*e.Alignment):
+		e.Alignment, e.AlignmentErr, e.AlignmentNotStated = &p.Delay, finite(p.Err), ""
+	}
+}
+
+func finite(x float64) *float64 {
+	if math.IsNaN(x) || math.IsInf(x, 0) {
+		return nil
+	}
+	return &x
+}
+
+const (
+	mostWindows  = 12
+	windowFrames = 4 * pair.AlignmentSize
+)
+
+// windows are where, in the output, so many frames are looked at: all of a short
+// recording, else windows spread evenly over it.
+func (r *rendering) windows() (starts []int64, length int64) {
+	frames := r.entry.Frames
+	if frames <= mostWindows*windowFrames {
+		return []int64{0}, frames
+	}
+	for i := range int64(mostWindows) {
+		starts = append(starts, i*(frames-windowFrames)/(mostWindows-1))
+	}
+	return starts, windowFrames
+}
+
+// compareWindows feeds every channel's alignment.
+func (r *rendering) compareWindows(out *audio.Recording, starts []int64, length int64, to []*pair.Alignment) error {
+	original, err := audio.Open(r.job.Path)
+	if err != nil {
+		return err
+	}
+	defer original.Close()
+	channels := len(to)
+	x, y := make([]float64, proofFrames*channels), make([]float64, proofFrames*channels)
+	plane := make([]float64, 2*proofFrames)
+	for _, start := range starts {
+		if err := original.SeekFrame(r.from + start); err != nil {
+			return err
+		}
+		if err := out.SeekFrame(start); err != nil {
+			return err
+		}
+		for left := length; left > 0; {
+			n := int(min(left, proofFrames))
+			if err := readFull(original, x[:n*channels]); err != nil {
+				return err
+			}
+			if err := readFull(out, y[:n*channels]); err != nil {
+				return err
+			}
+			for c, a := range to {
+				pick(plane[:n], x, c, channels)
+				pick(plane[proofFrames:][:n], y, c, channels)
+				a.Add(plane[:n], plane[proofFrames:][:n])
+			}
+			left -= int64(n)
+		}
+	}
+	return nil
+}
+
+// proofFrames is how many frames are read at a time.
+const proofFrames = 4096
+
+// readFull reads until x is full.
+func readFull(src audio.Source, x []float64) error {
+	for len(x) > 0 {
+		n, err := src.ReadFrames(x)
+		if err == io.EOF {
+			return io.ErrUnexpectedEOF
+		}
+		if err != nil {
+			return err
+		}
+		x = x[n*src.Format().NumChannels:]
+	}
+	return nil
+}
+
+// pick takes one channel out of interleaved frames.
+func pick(plane, frames []float64, channel, channels int) {
+	for i := range plane {
+		plane[i] = frames[i*channels+channel]
+	}
+}
+
+// known gives a path's response as outputs have it, aligned; computed once.
+func (p *Plan) known(f *filter.Filter, path *filter.Path) []complex128 {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if p.responses[path] == nil {
+		if p.responses == nil {
+			p.responses = map[*filter.Path][]complex128{}
+		}
+		p.responses[path] = alignedResponse(f, path)
+	}
+	return p.responses[path]
+}
+
+// alignedResponse is at the bins of pair.AlignmentSize points. The transform is long
+// enough for the whole of a kernel.
+func alignedResponse(f *filter.Filter, path *filter.Path) []complex128 {
+	size := pair.AlignmentSize
+	for size < 2*len(path.System.Taps) {
+		size *= 2
+	}
+	all, _ := path.Response(size)
+	step := 2 * math.Pi / float64(size) * float64(f.Shift(path))
+	var known []complex128
+	for k := 0; k < len(all); k += size / pair.AlignmentSize {
+		known = append(known, all[k]*cmplx.Rect(1, step*float64(k)))
+	}
+	return known
 }

@@ -79,6 +79,13 @@ type Entry struct {
 	Batch      string `json:"batch"`
 	BatchCount int    `json:"batch_recordings"`
 
+	// How many samples the output, read back, is off the place that the chain's
+	// own response gives it, and half the width of that figure's 95 % interval; null
+	// and a reason where the recording does not tell. All empty without proof.
+	Alignment          *float64 `json:"alignment_samples"`
+	AlignmentErr       *float64 `json:"alignment_samples_err"`
+	AlignmentNotStated string   `json:"alignment_not_stated"`
+
 	// What became of the original's chunks beside its sound.
 	Kept      []container.Note `json:"chunks_kept"`
 	Corrected []container.Note `json:"chunks_corrected"`
@@ -103,6 +110,9 @@ func openRecord(path string) (*record, error) {
 	f, err := os.OpenFile(path, os.O_RDWR|os.O_APPEND|os.O_CREATE, 0o666)
 	if err != nil {
 		return nil, unwritableRecord(path, err)
+	}
+	if !alone(f) {
+		return nil, errors.Join(fmt.Errorf("the treatment record %s: another run is writing to it; wait for that to end, or choose another folder for --out", path), f.Close())
 	}
 	if err := dropTorn(f); err != nil {
 		return nil, errors.Join(unwritableRecord(path, err), f.Close())

@@ -236,3 +236,18 @@ func TestNames(t *testing.T) {
 		}
 	}
 }
+
+// TestOneRunAtATime: two would sweep each other's files away.
+func TestOneRunAtATime(t *testing.T) {
+	in, out := filepath.Join(t.TempDir(), "in"), filepath.Join(t.TempDir(), "out")
+	recording(t, filepath.Join(in, "a.wav"), 10)
+	first := newPlan(t, in, out, 1)
+	rec, err := openRecord(first.recordPath())
+	mustDo(t, err)
+	if _, err := newPlan(t, in, out, 1).Run(context.Background(), &watcher{}); err == nil || !strings.Contains(err.Error(), "another run") {
+		t.Errorf("a second run: %v", err)
+	}
+	mustDo(t, rec.close())
+	_, err = first.Run(context.Background(), &watcher{})
+	mustDo(t, err)
+}

@@ -2,10 +2,20 @@
 
 package batch
 
-import "golang.org/x/sys/unix"
+import (
+	"os"
+
+	"golang.org/x/sys/unix"
+)
 
 // writable says why files cannot be made in a folder.
 func writable(folder string) error { return unix.Access(folder, unix.W_OK|unix.X_OK) }
+
+// alone locks a file for as long as it is open, and tells whether nobody else
+// has. Where a file system knows no locks everyone is taken to be alone.
+func alone(f *os.File) bool {
+	return unix.Flock(int(f.Fd()), unix.LOCK_EX|unix.LOCK_NB) != unix.EWOULDBLOCK
+}
 
 // sameVolume tells whether two paths lie in one file system.
 func sameVolume(a, b string) bool {

@@ -1,0 +1,141 @@
+package onsets
+
+import (
+	"errors"
+	"fmt"
+	"io"
+
+	"fettle/audio"
+)
+
+const (
+	// chunkSeconds is how much is read at a time.
+	chunkSeconds = 0.1
+	// leastRate is the lowest rate in Hz at which an envelope of 2 ms means anything.
+	leastRate = 4000
+)
+
+// Options say what else Measure lists.
+type Options struct {
+	// Strongest is how many of the strongest onsets to list, Apart how many seconds
+	// apart at least; see Strongest.
+	Strongest int
+	Apart     float64
+}
+
+// Measure compares the onsets of an original with those of an aligned processed
+// recording of the same rate, channels and length. It reads both once, in step,
+// and closes neither. Errors are of reading, or say that the two do not go
+// together; what the recordings do not show is in the Report.
+func Measure(original, processed audio.Source, o Options) (*Report, error) {
+	a, b := original.Format(), processed.Format()
+	if a.SampleRate != b.SampleRate || a.NumChannels != b.NumChannels {
+		return nil, fmt.Errorf("the original has %d channel(s) at %d Hz, the processed recording %d at %d Hz; compare recordings of the same rate and channels",
+			a.NumChannels, a.SampleRate, b.NumChannels, b.SampleRate)
+	}
+	tallies := make([]*channelTally, a.NumChannels)
+	for c := range tallies {
+		tallies[c] = newChannelTally()
+	}
+	strongest := newRanking(o.Strongest, o.Apart, a.NumChannels)
+	tracks, frames, err := follow(original, processed, func(o Onset) {
+		tallies[o.Channel-1].add(o)
+		strongest.add(o)
+	})
+	if err != nil {
+		return nil, err
+	}
+	r := &Report{Rate: a.SampleRate, Frames: frames, Strongest: strongest.list()}
+	for c, t := range tracks {
+		r.Channels = append(r.Channels, tallies[c].report(t))
+	}
+	return r, nil
+}
+
+// Detect gives the onsets of a recording to found, each channel's in order of time,
+// some tenths of a second after they were read. It reads the recording to
+// its end.
+func Detect(src audio.Source, found func(Onset)) error {
+	_, _, err := follow(src, nil, found)
+	return err
+}
+
+// Strongest lists the onsets of a recording with the highest peaks, the strongest
+// first: at most so many, and no two within apart seconds, whatever their channels.
+func Strongest(src audio.Source, count int, apart float64) ([]Onset, error) {
+	strongest := newRanking(count, apart, src.Format().NumChannels)
+	if err := Detect(src, strongest.add); err != nil {
+		return nil, err
+	}
+	return strongest.list(), nil
+}
+
+// follow reads an original and, unless it is nil, a processed recording in step to
+// the end, and gives every onset to found.
+func follow(original, processed audio.Source, found func(Onset)) (tracks []*track, frames int64, err error) {
+	format := original.Format()
+	if format.SampleRate < leastRate {
+		return nil, 0, fmt.Errorf("onsets cannot be timed at %d Hz; use a recording of at least %d Hz", format.SampleRate, leastRate)
+	}
+	for c := range format.NumChannels {
+		tracks = append(tracks, newTrack(c+1, float64(format.SampleRate), processed != nil, found))
+	}
+	buffer := make([]float64, int(chunkSeconds*float64(format.SampleRate))*format.NumChannels)
+	for end := false; !end; {
+		n, err := fill(original, buffer)
+		if err != nil {
+			return nil, 0, fmt.Errorf("reading the original: %w", err)
+		}
+		end = n < len(buffer)
+		for c, t := range tracks {
+			t.original.append(buffer[:n], c, len(tracks))
+		}
+		if processed != nil {
+			if err := alongside(processed, tracks, buffer, n); err != nil {
+				return nil, 0, err
+			}
+		}
+		frames += int64(n / len(tracks))
+		for _, t := range tracks {
+			t.advance(end)
+		}
+	}
+	return tracks, frames, nil
+}
+
+// alongside reads as many samples of the processed recording as there were of the
+// original.
+func alongside(processed audio.Source, tracks []*track, buffer []float64, n int) error {
+	got, err := fill(processed, buffer)
+	if err != nil {
+		return fmt.Errorf("reading the processed recording: %w", err)
+	}
+	if got != n {
+		longer, shorter := "original", "processed recording"
+		if got > n {
+			longer, shorter = shorter, longer
+		}
+		return fmt.Errorf("the %s is longer than the %s; compare an aligned recording of the same length", longer, shorter)
+	}
+	for c, t := range tracks {
+		t.processed.append(buffer[:n], c, len(tracks))
+	}
+	return nil
+}
+
+// fill reads frames until dst is full or the source ends, and returns how many
+// samples that are.
+func fill(src audio.Source, dst []float64) (int, error) {
+	filled := 0
+	for filled < len(dst) {
+		frames, err := src.ReadFrames(dst[filled:])
+		if errors.Is(err, io.EOF) {
+			break
+		}
+		if err != nil {
+			return filled, err
+		}
+		filled += frames * src.Format().NumChannels
+	}
+	return filled, nil
+}
