@@ -91,7 +91,7 @@ func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, s Setup) *
 	for _, p := range f.paths {
 		var channels []int
 		for c := range format.NumChannels {
-			if f.pathOf(c+1) == p {
+			if f.PathOf(c+1) == p {
 				channels = append(channels, c)
 			}
 		}
@@ -105,7 +105,7 @@ func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, s Setup) *
 	}
 	for i := range a.lanes {
 		l := &a.lanes[i]
-		wait := lead - f.align.skip(f.pathOf(l.channels[0]+1)) - l.kernel.Delay()
+		wait := lead - f.align.skip(f.PathOf(l.channels[0]+1)) - l.kernel.Delay()
 		if wait > 0 {
 			l.kernel = stream.Series(l.kernel, stream.NewDelay(wait, len(l.channels)))
 		}
@@ -123,8 +123,8 @@ func (f *Filter) newAligned(src audio.Source, format *goaudio.Format, s Setup) *
 	return a
 }
 
-// pathOf finds the path of a channel, from 1.
-func (f *Filter) pathOf(channel int) *Path {
+// PathOf finds the path of a channel, from 1.
+func (f *Filter) PathOf(channel int) *Path {
 	for _, p := range f.paths {
 		if p.Channel == channel {
 			return p

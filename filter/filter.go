@@ -35,7 +35,7 @@ func (f *Filter) Paths() []*Path { return f.paths }
 // Untouched tells whether a channel (from 1) comes out with the very samples
 // that went in, moved by whole frames at most: nothing is requantised.
 func (f *Filter) Untouched(channel int) bool {
-	s := f.pathOf(channel).System
+	s := f.PathOf(channel).System
 	return s.Taps == nil && len(s.Sections) == 0 && len(s.Zero) == 0
 }
 

@@ -9,6 +9,7 @@ import (
 
 	"fettle/audit"
 	"fettle/audit/figures"
+	"fettle/audit/onsets"
 )
 
 // Schema names the layout of the JSON report.
@@ -19,6 +20,15 @@ type document struct {
 	Schema  string   `json:"schema"`
 	Version string   `json:"version"`
 	Results []result `json:"results"`
+	// Onsets is null unless a recording was named.
+	Onsets *onsetsDocument `json:"onsets"`
+}
+
+// Heard is a recording that was put through the chain, and what became of its
+// onsets.
+type Heard struct {
+	Recording string
+	Onsets    *onsets.Report
 }
 
 type result struct {
@@ -120,7 +130,12 @@ func ms(seconds float64) number { return number(seconds * toMS) }
 
 // JSON writes audit results as one document.
 func JSON(w io.Writer, results []*audit.Result, version string) error {
-	doc := document{Schema: Schema, Version: version, Results: []result{}}
+	return JSONHeard(w, results, Heard{}, version)
+}
+
+// JSONHeard is JSON with what was found on a recording.
+func JSONHeard(w io.Writer, results []*audit.Result, heard Heard, version string) error {
+	doc := document{Schema: Schema, Version: version, Results: []result{}, Onsets: onsetsJSON(heard.Recording, heard.Onsets)}
 	for _, r := range results {
 		doc.Results = append(doc.Results, resultOf(r))
 	}

@@ -9,8 +9,10 @@ import (
 	"os"
 	"strings"
 
+	"fettle/audio"
 	"fettle/audit"
 	"fettle/audit/limits"
+	"fettle/audit/onsets"
 	"fettle/audit/report"
 	"fettle/filter"
 	"fettle/filter/stream/machine"
@@ -48,6 +50,7 @@ func auditChainCommand() *cli.Command {
 			&cli.StringFlag{Name: "rates", Usage: "compare sample rates `LIST`, such as 44.1k,48k,96k"},
 			phaseFlag(),
 			limitFlag(),
+			&cli.StringFlag{Name: "recording", Usage: "what becomes of the onsets in `FILE`, too"},
 			flag("stages", "what each stage costs by itself, too"),
 			flag("methods", "print a paragraph for a treatment report instead"),
 			kernelFlag(),
@@ -92,7 +95,7 @@ func auditChain(c *cli.Context) error {
 	if err := a.print(c, results); err != nil {
 		return err
 	}
-	if err := writeReports(c, append(results, a.stages...)); err != nil {
+	if err := writeReports(c, append(results, a.stages...), a.heard); err != nil {
 		return err
 	}
 	if audit.Exceeded(results) {
@@ -109,11 +112,12 @@ type chainAudit struct {
 	kernel machine.Kernel
 	limits []limits.Limit
 	apart  bool            // each stage by itself, too
+	heard  report.Heard    // empty: no recording is named
 	stages []*audit.Result // of the first rate
 }
 
 func newChainAudit(c *cli.Context) (a *chainAudit, err error) {
-	a = &chainAudit{apart: c.Bool("stages")}
+	a = &chainAudit{apart: c.Bool("stages"), heard: report.Heard{Recording: c.String("recording")}}
 	if a.chain, a.phase, err = oneChain(c); err != nil {
 		return nil, err
 	}
@@ -158,12 +162,44 @@ func (a *chainAudit) run() ([]*audit.Result, error) {
 		}
 		all = append(all, results...)
 	}
-	if !a.apart {
-		return all, nil
-	}
 	var err error
-	a.stages, err = audit.Stages(a.chain, a.rates[0], a.phase, a.kernel)
+	if a.heard.Recording != "" {
+		if a.heard.Onsets, err = a.listen(); err != nil {
+			return nil, err
+		}
+	}
+	if a.apart {
+		a.stages, err = audit.Stages(a.chain, a.rates[0], a.phase, a.kernel)
+	}
 	return all, err
+}
+
+// listen compares the onsets of the recording with what the chain makes of them, at
+// the recording's own rate.
+func (a *chainAudit) listen() (*onsets.Report, error) {
+	before, err := audio.Open(a.heard.Recording)
+	if err != nil {
+		return nil, err
+	}
+	defer before.Close()
+	again, err := audio.Open(a.heard.Recording)
+	if err != nil {
+		return nil, err
+	}
+	defer again.Close()
+	f, err := a.chain.Realise(before.Format().SampleRate, a.phase)
+	if err != nil {
+		return nil, fmt.Errorf("%s: %w", a.heard.Recording, err)
+	}
+	setup := f.Setup()
+	setup.Kernel = a.kernel
+	after, err := f.ApplyWith(again, setup)
+	if err != nil {
+		return nil, fmt.Errorf("%s: %w", a.heard.Recording, err)
+	}
+	ahead := audio.NewAhead(after, 16384, 2)
+	defer ahead.Close()
+	return onsets.Measure(before, ahead, onsets.Options{})
 }
 
 // print prints the figures, unless standard output is for another form of them.
@@ -181,6 +217,12 @@ func (a *chainAudit) print(c *cli.Context, results []*audit.Result) error {
 		}
 	default:
 		if err := printEach(w, results, func(r *audit.Result) error { return report.Text(w, r) }); err != nil {
+			return err
+		}
+	}
+	if a.heard.Onsets != nil {
+		fmt.Fprintln(w)
+		if err := report.Onsets(w, plain(a.heard.Recording), a.heard.Onsets); err != nil {
 			return err
 		}
 	}
@@ -205,14 +247,16 @@ func printEach(w io.Writer, results []*audit.Result, print func(*audit.Result) e
 }
 
 // writeReports writes the files that were asked for.
-func writeReports(c *cli.Context, results []*audit.Result) error {
+func writeReports(c *cli.Context, results []*audit.Result, heard report.Heard) error {
 	if err := writeTo(c, c.String("csv"), func(w io.Writer) error { return report.BandsCSV(w, results) }); err != nil {
 		return err
 	}
 	if err := writeTo(c, c.String("curve-csv"), func(w io.Writer) error { return report.CurveCSV(w, results) }); err != nil {
 		return err
 	}
-	return writeJSON(c, results)
+	return writeTo(c, c.String("json"), func(w io.Writer) error {
+		return report.JSONHeard(w, results, heard, c.App.Version)
+	})
 }
 
 // oneChain reads the one chain that is named, and the phase.

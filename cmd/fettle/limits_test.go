@@ -3,7 +3,9 @@ package main
 import (
 	"encoding/csv"
 	"encoding/json"
+	"math"
 	"os"
+	"path/filepath"
 	"strings"
 	"testing"
 )
@@ -108,4 +110,30 @@ func TestMethods(t *testing.T) {
 			t.Errorf("no %q in %s", want, text)
 		}
 	}
+}
+
+// TestRecordingOfAnAudit: its onsets are found, at its own rate, in text and JSON.
+func TestRecordingOfAnAudit(t *testing.T) {
+	recording := filepath.Join("..", "..", "samples", "recordings", "interviews", "engine tender.wav")
+	got := fettle("audit", "chain", "--recording", recording, sampleChain("monitor"))
+	got.must(t, exitDone)
+	if !strings.Contains(got.stdout, "onsets of") || !strings.Contains(got.stdout, "channel 1: ") {
+		t.Errorf("no onsets in %s", got.stdout)
+	}
+	got = fettle("audit", "chain", "--json", "-", "--recording", recording, sampleChain("monitor"))
+	var doc struct {
+		Onsets struct {
+			Recording string
+			Channels  []struct {
+				Found   int
+				ShiftMS struct{ Worst *float64 } `json:"shift_ms"`
+			}
+		}
+	}
+	mustDo(t, json.Unmarshal([]byte(got.stdout), &doc))
+	c := doc.Onsets.Channels
+	if doc.Onsets.Recording != recording || len(c) != 1 || c[0].Found < 5 || c[0].ShiftMS.Worst == nil || !(math.Abs(*c[0].ShiftMS.Worst) < 20) {
+		t.Errorf("onsets %+v", doc.Onsets)
+	}
+	fettle("audit", "chain", "--recording", "nothing.wav", sampleChain("interviews")).must(t, exitNotStarted, "nothing.wav")
 }
