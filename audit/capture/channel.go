@@ -3,9 +3,7 @@ package capture
 import (
 	"fmt"
 	"math"
-	"runtime"
 	"slices"
-	"sync"
 
 	"fettle/audit/estimate"
 	"fettle/audit/figures"
@@ -101,7 +99,7 @@ func newMeasurement(e *ensemble, linear []float64, peak int) *measurement {
 	m.origin = e.early + int(math.Round(latency))
 	for _, b := range m.bands {
 		noise := m.noiseIn(b)
-		power := max(s.Band(b).Power-noise, 0)
+		power := max(s.Power(b)-noise, 0)
 		m.power = append(m.power, power)
 		m.snr = append(m.snr, 10*math.Log10(max(power/max(noise, negligible), negligible)))
 	}
@@ -169,24 +167,15 @@ func (m *measurement) bandNoise() []Noise {
 }
 
 // measureAll takes the figures of the mean, of it without each group, and of it
-// under the other continuation, as many at once as there are processors.
+// under the other continuation.
 func (m *measurement) measureAll() {
-	carried := m.carried()
-	from, to := m.gates.extent(len(m.mean))
-	slots := make(chan struct{}, runtime.GOMAXPROCS(0))
-	var wait sync.WaitGroup
-	measure := func(h []float64, at **figures.Figures) {
-		slots <- struct{}{}
-		wait.Go(func() {
-			*at = m.figuresOf(h[from:to], m.origin-from, carried)
-			<-slots
-		})
-	}
-	measure(m.mean, &m.whole)
+	responses := [][]float64{m.mean}
+	at := []**figures.Figures{&m.whole}
 	if len(m.groups) > 1 {
 		m.parts = make([]*figures.Figures, len(m.groups))
 		for i := range m.parts {
-			measure(m.gates.apply(m.linear(m.without(i))), &m.parts[i])
+			responses = append(responses, m.gates.apply(m.linear(m.without(i))))
+			at = append(at, &m.parts[i])
 		}
 	}
 	if m.doubt != nil {
@@ -194,9 +183,12 @@ func (m *measurement) measureAll() {
 		for i, v := range m.doubt {
 			h[i] += v
 		}
-		measure(m.gates.apply(h), &m.other)
+		responses = append(responses, m.gates.apply(h))
+		at = append(at, &m.other)
 	}
-	wait.Wait()
+	carried := m.carried()
+	from, to := m.gates.extent(len(m.mean))
+	abreast(len(at), func(i int) { *at[i] = m.figuresOf(responses[i][from:to], m.origin-from, carried) })
 }
 
 // figuresOf measures at the level of the median band, and puts the level back.

@@ -59,6 +59,13 @@ func newDeconvolver(p probe.Parameters, stretch float64, start, repeats int) *de
 	return d
 }
 
+// worker is d with a transform of its own, for one goroutine.
+func (d *deconvolver) worker() *deconvolver {
+	w := *d
+	w.fft = fourier.NewFFT(d.size())
+	return &w
+}
+
 func (d *deconvolver) size() int { return d.fft.Len() }
 
 func (d *deconvolver) hertz(k int) float64 {

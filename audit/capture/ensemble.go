@@ -2,6 +2,8 @@ package capture
 
 import (
 	"math"
+	"runtime"
+	"sync"
 )
 
 // group is the mean of some repeats.
@@ -34,11 +36,15 @@ const ordersOf = 5
 func (d *deconvolver) gather(y []float64) *ensemble {
 	e := &ensemble{deconvolver: d}
 	e.groups = make([]group, min(d.repeats, mostGroups))
+	abreast(len(e.groups), func(i int) {
+		w := d.worker()
+		for r := range d.repeats {
+			if r*len(e.groups)/d.repeats == i {
+				e.groups[i].add(w.quotient(y, r))
+			}
+		}
+	})
 	mean := make([]complex128, len(d.x))
-	for r := range d.repeats {
-		g := &e.groups[r*len(e.groups)/d.repeats]
-		g.add(d.quotient(y, r))
-	}
 	for _, g := range e.groups {
 		for k, v := range g.bins {
 			mean[k] += v / complex(float64(d.repeats), 0)
@@ -52,9 +58,7 @@ func (d *deconvolver) gather(y []float64) *ensemble {
 		e.noise = d.tail(raw)
 	}
 	e.top = raw[peakOf(raw)]
-	for i := range e.groups {
-		e.groups[i].settle(e, more)
-	}
+	abreast(len(e.groups), func(i int) { e.groups[i].settle(d.worker(), more) })
 	e.mean = e.without(-1)
 	e.doubt = e.doubtOf(more, other)
 	return e
@@ -71,6 +75,20 @@ func (e *ensemble) doubtOf(more, other []complex128) []float64 {
 		return nil
 	}
 	return e.region(e.sequence(off))
+}
+
+// abreast does n things, as many at once as there are processors.
+func abreast(n int, do func(i int)) {
+	slots := make(chan struct{}, runtime.GOMAXPROCS(0))
+	var wait sync.WaitGroup
+	for i := range n {
+		slots <- struct{}{}
+		wait.Go(func() {
+			do(i)
+			<-slots
+		})
+	}
+	wait.Wait()
 }
 
 func (g *group) add(bins []complex128) {
@@ -91,13 +109,13 @@ func (g *group) divide() {
 }
 
 // settle continues a group's response outside the probe's band and takes it to time.
-func (g *group) settle(e *ensemble, more []complex128) {
+func (g *group) settle(d *deconvolver, more []complex128) {
 	for k, v := range more {
 		g.bins[k] += v
 	}
-	h := e.sequence(g.bins)
+	h := d.sequence(g.bins)
 	g.bins = nil
-	g.h = append(append([]float64(nil), h[len(h)-e.ahead:]...), h[:e.late]...)
+	g.h = append(append([]float64(nil), h[len(h)-d.ahead:]...), h[:d.late]...)
 }
 
 // without is the mean of all repeats but those of one group; -1 leaves none out.

@@ -78,23 +78,20 @@ const (
 // so that white noise stays white: division would raise it where the chirp is weak.
 func compress(y []float64, p probe.Parameters) []float64 {
 	once := p.Once(1)
-	fft := fourier.NewFFT(response.NextPow2(len(y) + len(once)))
-	padded := make([]float64, fft.Len())
-	copy(padded, once)
-	x := fft.Coefficients(nil, padded)
-	clear(padded)
-	copy(padded, y)
-	bins := fft.Coefficients(nil, padded)
+	size := response.NextPow2(len(y) + len(once))
+	spectra := make([][]complex128, 2)
+	abreast(2, func(i int) { spectra[i] = response.Spectrum([][]float64{once, y}[i], size) })
+	x, bins := spectra[0], spectra[1]
 	var largest float64
 	for _, v := range x {
 		largest = max(largest, estimate.Power(v))
 	}
 	for k, v := range x {
 		// Far outside the band there is no phase to take out, nor anything to find.
-		scale := 1 / math.Sqrt(estimate.Power(v)+1e-6*largest) / float64(fft.Len())
+		scale := 1 / math.Sqrt(estimate.Power(v)+1e-6*largest) / float64(size)
 		bins[k] *= complex(real(v)*scale, -imag(v)*scale)
 	}
-	return fft.Sequence(padded, bins)[:len(y)]
+	return fourier.NewFFT(size).Sequence(nil, bins)[:len(y)]
 }
 
 // boxes is energy in boxes of equal width.

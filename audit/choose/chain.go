@@ -15,15 +15,14 @@ type Chain struct {
 
 // Load reads a chain file with its text. Errors are those of filter.Load.
 func Load(path string) (Chain, error) {
-	c, err := filter.Load(path) // which bounds the text
-	if err != nil {
+	if _, err := filter.Load(path); err != nil { // which bounds the text
 		return Chain{}, err
 	}
 	text, err := os.ReadFile(path)
 	if err != nil {
 		return Chain{}, err
 	}
-	c, err = filter.Parse(text, path)
+	c, err := filter.Parse(text, path)
 	return Chain{c, text}, err
 }
 

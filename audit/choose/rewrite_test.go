@@ -1,6 +1,8 @@
 package choose
 
 import (
+	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -26,6 +28,38 @@ func TestRewrite(t *testing.T) {
 			t.Errorf("%s", diff)
 		}
 		chainOf(t, string(got)) // can be read
+	}
+}
+
+// TestRewriteSamples: phases can be written into every sample chain, and what its
+// stages do but for their phase stays.
+func TestRewriteSamples(t *testing.T) {
+	files, err := filepath.Glob("../../samples/chains/*.yaml")
+	if err != nil || len(files) < 3 {
+		t.Fatalf("%d sample chains: %v", len(files), err)
+	}
+	for _, file := range files {
+		c, err := Load(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		p := phases{filter.Zero, slices.Repeat([]filter.Realisation{filter.Minimum}, len(c.Stages))}
+		to, err := c.rephased(p)
+		if err != nil {
+			t.Fatal(err)
+		}
+		back, err := to.rephased(phases{filter.Linear, slices.Repeat([]filter.Realisation{filter.Linear}, len(c.Stages))})
+		if err != nil {
+			t.Fatal(err)
+		}
+		for i, s := range back.Stages {
+			without := func(text string) string {
+				return strings.NewReplacer("phase: linear, ", "", ", phase: linear", "").Replace(text)
+			}
+			if without(s.Text) != without(c.Stages[i].Text) || s.Phase != filter.Linear || to.Stages[i].Phase != filter.Minimum {
+				t.Errorf("%s: %q became %q", file, c.Stages[i].Text, s.Text)
+			}
+		}
 	}
 }
 

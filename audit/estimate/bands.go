@@ -8,14 +8,14 @@ import (
 	"fettle/filter/response"
 )
 
-// Spectrum is a response on a grid, and that of its samples times their time.
+// Spectrum is a response on a grid. Not for concurrent use.
 type Spectrum struct {
 	rate   float64 // Hz
 	h      []float64
 	origin int
 	size   int          // of the transform
 	bins   []complex128 // DFT(h), bins 0 to size/2
-	moment []complex128 // DFT((n-origin)·h)
+	moment []complex128 // DFT((n-origin)·h), when it was asked for
 }
 
 // GridFor is a transform's size for a response of the given length: at least four
@@ -28,13 +28,20 @@ func GridFor(length int, rate float64) int {
 // Transform takes a response to the grid of GridFor; origin is the index in h that
 // times are relative to, rate is in Hz.
 func Transform(h []float64, origin int, rate float64) *Spectrum {
-	moment := make([]float64, len(h))
-	for n, v := range h {
-		moment[n] = float64(n-origin) * v
-	}
 	size := GridFor(len(h), rate)
-	return &Spectrum{rate: rate, h: h, origin: origin, size: size,
-		bins: response.Spectrum(h, size), moment: response.Spectrum(moment, size)}
+	return &Spectrum{rate: rate, h: h, origin: origin, size: size, bins: response.Spectrum(h, size)}
+}
+
+// moments is DFT((n-origin)·h).
+func (s *Spectrum) moments() []complex128 {
+	if s.moment == nil {
+		x := make([]float64, len(s.h))
+		for n, v := range s.h {
+			x[n] = float64(n-s.origin) * v
+		}
+		s.moment = response.Spectrum(x, s.size)
+	}
+	return s.moment
 }
 
 // Latency is the bulk latency after the origin, in samples, and the polarity
@@ -55,8 +62,9 @@ type Band struct {
 // Band measures one band, times relative to the origin.
 func (s *Spectrum) Band(b figures.Band) Band {
 	var energy, delayed, squared float64
+	moments := s.moments()
 	response.EachBin(s.rate/float64(s.size), b.Lower, b.Upper, func(k int, width float64) {
-		h, n := s.bins[k], s.moment[k]
+		h, n := s.bins[k], moments[k]
 		hh := Power(h)
 		inPhase := real(n)*real(h) + imag(n)*imag(h)
 		energy += width * hh
@@ -73,6 +81,15 @@ func (s *Spectrum) Band(b figures.Band) Band {
 	}
 }
 
+// Power is the mean of |H|² over a band.
+func (s *Spectrum) Power(b figures.Band) float64 {
+	var energy float64
+	response.EachBin(s.rate/float64(s.size), b.Lower, b.Upper, func(k int, width float64) {
+		energy += width * Power(s.bins[k])
+	})
+	return energy / (b.Upper - b.Lower)
+}
+
 // Rate is the sample rate in Hz.
 func (s *Spectrum) Rate() float64 { return s.rate }
 
@@ -80,7 +97,7 @@ func (s *Spectrum) Rate() float64 { return s.rate }
 // at index 0, and its group delay after the origin in samples.
 func (s *Spectrum) At(hz float64) (h complex128, delay float64) {
 	k := min(int(math.Round(hz/s.rate*float64(s.size))), len(s.bins)-1)
-	v, n := s.bins[k], s.moment[k]
+	v, n := s.bins[k], s.moments()[k]
 	turn := 2 * math.Pi * float64(k) / float64(s.size) * float64(s.origin)
 	return v * cmplx.Rect(1, turn), (real(n)*real(v) + imag(n)*imag(v)) / Power(v)
 }

@@ -18,7 +18,10 @@ const (
 	shortestStretch  = 1 << 10
 	secondsAStretch  = 10
 	mostStretchesOf  = 12
-	usualStretchesOf = 6 // of a short recording
+	usualStretchesOf = 6
+	// A recording shorter than one part of a long one gets fewer stretches, and
+	// short ones: corpora hold thousands, and none may cost more than its filtering.
+	shortStretchesOf = 4
 	leastStretchesOf = 3 // give an interval that means something
 )
 
@@ -61,10 +64,10 @@ func NewAlignment(rate int, frames int64, known []complex128) *Alignment {
 		panic(fmt.Sprintf("pair: a response of %d bins; it needs one more than half a power of two of at least %d", len(known), AlignmentSize))
 	}
 	a := &Alignment{size: AlignmentSize}
-	for a.size > shortestStretch && int64(a.size)*usualStretchesOf > frames {
-		a.size /= 2
-	}
 	parts := min(max(frames/int64(secondsAStretch*rate), usualStretchesOf), mostStretchesOf)
+	if frames < int64(secondsAStretch*rate) {
+		a.size, parts = shortestStretch, shortStretchesOf
+	}
 	a.part = max(frames/parts, int64(a.size))
 	for k := 0; k < len(known); k += points / a.size {
 		a.known = append(a.known, known[k])

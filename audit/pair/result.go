@@ -13,7 +13,8 @@ type Result struct {
 	Channel int // from 1
 	// Absent says why there is nothing else, or is "".
 	Absent string
-	// Delay is the bulk latency in samples, Lag included; Err its half width.
+	// Delay is the bulk latency in samples over the frequencies that are coherent, Lag
+	// included; Err its half width.
 	Delay, DelayErr float64
 	Polarity        int // +1, -1; 0: not stated
 	// Gain is the coherent output power over the input power, dB.

@@ -64,7 +64,7 @@ func comparisons(t *testing.T) map[string]*choose.Comparison {
 	return map[string]*choose.Comparison{
 		"each":     comparisonOf(t, choose.Usual, choose.Own, nil, stem),
 		"master":   comparisonOf(t, choose.Usual, choose.Master, nil, stem),
-		"channels": comparisonOf(t, choose.Usual, choose.Own, []string{"delay-spread=0 ms"}, lateRight, stem),
+		"channels": comparisonOf(t, choose.Usual, choose.Own, []string{"delay-spread=1 ms", "pre-ring=-60 dB beyond 5 ms"}, lateRight, stem),
 	}
 }
 

@@ -69,6 +69,9 @@ func choicesOf(n *choose.Candidate) string {
 	return fmt.Sprintf("mixed has %s; and linear %s.", strings.Join(late, "; "), strings.Join(even, "; "))
 }
 
+// caution stands under every advice.
+const caution = "Rules know figures only: listen before you commit a batch."
+
 // recommend writes the advice.
 func recommend(b *strings.Builder, c *choose.Comparison) {
 	b.WriteByte('\n')
@@ -76,8 +79,14 @@ func recommend(b *strings.Builder, c *choose.Comparison) {
 		for _, s := range AdviceWords(c, a) {
 			paragraph(b, s)
 		}
-		return
+	} else {
+		eachPurpose(b, c)
 	}
+	paragraph(b, caution)
+}
+
+// eachPurpose is a table of one row a purpose.
+func eachPurpose(b *strings.Builder, c *choose.Comparison) {
 	fmt.Fprintf(b, "  %-10s %-*s %s\n", "for", nameColumn, "take", "what is tried before fails")
 	for _, a := range c.Advice {
 		fmt.Fprintf(b, "  %-10s %-*s %s\n", a.Rule.Purpose, nameColumn, clip(taken(c, a), nameColumn), clip(before(c, a), Width-14-nameColumn))

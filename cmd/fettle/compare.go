@@ -156,8 +156,16 @@ func tryComparisonFiles(c *cli.Context, r choose.Request) error {
 	if !r.Asks() {
 		return errors.New("--save: there is one advice for each purpose; say with --for or --limit which to follow")
 	}
-	if _, err := os.Lstat(name); err == nil && name != "-" {
+	if name == "-" {
+		return nil
+	}
+	if _, err := os.Lstat(name); err == nil {
 		return fmt.Errorf("--save: %s: is there already; name a new file", name)
+	}
+	for _, chain := range r.Chains { // any may be advised
+		if err := sameBeside(chain, name); err != nil {
+			return err
+		}
 	}
 	return tryWriting(name)
 }
@@ -187,9 +195,6 @@ func saveAdvised(c *cli.Context, advised *choose.Candidate) error {
 	if err != nil {
 		return fmt.Errorf("--save: %w", err)
 	}
-	if err := sameBeside(text, name, advised.Chain.File); err != nil {
-		return err
-	}
 	return writeTo(c, name, func(w io.Writer) error {
 		_, err := w.Write(text)
 		return err
@@ -197,17 +202,10 @@ func saveAdvised(c *cli.Context, advised *choose.Candidate) error {
 }
 
 // sameBeside makes sure that the coefficient files that a chain names are found
-// from its new place too.
-func sameBeside(text []byte, name, original string) error {
-	if name == "-" {
-		return nil
-	}
-	before, err := filter.Parse(text, original)
-	if err != nil {
-		return err
-	}
-	if after, err := filter.Parse(text, name); err != nil || after.SHA256 != before.SHA256 {
-		return fmt.Errorf("--save: %s: the coefficient files that the chain names are not beside it; name a file in the folder of %s", name, original)
+// from another place too.
+func sameBeside(chain choose.Chain, name string) error {
+	if there, err := filter.Parse(chain.Text, name); err != nil || there.SHA256 != chain.SHA256 {
+		return fmt.Errorf("--save: %s: the coefficient files that %s names are not beside it; name a file in the same folder", name, chain.File)
 	}
 	return nil
 }

@@ -125,6 +125,14 @@ func targets(subjects []Subject) []Subject {
 // closeUp is how many tolerances a close-up shows.
 const closeUp = 8
 
+// offTarget is NaN where there is too little to be held against anything.
+func offTarget(s Subject, i int) float64 {
+	if s.Figures.Curve.Magnitude[i] < slices.Max(s.Figures.Curve.Magnitude)-60 {
+		return math.NaN()
+	}
+	return s.Figures.Curve.Magnitude[i] - s.Target.Aim[i]
+}
+
 // deviation is the magnitude less its target. Nil: none has a target.
 func deviation(subjects []Subject) *chart {
 	var aimed []Subject
@@ -136,38 +144,33 @@ func deviation(subjects []Subject) *chart {
 	if aimed == nil {
 		return nil
 	}
-	off := func(s Subject, i int) float64 {
-		if s.Figures.Curve.Magnitude[i] < slices.Max(s.Figures.Curve.Magnitude)-60 {
-			return math.NaN()
-		}
-		return s.Figures.Curve.Magnitude[i] - s.Target.Aim[i]
-	}
-	c := overCurves(aimed, quantity{name: "off target", unit: "dB", digits: 4, of: off})
+	c := overCurves(aimed, quantity{name: "off target", unit: "dB", digits: 4, of: offTarget})
 	c.name, c.title = "off-target", "Magnitude off its target"
 	c.note = "Shaded: what the chain's tolerance allows. Not drawn: what is more than 60 dB under the maximum, or off by more than eight tolerances; the table has the latter."
-	reach := 0.0
 	var under []plot.Plotter
+	var wide, off []float64
 	for i, s := range targets(aimed) {
 		var low, high []float64
 		for k, aim := range s.Target.Aim {
 			low, high = append(low, s.Target.Low[k]-aim), append(high, s.Target.High[k]-aim)
-			reach = max(reach, high[k])
 		}
 		if i == 0 {
 			c.keys = append(c.keys, key{text: "tolerance", pen: pen{ink: shade}, fill: true})
 		}
 		under = append(under, ribbon{s.Figures.Curve.Hz, low, high, shade, 255})
+		wide = append(wide, high...)
 	}
-	allowed := max(reach, 0.02)
 	for _, s := range aimed {
 		for k := range s.Target.Aim {
-			if x := math.Abs(off(s, k)); x > reach {
-				reach = x
+			if x := math.Abs(offTarget(s, k)); !math.IsNaN(x) {
+				off = append(off, x)
 			}
 		}
 	}
 	c.marks = append(append(under, c.zero()), c.marks...)
-	reach = min(max(1.3*reach, 0.02), closeUp*allowed)
+	slices.Sort(wide)
+	tolerance := max(wide[len(wide)/2], 0.01)
+	reach := min(max(1.3*slices.Max(off), 2*tolerance), closeUp*tolerance)
 	c.y.min, c.y.max = -reach, reach
 	return c
 }

@@ -52,7 +52,9 @@ type Subject struct {
 }
 
 // Target is a magnitude in dB at each of Figures.Curve.Hz: the value aimed at and
-// between what the tolerance lets it lie. Low is -Inf where deeper is free.
+// between what the tolerance lets it lie. Where any of a range of values will
+// do, Aim is that of them nearest to the magnitude; Low is -Inf where deeper is
+// free.
 type Target struct{ Aim, Low, High []float64 }
 
 // Start is how every page begins.

@@ -282,6 +282,9 @@ func TestPlotFiles(t *testing.T) {
 			t.Errorf("the name %q stands twice or is none", f.Name)
 		}
 		names[f.Name] = true
+		if !IsPlot(f.Data[:64]) {
+			t.Errorf("%s is not known again", f.Name)
+		}
 		if strings.HasSuffix(f.Name, ".png") {
 			drawn(t, f)
 		} else {

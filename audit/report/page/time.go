@@ -210,12 +210,8 @@ func thinned(x, y []float64) (tx, ty []float64) {
 func energy(subjects []Subject) *chart {
 	c := &chart{name: "energy", title: "Energy before and after the arrival", x: timeAxis(subjects, shownEnergy)}
 	c.y = axis{label: "energy, dB under its maximum", min: floorDB, max: 5}
-	slowest := subjects[0].Rate
-	for _, s := range subjects {
-		slowest = min(slowest, s.Rate)
-	}
 	// Two samples at least: an identity's curve is zero at every other.
-	step := max((c.x.max-c.x.min)/steps, 2/slowest*toMS)
+	step := max((c.x.max-c.x.min)/steps, 2/slices.Min(ratesOf(subjects))*toMS)
 	count := int((c.x.max - c.x.min) / step)
 	times := make([]float64, count)
 	for k := range times {
@@ -231,12 +227,16 @@ func energy(subjects []Subject) *chart {
 		c.columns = append(c.columns, column{s.Label, "dB", 1})
 		all = append(all, levels)
 	}
-	identity := Subject{Rate: slowest, Response: []float64{1}}
-	skirt := highest(envelope(identity.Response, 0, identity.reach(c.x)), identity, times, step)
-	c.marks = append([]plot.Plotter{c.instant(), curve{times, skirt, skirtLine}}, c.marks...)
+	var skirts []plot.Plotter
+	for _, rate := range ratesOf(subjects) {
+		identity := Subject{Rate: rate, Response: []float64{1}}
+		skirt := highest(envelope(identity.Response, 0, identity.reach(c.x)), identity, times, step)
+		skirts = append(skirts, curve{times, skirt, skirtLine})
+		c.columns = append(c.columns, column{"identity at " + shortHertz(rate) + "Hz", "dB", 1})
+		all = append(all, skirt)
+	}
+	c.marks = append(append([]plot.Plotter{c.instant()}, skirts...), c.marks...)
 	c.keys = append(c.keys, key{text: "identity's own skirt", pen: skirtLine})
-	c.columns = append(c.columns, column{"identity", "dB", 1})
-	all = append(all, skirt)
 	for k, t := range times {
 		cells := []cell{exact(t)}
 		for _, levels := range all {
@@ -246,6 +246,17 @@ func energy(subjects []Subject) *chart {
 	}
 	c.note = fmt.Sprintf("The squared envelope (Heyser 1967), its highest in each %s ms. A perfect delay shows a skirt as well: only what rises above the skirt is the filter's.", fixed(step, 3))
 	return c
+}
+
+// ratesOf are the subjects' rates, each once.
+func ratesOf(subjects []Subject) []float64 {
+	var out []float64
+	for _, s := range subjects {
+		if !slices.Contains(out, s.Rate) {
+			out = append(out, s.Rate)
+		}
+	}
+	return out
 }
 
 // reach is how many samples an axis spans, and a response with it.

@@ -45,7 +45,7 @@ func TestProofOfAlignment(t *testing.T) {
 	} {
 		t.Run(name, func(t *testing.T) {
 			in, out := filepath.Join(t.TempDir(), "in"), filepath.Join(t.TempDir(), "out")
-			hissing(t, filepath.Join(in, "a.wav"), 50_000)
+			hissing(t, filepath.Join(in, "a.wav"), 100_000)
 			p := newPlan(t, in, out, 1)
 			f, err := p.Filter(Use{p.Jobs[0].Chain, 8000})
 			mustDo(t, err)
