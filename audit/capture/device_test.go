@@ -130,7 +130,7 @@ func TestSimulatedDevice(t *testing.T) {
 // a third of them). FETTLE_TRIALS asks for more trials than these.
 func TestIntervalsHoldTheTruth(t *testing.T) {
 	t.Parallel()
-	trials := 40
+	trials := 32
 	if n, err := strconv.Atoi(os.Getenv("FETTLE_TRIALS")); err == nil {
 		trials = n
 	}

@@ -16,6 +16,13 @@ import (
 // aligner is an Alignment for a chain's path, and what the chain makes of a recording.
 func aligner(t testing.TB, text string, rate int, x []float64) (*Alignment, []float64) {
 	t.Helper()
+	a, y, _ := aligned(t, text, rate, x)
+	return a, y
+}
+
+// aligned gives the path's response too.
+func aligned(t testing.TB, text string, rate int, x []float64) (a *Alignment, y []float64, known []complex128) {
+	t.Helper()
 	chain, err := filter.Parse([]byte(text), "chain.yaml")
 	if err != nil {
 		t.Fatal(err)
@@ -28,7 +35,7 @@ func aligner(t testing.TB, text string, rate int, x []float64) (*Alignment, []fl
 	if err != nil {
 		t.Fatal(err)
 	}
-	y := make([]float64, 0, len(x))
+	y = make([]float64, 0, len(x))
 	for buf := make([]float64, 4096); ; {
 		n, err := out.ReadFrames(buf)
 		if err == io.EOF {
@@ -39,7 +46,8 @@ func aligner(t testing.TB, text string, rate int, x []float64) (*Alignment, []fl
 		}
 		y = append(y, buf[:n]...)
 	}
-	return NewAlignment(rate, int64(len(x)), knownOf(f, f.Paths()[0])), y
+	known = knownOf(f, f.Paths()[0])
+	return NewAlignment(rate, int64(len(x)), known), y, known
 }
 
 // knownOf is a path's response as Apply leaves it: aligned.
@@ -90,9 +98,9 @@ var chains = map[string]string{
 // samples, and one moved by part of a sample or by many is seen to be.
 func TestAlignmentOfChains(t *testing.T) {
 	const rate = 22050
-	x := speechLike(rate, 12*rate, 3)
+	x := speechLike(rate, 11*rate, 3)
 	for name, text := range chains {
-		a, y := aligner(t, text, rate, x)
+		a, y, known := aligned(t, text, rate, x)
 		p := fed(a, x, quantised(y, 1))
 		t.Logf("%s: %.2g ± %.2g samples, coherence %.4f, %d stretches", name, p.Delay, p.Err, p.Coherence, p.Stretches)
 		within(t, name, p.Delay, 0, 0.01)
@@ -100,7 +108,7 @@ func TestAlignmentOfChains(t *testing.T) {
 			t.Errorf("%s: %+v", name, p)
 		}
 		for _, moved := range []int{1, -3, 700} {
-			a, _ := aligner(t, text, rate, x)
+			a := NewAlignment(rate, int64(len(x)), known)
 			z := make([]float64, len(y))
 			for n := range z {
 				if m := n - moved; m >= 0 && m < len(y) {
@@ -109,6 +117,30 @@ func TestAlignmentOfChains(t *testing.T) {
 			}
 			p := fed(a, x, z)
 			within(t, name+" moved", p.Delay, float64(moved), 0.02)
+		}
+	}
+}
+
+// A short recording is looked at in less detail: it still shows whether it is in step, and if it
+// is far out of step says so in one way or the other.
+func TestAlignmentOfShortRecordings(t *testing.T) {
+	const rate = 22050
+	x := speechLike(rate, 3*rate, 3)
+	for name, text := range chains {
+		_, y, known := aligned(t, text, rate, x)
+		for _, moved := range []int{0, 1, -3, 700} {
+			z := make([]float64, len(y))
+			for n := range z {
+				if m := n - moved; m >= 0 && m < len(y) {
+					z[n] = y[m]
+				}
+			}
+			p := fed(NewAlignment(rate, int64(len(x)), known), x, quantised(z, 1))
+			if moved < 700 {
+				within(t, name+" moved", p.Delay, float64(moved), 0.02+p.Err)
+			} else if !p.Unrelated && !(math.Abs(p.Delay) > 1) && p.NotStated == "" {
+				t.Errorf("%s moved by %d: %+v", name, moved, p)
+			}
 		}
 	}
 }

@@ -19,10 +19,16 @@ func (m curve) Plot(c draw.Canvas, p *plot.Plot) {
 	for _, run := range stretches(m.y) {
 		var line []vg.Point
 		for i := run[0]; i < run[1]; i++ {
-			line = append(line, vg.Point{X: tx(m.x[i]), Y: ty(m.y[i])})
+			line = append(line, vg.Point{X: tx(m.x[i]), Y: ty(drawable(p, m.y[i]))})
 		}
 		c.StrokeLines(m.pen.style(), c.ClipLinesXY(line)...)
 	}
+}
+
+// drawable puts what is infinite far out of the frame.
+func drawable(p *plot.Plot, y float64) float64 {
+	far := 100 * (p.Y.Max - p.Y.Min)
+	return min(max(y, p.Y.Min-far), p.Y.Max+far)
 }
 
 // ribbon fills what lies between two lines.

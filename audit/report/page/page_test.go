@@ -386,3 +386,14 @@ func TestThinned(t *testing.T) {
 		t.Error("an extreme is lost")
 	}
 }
+
+// Every number of every drawing is finite.
+func TestDrawingsAreFinite(t *testing.T) {
+	_, p := rumblePage(t)
+	for _, c := range charts(p.Subjects) {
+		svg, _, _, err := c.svg("", false)
+		if err != nil || strings.Contains(svg, "NaN") || strings.Contains(svg, "Inf") {
+			t.Errorf("%s holds what cannot be drawn (%v)", c.name, err)
+		}
+	}
+}

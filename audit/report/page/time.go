@@ -232,7 +232,7 @@ func energy(subjects []Subject) *chart {
 		identity := Subject{Rate: rate, Response: []float64{1}}
 		skirt := highest(envelope(identity.Response, 0, identity.reach(c.x)), identity, times, step)
 		skirts = append(skirts, curve{times, skirt, skirtLine})
-		c.columns = append(c.columns, column{"identity at " + shortHertz(rate) + "Hz", "dB", 1})
+		c.columns = append(c.columns, column{fmt.Sprintf("identity at %g kHz", rate/1000), "dB", 1})
 		all = append(all, skirt)
 	}
 	c.marks = append(append([]plot.Plotter{c.instant()}, skirts...), c.marks...)
