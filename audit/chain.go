@@ -36,6 +36,12 @@ type Result struct {
 	TargetErrorDB, ToleranceDB float64
 
 	Figures *figures.Figures
+	// Response is the impulse response that Figures were taken of, Origin the
+	// index of its aligned instant.
+	Response []float64
+	Origin   int
+	// Target is at the frequencies of Figures.Curve.
+	Target Target
 	// Verdicts are on the limits that Judge was given.
 	Verdicts []limits.Verdict
 	// Disagreement in seconds between the arrivals by impulse and by chirp,
@@ -79,6 +85,8 @@ func auditPath(f *filter.Filter, p *filter.Path, kernel machine.Kernel) (*Result
 		H: h, Origin: b.before, Rate: rate,
 		Carried: carried(p, rate), Removed: r.Latency.Removed,
 	})
+	r.Response, r.Origin = h, b.before
+	r.Target = targetOf(f, p, r.Figures.Curve)
 	return r, b.compareRoads(r, h)
 }
 

@@ -118,6 +118,14 @@ func (p *Path) Carrier(size int) []float64 {
 	return out
 }
 
+// TargetAt is between what a path's |H| is to lie at a frequency in Hz, linear and
+// before any tolerance. The two are equal for a plain curve; low is 0 where deeper
+// is free.
+func (f *Filter) TargetAt(p *Path, hz float64) (low, high float64) {
+	l := p.members.target(f.chain.Tolerance).At(2 * math.Pi * hz / float64(f.rate))
+	return l.Low, l.High
+}
+
 // TargetErrorDB is how far the path's magnitude strays from the chain's
 // target, in dB: the least tolerance that it meets at every frequency, an
 // error 80 dB under the greatest level forgiven (design.FloorDB). It is

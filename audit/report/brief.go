@@ -31,6 +31,23 @@ func Brief(w io.Writer, results []*audit.Result) error {
 	return err
 }
 
+// BriefTable gives the same figures as rows of text, the first with the names of
+// the columns.
+func BriefTable(results []*audit.Result) [][]string {
+	var out [][]string
+	for _, row := range briefRows {
+		cells := []string{row.name}
+		for _, r := range results {
+			cells = append(cells, row.cell(r))
+		}
+		out = append(out, cells)
+	}
+	return out
+}
+
+// Label tells a result from others of its chain.
+func Label(r *audit.Result) string { return string(r.Phase) + ", " + place(r) }
+
 var briefRows = []struct {
 	name string
 	cell func(r *audit.Result) string

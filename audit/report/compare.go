@@ -104,6 +104,39 @@ func (t comparisonTable) line(b *strings.Builder, name string, cell func(col com
 	fmt.Fprintln(b, strings.TrimRight(line, " "))
 }
 
+// CompareTable is a comparison as rows of text, one a figure; the first has the
+// realisations' names.
+func CompareTable(c *choose.Comparison) [][]string {
+	out := [][]string{{""}}
+	for _, t := range comparisonTables {
+		for _, col := range t {
+			out = append(out, []string{strings.TrimSpace(strings.ReplaceAll(col.heading[0]+" "+col.heading[1], "- ", "-"))})
+		}
+	}
+	for _, row := range c.Rows {
+		n := row.Shown()
+		for _, r := range n.Results {
+			out[0] = append(out[0], RowLabel(c, row, r))
+			i := 1
+			for _, t := range comparisonTables {
+				for _, col := range t {
+					out[i] = append(out[i], col.cell(n, r))
+					i++
+				}
+			}
+		}
+	}
+	return out
+}
+
+// RowLabel tells a row of a comparison from the others.
+func RowLabel(c *choose.Comparison, row *choose.Row, r *audit.Result) string {
+	if several(c) {
+		return row.Shown().Chain.File + ", " + rowName(row, r)
+	}
+	return rowName(row, r)
+}
+
 // several tells whether more than one chain is compared.
 func several(c *choose.Comparison) bool {
 	return slices.ContainsFunc(c.Rows, func(r *choose.Row) bool { return r.Shown().Chain.File != c.Rows[0].Shown().Chain.File })

@@ -55,6 +55,8 @@ func auditChainCommand() *cli.Command {
 			flag("methods", "print a paragraph for a treatment report instead"),
 			kernelFlag(),
 			jsonFlag(),
+			htmlFlag(),
+			plotsFlag(),
 			&cli.StringFlag{Name: "csv", Usage: "write the bands to `FILE`; -: in place of the table"},
 			&cli.StringFlag{Name: "curve-csv", Usage: "write the response over frequency to `FILE`"},
 		},
@@ -83,7 +85,7 @@ func auditChain(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	for _, name := range []string{c.String("json"), c.String("csv"), c.String("curve-csv")} {
+	for _, name := range []string{c.String("json"), c.String("csv"), c.String("curve-csv"), c.String("html")} {
 		if err := tryWriting(name); err != nil {
 			return err
 		}
@@ -96,6 +98,9 @@ func auditChain(c *cli.Context) error {
 		return err
 	}
 	if err := writeReports(c, append(results, a.stages...), a.heard); err != nil {
+		return err
+	}
+	if err := writePages(c, auditPage(c, a.chain.Name, results)); err != nil {
 		return err
 	}
 	if audit.Exceeded(results) {
@@ -206,7 +211,7 @@ func (a *chainAudit) listen() (*onsets.Report, error) {
 func (a *chainAudit) print(c *cli.Context, results []*audit.Result) error {
 	w := c.App.Writer
 	switch {
-	case c.String("json") == "-", c.String("csv") == "-", c.String("curve-csv") == "-":
+	case c.String("json") == "-", c.String("csv") == "-", c.String("curve-csv") == "-", c.String("html") == "-":
 		return nil
 	case c.Bool("methods"):
 		return printEach(w, results, func(r *audit.Result) error { return report.Methods(w, a.chain, r, c.App.Version) })

@@ -30,6 +30,8 @@ func compareCommand() *cli.Command {
 			rateFlag(),
 			kernelFlag(),
 			jsonFlag(),
+			htmlFlag(),
+			plotsFlag(),
 			&cli.StringFlag{Name: "csv", Usage: "write the rows to `FILE`; -: in place of the table"},
 			&cli.StringFlag{Name: "save", Usage: "write the chain as advised to the new file `FILE`"},
 		},
@@ -144,7 +146,7 @@ func namesOf(list string) ([]string, error) {
 // tryComparisonFiles proves before any work is done that what is asked for can be
 // written.
 func tryComparisonFiles(c *cli.Context, r choose.Request) error {
-	for _, name := range []string{c.String("json"), c.String("csv")} {
+	for _, name := range []string{c.String("json"), c.String("csv"), c.String("html")} {
 		if err := tryWriting(name); err != nil {
 			return err
 		}
@@ -173,7 +175,7 @@ func tryComparisonFiles(c *cli.Context, r choose.Request) error {
 // writeComparison prints the tables, unless standard output is for another form of
 // them, and writes the files that were asked for.
 func writeComparison(c *cli.Context, result *choose.Comparison) error {
-	if c.String("json") != "-" && c.String("csv") != "-" && c.String("save") != "-" {
+	if c.String("json") != "-" && c.String("csv") != "-" && c.String("save") != "-" && c.String("html") != "-" {
 		if err := report.Compare(c.App.Writer, result); err != nil {
 			return err
 		}
@@ -182,7 +184,11 @@ func writeComparison(c *cli.Context, result *choose.Comparison) error {
 	if err != nil {
 		return err
 	}
-	return writeTo(c, c.String("json"), func(w io.Writer) error { return report.CompareJSON(w, result, c.App.Version) })
+	err = writeTo(c, c.String("json"), func(w io.Writer) error { return report.CompareJSON(w, result, c.App.Version) })
+	if err != nil {
+		return err
+	}
+	return writePages(c, comparePage(c, result))
 }
 
 // saveAdvised writes the chain that was advised.

@@ -14,16 +14,18 @@ import (
 	"unicode"
 	"unicode/utf8"
 
+	"fettle/audit/report/page"
+
 	"github.com/google/renameio/v2"
 	"github.com/urfave/cli/v2"
 )
 
 // ours is how a file begins that fettle wrote and may replace; a recording, a
 // chain or anybody's notes named by mistake must not be lost.
-var ours = [][]byte{[]byte("{\n \"schema\": \"fettle."), []byte("chain,phase,rate_hz,channel,stage,")}
+var ours = [][]byte{[]byte("{\n \"schema\": \"fettle."), []byte("chain,phase,rate_hz,channel,stage,"), []byte(page.Start)}
 
 func isOurs(start []byte) bool {
-	return slices.ContainsFunc(ours, func(o []byte) bool { return bytes.HasPrefix(start, o) })
+	return page.IsPlot(start) || slices.ContainsFunc(ours, func(o []byte) bool { return bytes.HasPrefix(start, o) })
 }
 
 // tryWriting proves before any work is done that writeTo will succeed.
