@@ -288,5 +288,17 @@ func (c *Condition) Holds(rate float64) bool {
 	return rate < c.rate
 }
 
-// oneLine is a stage's text with its blanks and line ends made single blanks.
-func oneLine(n ast.Node) string { return strings.Join(strings.Fields(n.String()), " ") }
+// oneLine is a stage's text without its remarks, blanks and line ends made single
+// blanks.
+func oneLine(n ast.Node) string {
+	var words []string
+	for line := range strings.Lines(n.String()) {
+		for _, word := range strings.Fields(line) {
+			if strings.HasPrefix(word, "#") {
+				break
+			}
+			words = append(words, word)
+		}
+	}
+	return strings.Join(words, " ")
+}

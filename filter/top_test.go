@@ -37,8 +37,8 @@ edges: mirror # fifteen
 	want := &Chain{
 		File: "chain.yaml", Name: "Überfahrt – Fähre", Phase: Minimum, Tolerance: 0.25,
 		Stages: []*Stage{
-			{Kind: "gain", Phase: Given, Channels: []int{2, 1}, When: &Condition{">=", 32000}, at: place{8, 5}},
-			{Kind: "dc", at: place{17, 5}},
+			{Kind: "gain", Text: "gain: by: 1 dB channels: - 2 - 1 when: rate >= 32 kHz phase: given", Phase: Given, Channels: []int{2, 1}, When: &Condition{">=", 32000}, at: place{8, 5}},
+			{Kind: "dc", Text: "dc: {at: 2 Hz}", at: place{17, 5}},
 		},
 		Align: Align{To: AlignCentroid, Fraction: true}, Edges: Mirror,
 	}
