@@ -139,8 +139,8 @@ func (b *bench) compareRoads(r *Result, h []float64) error {
 	bands := r.Figures.Bands
 	byImpulse := impulseRoad(h, b.before, size).arrivals(bands, rate, size)
 	byChirp := chirpRoad(x, y, size).arrivals(bands, rate, size)
-	response, tau := b.path.Response(size)
-	byFormula := analyticRoad(response, tau, b.filter.Shift(b.path)).arrivals(bands, rate, size)
+	shift := b.filter.Shift(b.path) - b.path.Delay
+	byFormula := analyticRoad(b.path.System, shift, size).arrivals(bands, rate, size)
 	r.Disagreement = disagreement(byImpulse, byChirp, bands)
 	r.AnalyticDisagreement = disagreement(byImpulse, byFormula, bands)
 	return nil

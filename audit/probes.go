@@ -10,23 +10,41 @@ import (
 	goaudio "github.com/go-audio/audio"
 )
 
-// impulse is a probe of silence with one sample of 1 at frame at, the same in
-// every channel.
+// probe is a signal that plays in every channel.
+type probe struct {
+	format *goaudio.Format
+	signal []float64
+	at     int // frames played
+}
+
+// everywhere plays one signal in every channel.
+func everywhere(rate, channels int, signal []float64) audio.Source {
+	return &probe{format: &goaudio.Format{SampleRate: rate, NumChannels: channels}, signal: signal}
+}
+
+// impulse is a probe of silence with one sample of 1 at frame at.
 func impulse(rate, channels, at, frames int) audio.Source {
 	x := make([]float64, frames)
 	x[at] = 1
 	return everywhere(rate, channels, x)
 }
 
-// everywhere plays one signal in every channel.
-func everywhere(rate, channels int, x []float64) audio.Source {
-	samples := make([]float64, len(x)*channels)
-	for i, v := range x {
+func (p *probe) Format() *goaudio.Format { return p.format }
+func (p *probe) Frames() int64           { return int64(len(p.signal)) }
+
+func (p *probe) ReadFrames(dst []float64) (int, error) {
+	channels := p.format.NumChannels
+	frames := min(len(dst)/channels, len(p.signal)-p.at)
+	if frames == 0 {
+		return 0, io.EOF
+	}
+	for i, v := range p.signal[p.at : p.at+frames] {
 		for c := range channels {
-			samples[i*channels+c] = v
+			dst[i*channels+c] = v
 		}
 	}
-	return audio.FromFrames(&goaudio.Format{SampleRate: rate, NumChannels: channels}, samples)
+	p.at += frames
+	return frames, nil
 }
 
 const (
@@ -72,7 +90,7 @@ func taper(x float64) float64 {
 // channelOf reads a whole stream and keeps one channel (from 0).
 func channelOf(src audio.Source, channel int) ([]float64, error) {
 	channels := src.Format().NumChannels
-	var out []float64
+	out := make([]float64, 0, max(0, src.Frames()))
 	for buf := make([]float64, 8192*channels); ; {
 		n, err := src.ReadFrames(buf)
 		if err == io.EOF {

@@ -5,39 +5,28 @@ import (
 
 	"fettle/audit/figures"
 	"fettle/filter/response"
-
-	"gonum.org/v1/gonum/dsp/fourier"
 )
 
-// road is what one way of measuring says on a common grid: |H|^2, and the group
-// delay in samples after the aligned instant times |H|^2. Their sums over a band
-// give its arrival without a division by a small |H|.
-type road struct{ energy, delayed []float64 }
-
-// moments gives X = DFT(x) and N = DFT((n - origin) x).
-func moments(x []float64, origin, size int) (spectrum, moment []complex128) {
-	fft := fourier.NewFFT(size)
-	buf := make([]float64, size)
-	copy(buf, x)
-	spectrum = fft.Coefficients(nil, buf)
-	clear(buf)
-	for n, v := range x {
-		buf[n] = float64(n-origin) * v
-	}
-	return spectrum, fft.Coefficients(nil, buf)
-}
+// road is one way of measuring: it visits the bins of a common grid, in any order, with
+// |H|^2 and with the group delay in samples after the aligned instant times |H|^2. Their
+// sums over a band give its arrival without a division by a small |H|.
+type road func(visit func(k int, energy, delayed float64))
 
 func inner(a, b complex128) float64 { return real(a)*real(b) + imag(a)*imag(b) }
 
+// moments asks for DFT(x) and DFT((n - origin) x).
+func moments(x []float64, origin int) (spectrum, moment response.Sequence) {
+	return response.Sequence{X: x}, response.Sequence{X: x, Moments: true, Origin: float64(origin)}
+}
+
 // impulseRoad reads a response in time.
 func impulseRoad(h []float64, origin, size int) road {
-	spectrum, moment := moments(h, origin, size)
-	r := road{make([]float64, len(spectrum)), make([]float64, len(spectrum))}
-	for k, v := range spectrum {
-		r.energy[k] = inner(v, v)
-		r.delayed[k] = inner(moment[k], v)
+	spectrum, moment := moments(h, origin)
+	return func(visit func(k int, energy, delayed float64)) {
+		response.NewTransform(size, len(h)).Each(func(k int, v []complex128) {
+			visit(k, inner(v[0], v[0]), inner(v[1], v[0]))
+		}, spectrum, moment)
 	}
-	return r
 }
 
 // chirpRoad divides spectra. The group delay of a quotient is the difference of
@@ -45,42 +34,46 @@ func impulseRoad(h []float64, origin, size int) road {
 // the chirp's band does no harm.
 func chirpRoad(x, y []float64, size int) road {
 	// Both about the chirp's middle: large moments would cost digits.
-	in, inMoment := moments(x, len(x)/2, size)
-	out, outMoment := moments(y, len(x)/2, size)
-	r := road{make([]float64, len(in)), make([]float64, len(in))}
-	for k := range in {
-		xx, yy := inner(in[k], in[k]), inner(out[k], out[k])
-		r.energy[k] = yy / xx
-		r.delayed[k] = (inner(outMoment[k], out[k]) - inner(inMoment[k], in[k])*yy/xx) / xx
+	in, inMoment := moments(x, len(x)/2)
+	out, outMoment := moments(y, len(x)/2)
+	return func(visit func(k int, energy, delayed float64)) {
+		response.NewTransform(size, size).Each(func(k int, v []complex128) {
+			xx, yy := inner(v[0], v[0]), inner(v[2], v[2])
+			visit(k, yy/xx, (inner(v[3], v[2])-inner(v[1], v[0])*yy/xx)/xx)
+		}, in, inMoment, out, outMoment)
 	}
-	return r
 }
 
 // analyticRoad takes the realised coefficients' own formulas; shift is the
-// aligned instant in the causal response.
-func analyticRoad(h []complex128, tau []float64, shift int) road {
-	r := road{make([]float64, len(h)), make([]float64, len(h))}
-	for k, v := range h {
-		if math.IsNaN(tau[k]) { // more than 60 dB down: too little to count
-			continue
-		}
-		r.energy[k] = inner(v, v)
-		r.delayed[k] = (tau[k] - float64(shift)) * r.energy[k]
+// aligned instant in the response that they have.
+func analyticRoad(s response.System, shift, size int) road {
+	return func(visit func(k int, energy, delayed float64)) {
+		s.EachBin(size, func(k int, squared, delay float64) {
+			if !math.IsNaN(delay) { // else more than 60 dB down: too little to count
+				visit(k, squared, (delay-float64(shift))*squared)
+			}
+		})
 	}
-	return r
 }
 
-// arrivals gives each band's energy-weighted group delay in seconds.
+// arrivals gives each band's energy-weighted group delay in seconds, on the grid of a
+// transform of size points.
 func (r road) arrivals(bands []figures.BandFigures, rate float64, size int) []float64 {
-	out := make([]float64, len(bands))
 	step := rate / float64(size)
+	at := make([]int8, size/2+1) // the band of a bin, from 1; 0: none
 	for i, b := range bands {
-		var energy, delayed float64
 		for k := int(math.Ceil(b.Lower / step)); float64(k)*step < b.Upper; k++ {
-			energy += r.energy[k]
-			delayed += r.delayed[k]
+			at[k] = int8(i + 1)
 		}
-		out[i] = delayed / energy / rate
+	}
+	energy, delayed := make([]float64, len(bands)+1), make([]float64, len(bands)+1)
+	r(func(k int, e, d float64) {
+		energy[at[k]] += e
+		delayed[at[k]] += d
+	})
+	out := make([]float64, len(bands))
+	for i := range out {
+		out[i] = delayed[i+1] / energy[i+1] / rate
 	}
 	return out
 }

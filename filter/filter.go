@@ -100,18 +100,15 @@ func (p *Path) ShapesTone() bool {
 // decides which bands count as carried. It gives |H| on the grid of a
 // transform of size points.
 func (p *Path) Carrier(size int) []float64 {
-	h := p.System.Spectrum(size)
-	out := make([]float64, len(h))
-	for k := range out {
-		out[k] = cmplx.Abs(h[k])
-	}
+	out := p.System.Magnitude(size)
 	for _, m := range p.members {
 		if !m.stage.kind.tone {
 			continue
 		}
-		for k, l := range m.levels(size) {
-			if l.Aim > 0 {
-				out[k] /= l.Aim
+		level := m.levels(size)
+		for k := range out {
+			if aim := level(k).Aim; aim > 0 {
+				out[k] /= aim
 			}
 		}
 	}
@@ -141,13 +138,13 @@ func (p *Path) measureTarget(tolerance float64) float64 {
 	for size < 8*len(p.System.Taps) {
 		size *= 2
 	}
-	h := p.System.Spectrum(size)
+	magnitude := p.System.Magnitude(size)
 	target := p.members.target(tolerance)
 	if p.lag > 0 { // a fractional delay makes no promise above; see Notes
 		target = upTo(target, 0.45)
 	}
 	return target.Sample(size).ErrorDB(design.Magnitude{
-		Bin: func(k int) float64 { return cmplx.Abs(h[k]) },
+		Bin: func(k int) float64 { return magnitude[k] },
 		At:  func(omega float64) float64 { return cmplx.Abs(p.System.At(omega)) },
 	})
 }

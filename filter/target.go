@@ -16,22 +16,23 @@ type member struct {
 	plan
 }
 
-// levels is the stage's part of the target on a grid; see design.Target. What
-// has a curve, given or classical, has it for a target; a mask has its bounds.
-func (m member) levels(size int) []design.Level {
-	out := make([]design.Level, size/2+1)
-	var spectrum []complex128
-	if m.taps != nil {
-		spectrum = response.Spectrum(m.taps, size)
-	}
-	for k := range out {
-		if m.taps != nil {
-			out[k] = scale(curveLevel(cmplx.Abs(spectrum[k])), math.Abs(m.gain))
-		} else {
-			out[k] = m.level(2 * math.Pi * float64(k) / float64(size))
+// levels is the stage's part of the target at any point of a grid; see
+// design.Target. What has a curve, given or classical, has it for a target; a mask
+// has its bounds.
+func (m member) levels(size int) func(k int) design.Level {
+	omega := func(k int) float64 { return 2 * math.Pi * float64(k) / float64(size) }
+	gain := math.Abs(m.gain)
+	switch {
+	case m.mask != nil:
+		bounds := m.mask.BoundsFunc()
+		return func(k int) design.Level {
+			return scale(maskLevel(bounds(omega(k)/(2*math.Pi)*m.mask.Rate)), gain)
 		}
+	case m.taps != nil:
+		magnitude := response.System{Taps: m.taps}.Magnitude(size)
+		return func(k int) design.Level { return scale(curveLevel(magnitude[k]), gain) }
 	}
-	return out
+	return func(k int) design.Level { return m.level(omega(k)) }
 }
 
 // level is the stage's part of the target at one frequency.
@@ -39,8 +40,7 @@ func (m member) level(omega float64) design.Level {
 	var l design.Level
 	switch {
 	case m.mask != nil:
-		lo, hi := m.mask.Bounds(omega / (2 * math.Pi) * m.mask.Rate)
-		l = design.Level{Aim: hi, Low: lo, High: hi}
+		l = maskLevel(m.mask.Bounds(omega / (2 * math.Pi) * m.mask.Rate))
 	case m.taps != nil:
 		l = curveLevel(cmplx.Abs(response.TapsAt(m.taps, omega)))
 	default:
@@ -53,7 +53,7 @@ func (m member) level(omega float64) design.Level {
 // one-sided near it.
 func (m member) sectionsLevel(omega float64) design.Level {
 	if m.cusps == nil {
-		return curveLevel(cmplx.Abs(response.SectionsAt(m.sections, omega)))
+		return curveLevel(response.SectionsMagnitude(m.sections, omega))
 	}
 	w := math.Tan(omega / 2)
 	l := curveLevel(1)
@@ -62,6 +62,9 @@ func (m member) sectionsLevel(omega float64) design.Level {
 	}
 	return l
 }
+
+// maskLevel aims as high as the mask allows.
+func maskLevel(lo, hi float64) design.Level { return design.Level{Aim: hi, Low: lo, High: hi} }
 
 func curveLevel(a float64) design.Level { return design.Level{Aim: a, Low: a, High: a} }
 
@@ -129,20 +132,18 @@ func (g group) targetBy(finish func(design.Level) design.Level) design.Target {
 		}
 		return finish(l)
 	}}
-	t.Grid = func(size int) []design.Level {
-		out := make([]design.Level, size/2+1)
-		for k := range out {
-			out[k] = curveLevel(1)
-		}
+	t.Grid = func(size int) func(k int) design.Level {
+		var members []func(k int) design.Level
 		for _, m := range g {
-			for k, l := range m.levels(size) {
-				out[k] = product(out[k], l)
+			members = append(members, m.levels(size))
+		}
+		return func(k int) design.Level {
+			l := curveLevel(1)
+			for _, level := range members {
+				l = product(l, level(k))
 			}
+			return finish(l)
 		}
-		for k := range out {
-			out[k] = finish(out[k])
-		}
-		return out
 	}
 	for _, m := range g {
 		t.Points = append(t.Points, m.points()...)
@@ -198,12 +199,9 @@ func upTo(t design.Target, share float64) design.Target {
 		return l
 	}
 	return design.Target{
-		Grid: func(size int) []design.Level {
-			levels := t.Grid(size)
-			for k := range levels {
-				levels[k] = free(2*math.Pi*float64(k)/float64(size), levels[k])
-			}
-			return levels
+		Grid: func(size int) func(k int) design.Level {
+			level := t.Grid(size)
+			return func(k int) design.Level { return free(2*math.Pi*float64(k)/float64(size), level(k)) }
 		},
 		At:     func(omega float64) design.Level { return free(omega, t.At(omega)) },
 		Points: t.Points,

@@ -99,7 +99,7 @@ func TestGroupDelayOfQuadraticPhase(t *testing.T) {
 		w := 2 * math.Pi * float64(k) / n
 		h[k] = turn(-2*w*w - math.Pi*float64(k)) // and half the length, to keep it in one piece
 	}
-	curve := newSpectrum(newPlans().inverse(h, n), n/2, rate16, 1).curve(n/2, 0)
+	curve := newSpectrum(inverse(h, n), n/2, rate16, 1).curve(n/2, 0)
 	for i, f := range curve.Hz {
 		if w := 2 * math.Pi * f / rate16; w >= 0.1*math.Pi && w <= 0.9*math.Pi {
 			within(t, "group delay, samples", curve.GroupDelay[i]*rate16, 4*w, 0.002)

@@ -1,6 +1,9 @@
 package figures
 
-import "math"
+import (
+	"math"
+	"math/cmplx"
+)
 
 // None is the level, in dB, of what is not there: everything under it reads so.
 const None = -200.0
@@ -95,28 +98,60 @@ func (p *profile) column(lobe float64) RingColumn {
 // decibels is 10 lg of an energy ratio, no less than None.
 func decibels(ratio float64) float64 { return max(None, 10*math.Log10(ratio)) }
 
-// mainLobe is the half width, in seconds, of the main lobe of the zero-phase
-// response whose magnitude is |H| times the given weight: where its
-// energy-time curve (the squared analytic signal; Heyser 1967, Journal of the
-// Audio Engineering Society 15) has its first minimum or is 20 dB down,
-// whichever is nearer, to the sample.
-func (s *spectrum) mainLobe(weight func(f float64) float64) float64 {
-	const stride = 4 // the curve is needed near its peak only
+// lobes are half widths of main lobes, in seconds: of the response as it is and under
+// pink weights.
+type lobes struct{ white, pink float64 }
+
+// mainLobes are those of the zero-phase response whose magnitude is |H|, weighted: up
+// to where its energy-time curve (the squared analytic signal; Heyser 1967, Journal of
+// the Audio Engineering Society 15) has its first minimum or is 20 dB down, whichever
+// is nearer, to the sample.
+func (s *spectrum) mainLobes() lobes {
+	const stride = 4 // the curves are needed near their peaks only
 	n := s.size / stride
-	one := make([]complex128, n/2+1)
-	for k := range one {
-		m := math.Sqrt(power(s.h[k*stride])) * weight(float64(k*stride)*s.step)
+	both := func(k int) complex128 { // the white magnitude and, as imaginary part, the pink
+		m := math.Sqrt(power(s.h[k*stride]))
 		if k == 0 || k == n/2 {
 			m /= 2 // DC and the highest bin stand on both sides
 		}
-		one[k] = complex(m, 0)
+		return complex(m, m*pinkMagnitude(float64(k*stride)*s.step))
 	}
-	curve := s.analytic(one, n)
-	for i := 1; i < n/2; i++ {
-		e := power(curve[i])
-		if e <= 0.01*power(curve[0]) || e <= power(curve[i+1]) {
-			return float64(i) / s.rate
+	const first, factor = 1 << 11, 4
+	for reach := first; ; reach *= factor {
+		sum := aroundZero(both, n, min(reach, n))
+		white, pink := separate(sum)
+		w, p := halfWidth(white), halfWidth(pink)
+		if len(sum) == n && w < 0 {
+			w = n / 2
+		}
+		if len(sum) == n && p < 0 {
+			p = n / 2
+		}
+		if w >= 0 && p >= 0 {
+			return lobes{float64(w) / s.rate, float64(p) / s.rate}
 		}
 	}
-	return float64(n/2) / s.rate
+}
+
+// separate undoes the sum of one transform and j times another, both of real sequences;
+// it gives their squared moduli from 0 on.
+func separate(sum []complex128) (a, b []float64) {
+	n := len(sum)
+	a, b = make([]float64, n/2), make([]float64, n/2)
+	for i := range a {
+		mirrored := cmplx.Conj(sum[(n-i)%n])
+		a[i], b[i] = power(sum[i]+mirrored)/4, power(sum[i]-mirrored)/4
+	}
+	return a, b
+}
+
+// halfWidth is the first index at which a curve has a minimum or is 20 dB under its
+// beginning; -1 if there is none.
+func halfWidth(curve []float64) int {
+	for i := 1; i+1 < len(curve); i++ {
+		if curve[i] <= 0.01*curve[0] || curve[i] <= curve[i+1] {
+			return i
+		}
+	}
+	return -1
 }

@@ -71,21 +71,54 @@ func measure(r Response, refine int) *Figures {
 		return nothing(why)
 	}
 	x, from := support(r.H)
-	s := newSpectrum(x, centroid(x), r.Rate, refine)
 	origin := float64(r.Origin - from)
-	latency, polarity := response.BulkLatencyOf(s.x, s.h, s.size, s.rate)
+	pink := make(chan []float64, 1)
+	go func() { pink <- pinkFilter(r.Rate) }() // depends on nothing else
+	f := &Figures{NotStated: map[string]string{}}
+	// The spectrum is much longer than the response; it is let go before the rest.
+	k := f.inFrequency(newSpectrum(x, centroid(x), r.Rate, refine), bands, r.Carried, origin, r.Removed)
+	f.inTime(x, r.Rate, origin, k, <-pink)
+	return f
+}
 
-	f := &Figures{Latency: latency - origin, Polarity: polarity, NotStated: map[string]string{}}
+// known is what the figures in time need of those in frequency.
+type known struct {
+	lobes    lobes
+	energies []float64 // ∫|H|² df, by band
+}
+
+// inFrequency takes the figures that the transform tells.
+func (f *Figures) inFrequency(s *spectrum, bands []Band, carried []bool, origin, removed float64) known {
+	latency, polarity := response.BulkLatencyOf(s.x, s.h, s.size, s.rate)
+	f.Latency, f.Polarity = latency-origin, polarity
 	if polarity == 0 {
 		f.NotStated["polarity"] = "the phase at the bulk latency is neither near 0 nor near 180 degrees, or has no common value"
 	}
-	f.Pink, f.White = s.smear(s.eachPink), s.smear(s.whiteWeights)
-	f.D90 = float64(shortestHolding(x, 0.9)) / r.Rate
-	f.D999 = float64(shortestHolding(x, 0.999)) / r.Rate
-	f.energies(s, origin)
-	f.bands(s, bands, r.Carried, latency, origin)
-	f.Curve = s.curve(origin, r.Removed)
-	return f
+	s.moments()
+	f.Pink, f.White = s.smear(s.pink), s.smear(s.white)
+	f.Curve = s.curve(origin, removed)
+	return known{s.mainLobes(), f.bands(s, bands, carried, latency, origin)}
+}
+
+// inTime takes the figures that the samples tell; pink is the filter of pink weights.
+func (f *Figures) inTime(x []float64, rate, origin float64, k known, pink []float64) {
+	f.D90 = float64(shortestHolding(x, 0.9)) / rate
+	f.D999 = float64(shortestHolding(x, 0.999)) / rate
+	weighted := newConvolver(pink, len(x))
+	eachStated := func(do func(b *BandFigures, energy float64)) {
+		for i, e := range k.energies {
+			if b := &f.Bands[i]; !math.IsNaN(b.Arrival) {
+				do(b, e)
+			}
+		}
+	}
+	ahead := newRinger(x, rate)
+	f.Lead = ahead.length(origin)
+	f.PreRing = ahead.ring(k.lobes, weighted)
+	eachStated(func(b *BandFigures, energy float64) { b.PreRing = ahead.early(b.Band, energy) })
+	behind := newRinger(reversed(x), rate)
+	f.PostRing = behind.ring(k.lobes, weighted)
+	eachStated(func(b *BandFigures, energy float64) { b.PostRing = behind.early(b.Band, energy) })
 }
 
 // extreme keeps squares, and sums of squares, within the range of float64.
@@ -131,33 +164,19 @@ func centroid(x []float64) float64 {
 	return c
 }
 
-// energies fills in the early and late energy.
-func (f *Figures) energies(s *spectrum, origin float64) {
-	g := s.pinkFilter(s.rate)
-	white, pink := s.mainLobe(flat), s.mainLobe(pinkMagnitude)
-	side := func(x []float64) Ring {
-		return Ring{
-			White: newProfile(x, s.rate).column(white),
-			Pink:  newProfile(s.convolve(x, g), s.rate).column(pink),
-		}
-	}
-	f.PreRing, f.PostRing = side(s.x), side(reversed(s.x))
-	f.Lead = newProfile(s.x, s.rate).length(origin)
-}
-
-// bands fills in the bands and what is taken over the carried ones.
-func (f *Figures) bands(s *spectrum, bands []Band, carried []bool, latency, origin float64) {
+// bands fills in what the transform tells of the bands and is taken over the carried
+// ones, and gives their energies.
+func (f *Figures) bands(s *spectrum, bands []Band, carried []bool, latency, origin float64) []float64 {
 	samples := make([]*bandSample, len(bands))
-	gains := make([]float64, len(bands))
+	energies, gains := make([]float64, len(bands)), make([]float64, len(bands))
 	for i, b := range bands {
 		samples[i] = s.sample(b)
-		gains[i] = decibels(samples[i].energy() / b.width())
+		energies[i] = samples[i].energy()
+		gains[i] = decibels(energies[i] / b.width())
 	}
 	if carried == nil {
 		carried = near(gains)
 	}
-	ahead := newRinger(s.x, s.rate, s.plans)
-	behind := newRinger(reversed(s.x), s.rate, s.plans)
 	phase := s.phaseResidual(latency)
 	floor := 10 * math.Log10(stated*s.peak)
 	for i, b := range bands {
@@ -165,21 +184,20 @@ func (f *Figures) bands(s *spectrum, bands []Band, carried []bool, latency, orig
 		band := BandFigures{Band: b, Carried: carried[i], Gain: gains[i],
 			Arrival: nan, Spread: nan, PreRing: nan, PostRing: nan, PhaseDeviation: nan}
 		if gains[i] >= floor && gains[i] > None {
-			mean, spread := samples[i].delay(noMagnitude * noMagnitude * s.peak)
+			mean, spread := samples[i].delay(s.faint())
 			band.Arrival, band.Spread = (mean+s.mid-latency)/s.rate, spread/s.rate
-			band.PreRing = ahead.early(b, samples[i].energy())
-			band.PostRing = behind.early(b, samples[i].energy())
 			band.PhaseDeviation = phase.deviation(s, b)
 		} else {
 			f.NotStated[fmt.Sprintf("bands[%g Hz]", b.Nominal)] = "more than 60 dB under the maximum of the magnitude, or under -200 dB"
 		}
 		f.Bands = append(f.Bands, band)
 	}
-	f.overCarried(samples, origin, s.rate)
+	f.overCarried(samples, origin)
+	return energies
 }
 
 // overCarried takes delay spread, phase deviation and the sum test over the carried bands.
-func (f *Figures) overCarried(samples []*bandSample, origin, rate float64) {
+func (f *Figures) overCarried(samples []*bandSample, origin float64) {
 	first, last := math.Inf(1), math.Inf(-1)
 	worst, deepest := math.Inf(-1), math.Inf(1)
 	for i, b := range f.Bands {
@@ -188,7 +206,7 @@ func (f *Figures) overCarried(samples []*bandSample, origin, rate float64) {
 		}
 		first, last = min(first, b.Arrival), max(last, b.Arrival)
 		worst = max(worst, b.PhaseDeviation)
-		sum, most := samples[i].mixed(origin, rate)
+		sum, most := samples[i].mixed(origin)
 		deepest = min(deepest, decibels(sum/most))
 	}
 	if math.IsInf(first, 1) {

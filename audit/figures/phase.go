@@ -40,26 +40,26 @@ func (s *spectrum) phaseResidual(d float64) *phaseCurve {
 
 // unwrapped follows the phase from bin to bin and takes the nearest branch, across gaps too.
 func (s *spectrum) unwrapped(d float64) *phaseCurve {
-	c := &phaseCurve{first: -1}
+	q := response.NewQuadrature(s.step, band(lowestBand).Lower, response.TopOfBand*s.rate)
+	c := &phaseCurve{first: q.First, residual: make([]float64, q.Last-q.First+1)}
+	turns := s.turns(q.First, d)
 	var last float64
-	s.each(band(lowestBand).Lower, response.TopOfBand*s.rate, func(k int, _ float64) {
-		if c.first < 0 {
-			c.first = k
+	for i := range c.residual {
+		h, turned := s.h[q.First+i], turns.Next()
+		if power(h) < stated*s.peak {
+			c.residual[i] = math.NaN()
+			continue
 		}
-		phase := math.NaN()
-		if power(s.h[k]) >= stated*s.peak {
-			phase = cmplx.Phase(s.h[k] * s.aligned(k, d))
-			phase -= 2 * math.Pi * math.Round((phase-last)/(2*math.Pi))
-			last = phase
-		}
-		c.residual = append(c.residual, phase)
-	})
+		phase := cmplx.Phase(h * turned)
+		last = phase - 2*math.Pi*math.Round((phase-last)/(2*math.Pi))
+		c.residual[i] = last
+	}
 	return c
 }
 
 // each visits the points where phase is stated: frequency in Hz, pink weight |H|²/f df, phase.
 func (c *phaseCurve) each(s *spectrum, visit func(f, w, phase float64)) {
-	s.eachPink(func(k int, pink float64) {
+	response.EachPink(s.step, s.rate, func(k int, pink float64) {
 		if phase := c.residual[k-c.first]; !math.IsNaN(phase) {
 			visit(float64(k)*s.step, pink*power(s.h[k]), phase)
 		}

@@ -2,7 +2,6 @@ package figures
 
 import (
 	"math"
-	"math/cmplx"
 
 	"fettle/filter/response"
 )
@@ -10,29 +9,17 @@ import (
 // pinkMagnitude is the weighting's magnitude at f Hz: 1/√f, flat below 20 Hz.
 func pinkMagnitude(f float64) float64 { return 1 / math.Sqrt(max(f, response.PinkFrom)) }
 
-func flat(float64) float64 { return 1 }
-
 // pinkSeconds is where the weighting's response is cut: 0.02 dB are lost at the corner at
 // 20 Hz, whose ringing decays as 1/t², and less than 0.003 dB from 22 Hz up.
 const pinkSeconds = 0.5
 
 // pinkFilter is the minimum-phase response of pinkMagnitude at a sample rate, from
-// the folded cepstrum (Oppenheim and Schafer, Discrete-Time Signal Processing,
-// chapter on homomorphic processing). Exactly causal: it is cut, never wrapped.
-func (p *plans) pinkFilter(rate float64) []float64 {
+// the folded cepstrum. Exactly causal: it is cut, never wrapped.
+func pinkFilter(rate float64) []float64 {
 	n := fastLength(int(8 * pinkSeconds * rate))
-	logs := make([]complex128, n/2+1)
+	logs := make([]float64, n/2+1)
 	for k := range logs {
-		logs[k] = complex(math.Log(pinkMagnitude(float64(k)*rate/float64(n))), 0)
+		logs[k] = math.Log(pinkMagnitude(float64(k) * rate / float64(n)))
 	}
-	cepstrum := p.inverse(logs, n)
-	for i := 1; i < n/2; i++ {
-		cepstrum[i] *= 2
-	}
-	clear(cepstrum[n/2+1:])
-	folded := p.forward(cepstrum, n)
-	for k, c := range folded {
-		folded[k] = cmplx.Exp(c)
-	}
-	return p.inverse(folded, n)[:int(pinkSeconds*rate)+1]
+	return response.MinimumPhase(logs, int(pinkSeconds*rate)+1)
 }

@@ -3,6 +3,8 @@ package figures
 import (
 	"math"
 
+	"fettle/filter/response"
+
 	"gonum.org/v1/gonum/integrate/quad"
 )
 
@@ -13,37 +15,54 @@ const enoughBins = 256
 // bandSample is the response at the points of one band: integrals over the band
 // are weighted sums.
 type bandSample struct {
-	hz    []float64
-	width []float64    // weights of ∫ df, Hz
-	h, nh []complex128 // DFT(x), DFT((n-mid)·x)
+	width func(i int) float64               // of point i: weight of ∫ df, Hz
+	turns func(t float64) func() complex128 // one point after another: e^(j2πft), t in samples
+	h     []complex128                      // DFT(x)
+	along []float64                         // Re{N H*}
 }
 
 func (s *spectrum) sample(b Band) *bandSample {
 	if b.width() < enoughBins*s.step {
 		return s.sampleDirectly(b)
 	}
-	p := &bandSample{}
-	s.each(b.Lower, b.Upper, func(k int, width float64) {
-		p.add(float64(k)*s.step, width, s.h[k], s.nh[k])
-	})
-	return p
+	q := response.NewQuadrature(s.step, b.Lower, b.Upper)
+	return &bandSample{
+		width: func(i int) float64 { return q.Width(q.First + i) },
+		turns: func(t float64) func() complex128 { return s.turns(q.First, t).Next },
+		h:     s.h[q.First : q.Last+1], along: s.along[q.First : q.Last+1],
+	}
 }
 
 func (s *spectrum) sampleDirectly(b Band) *bandSample {
-	p := &bandSample{}
 	hz, width := legendre(b, float64(len(s.x))/s.rate)
-	for i, f := range hz {
-		h, nh := transformAt(s.x, s.mid, f, s.rate)
-		p.add(f, width[i], h, nh)
+	p := &bandSample{
+		width: func(i int) float64 { return width[i] },
+		turns: func(t float64) func() complex128 {
+			i := -1
+			return func() complex128 {
+				i++
+				return turn(2 * math.Pi * hz[i] * t / s.rate)
+			}
+		},
+	}
+	near := newNearBand(s.x, s.mid, b, s.rate)
+	for _, f := range hz {
+		h, nh := near.at(f)
+		p.h, p.along = append(p.h, h), append(p.along, inPhase(nh, h))
 	}
 	return p
 }
 
-func (p *bandSample) add(hz, width float64, h, nh complex128) {
-	p.hz = append(p.hz, hz)
-	p.width = append(p.width, width)
-	p.h = append(p.h, h)
-	p.nh = append(p.nh, nh)
+// energyDirectly is ∫|DFT(x)|² df over the band.
+func energyDirectly(x []float64, b Band, rate float64) float64 {
+	hz, width := legendre(b, float64(len(x))/rate)
+	near := newNearBand(x, 0, b, rate)
+	var e float64
+	for i, f := range hz {
+		h, _ := near.at(f)
+		e += width[i] * power(h)
+	}
+	return e
 }
 
 // legendre is the Gauss-Legendre rule for a band of a response that lasts the given
@@ -61,7 +80,7 @@ func legendre(b Band, seconds float64) (hz, weights []float64) {
 func (p *bandSample) energy() float64 {
 	var e float64
 	for i, h := range p.h {
-		e += p.width[i] * power(h)
+		e += p.width(i) * power(h)
 	}
 	return e
 }
@@ -70,13 +89,13 @@ func (p *bandSample) energy() float64 {
 // RMS of what is left; where |H|² is under floor it counts in the mean only.
 func (p *bandSample) delay(floor float64) (mean, spread float64) {
 	e := p.energy()
-	for i, h := range p.h {
-		mean += p.width[i] * inPhase(p.nh[i], h) / e
+	for i, along := range p.along {
+		mean += p.width(i) * along / e
 	}
 	for i, h := range p.h {
 		if hh := power(h); hh >= floor {
-			off := inPhase(p.nh[i], h) - mean*hh
-			spread += p.width[i] * off * off / hh / e
+			off := p.along[i] - mean*hh
+			spread += p.width(i) * off * off / hh / e
 		}
 	}
 	return mean, math.Sqrt(max(spread, 0)) // weights at a band's ends may be negative
@@ -88,11 +107,12 @@ func quadrature(a, b complex128) float64 { return imag(a)*real(b) - real(a)*imag
 
 // mixed is ∫|1+H e^(j2πf·origin)|² df and ∫(1+|H|)² df: the aligned response mixed 1:1
 // with the untouched original, and the most that magnitude allows.
-func (p *bandSample) mixed(origin, rate float64) (sum, most float64) {
+func (p *bandSample) mixed(origin float64) (sum, most float64) {
+	next := p.turns(origin)
 	for i, h := range p.h {
-		sum += p.width[i] * power(1+h*turn(2*math.Pi*p.hz[i]*origin/rate))
+		sum += p.width(i) * power(1+h*next())
 		m := 1 + math.Sqrt(power(h))
-		most += p.width[i] * m * m
+		most += p.width(i) * m * m
 	}
 	return sum, most
 }

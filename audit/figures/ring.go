@@ -1,6 +1,10 @@
 package figures
 
-import "math"
+import (
+	"math"
+
+	"fettle/filter/response"
+)
 
 // cutPeriods is the width of the half-cosine cut of band ring, and the shortest
 // time it can tell, in periods of the band's centre.
@@ -12,13 +16,21 @@ const (
 // ringer finds how long before the peak a band still rings. To look behind the
 // peak, give it the response reversed in time.
 type ringer struct {
-	*plans
 	*profile
-	x []float64
+	x   []float64
+	cut []float64 // room for a response that is cut
+
+	transforms map[[2]int]*response.Transform
+	kept       int // points of all these transforms
 }
 
-func newRinger(x []float64, rate float64, p *plans) *ringer {
-	return &ringer{plans: p, profile: newProfile(x, rate), x: x}
+func newRinger(x []float64, rate float64) *ringer {
+	return &ringer{profile: newProfile(x, rate), x: x, cut: make([]float64, len(x)), transforms: map[[2]int]*response.Transform{}}
+}
+
+// ring is the energy ahead of the peak, and the same under the weighting.
+func (r *ringer) ring(l lobes, weighted *convolver) Ring {
+	return Ring{White: r.column(l.white), Pink: newProfile(weighted.of(r.x), r.rate).column(l.pink)}
 }
 
 // early is the largest t, in seconds, at which the band's energy in the response
@@ -99,7 +111,7 @@ func (r *ringer) cutEnergy(b Band, t, limit float64) float64 {
 	if to <= from {
 		return 0
 	}
-	y := make([]float64, to-from)
+	y := r.cut[:to-from]
 	for i := range y {
 		at := (float64(from+i) - centre) / (cutPeriods * period)
 		y[i] = r.x[from+i] * 0.5 * (1 - math.Sin(math.Pi*max(-0.5, at)))
@@ -120,12 +132,30 @@ func (r *ringer) bandEnergy(b Band, y []float64) float64 {
 	// A transform no longer than y wraps its autocorrelation; what wraps is the product of
 	// its two faded ends, so the sum over 64 bins or more does not see it.
 	size := fastLength(max(len(y), int(binsOfCut*r.rate/b.width())))
-	s := &spectrum{rate: r.rate, x: y, size: size, step: r.rate / float64(size), plans: r.plans}
 	if directCost*points*float64(len(y)) < float64(size) {
-		return s.sampleDirectly(b).energy()
+		return energyDirectly(y, b, r.rate)
 	}
-	s.h = s.forward(y, size)
+	q := response.NewQuadrature(r.rate/float64(size), b.Lower, b.Upper)
 	var e float64
-	s.each(b.Lower, b.Upper, func(k int, width float64) { e += width * power(s.h[k]) })
+	r.transform(size, len(y)).Within(q.First, q.Last, func(k int, v []complex128) {
+		e += q.Width(k) * power(v[0])
+	}, response.Sequence{X: y})
 	return e
+}
+
+// mostKept bounds the memory for transforms to about 5 MB.
+const mostKept = 1 << 17
+
+// transform is kept for the next response of about the same length: a band asks for the
+// same few sizes again and again, and to make one costs a third of using it.
+func (r *ringer) transform(size, length int) *response.Transform {
+	key := [2]int{size, response.NextPow2(length)}
+	if r.transforms[key] == nil {
+		if r.kept += size; r.kept > mostKept {
+			clear(r.transforms)
+			r.kept = size
+		}
+		r.transforms[key] = response.NewTransform(size, min(size, key[1]))
+	}
+	return r.transforms[key]
 }

@@ -3,6 +3,8 @@ package figures
 import (
 	"math"
 	"testing"
+
+	"fettle/filter/response"
 )
 
 // A resonance of decay constant τ loses 60 dB in ln(1000)·τ (room acoustics' reverberation time, ISO 3382):
@@ -34,14 +36,14 @@ const half = 350
 func TestBandRingAgainstDefinition(t *testing.T) {
 	const rate = 2000.0
 	x := zeroPhase(butterworth(4, 100, openTop, rate, 800), half)
-	p := newPlans()
-	ringer := newRinger(x, rate, p)
+	ringer := newRinger(x, rate)
 	s := newSpectrum(x, half, rate, 1)
+	s.moments()
 	rung := 0
 	for _, b := range Bands(rate) {
 		whole := s.sample(b).energy()
 		got := ringer.early(b, whole)
-		within(t, "band ring", got, slowRing(p, x, b, rate, whole), max(1.5/rate, 2e-3*got))
+		within(t, "band ring", got, slowRing(x, b, rate, whole), max(1.5/rate, 2e-3*got))
 		if got > 0 {
 			rung++
 		}
@@ -52,9 +54,8 @@ func TestBandRingAgainstDefinition(t *testing.T) {
 }
 
 // slowRing is the definition: a transform of 2^13 points holds 18 bins even of the 20 Hz band.
-func slowRing(p *plans, x []float64, b Band, rate, whole float64) float64 {
+func slowRing(x []float64, b Band, rate, whole float64) float64 {
 	const size = 1 << 13
-	s := &spectrum{rate: rate, size: size, step: rate / size, plans: p}
 	period := rate / b.Centre
 	for before := half; float64(before) >= 2*period; before-- {
 		y := make([]float64, len(x))
@@ -67,8 +68,8 @@ func slowRing(p *plans, x []float64, b Band, rate, whole float64) float64 {
 			}
 		}
 		var e float64
-		h := s.forward(y, size)
-		s.each(b.Lower, b.Upper, func(k int, width float64) { e += width * power(h[k]) })
+		h := response.Spectrum(y, size)
+		response.EachBin(rate/size, b.Lower, b.Upper, func(k int, width float64) { e += width * power(h[k]) })
 		if e >= 1e-6*whole {
 			return float64(before) / rate
 		}
@@ -80,9 +81,9 @@ func slowRing(p *plans, x []float64, b Band, rate, whole float64) float64 {
 func TestBandEnergyRoads(t *testing.T) {
 	const rate = 8000.0
 	y := decaying(5, 3000)
-	r := newRinger(y, rate, newPlans())
+	r := newRinger(y, rate)
 	for _, b := range Bands(rate) {
-		direct := (&spectrum{rate: rate, x: y}).sampleDirectly(b).energy()
+		direct := energyDirectly(y, b, rate)
 		// A transform as long as the response samples |Y|² at half the density it needs: 2 % of
 		// energy, 0.1 dB, moves a ring of -60 dB by a thousandth of its length or so.
 		within(t, "band energy", r.bandEnergy(b, y)/direct, 1, 0.02)

@@ -1,6 +1,10 @@
 package figures
 
-import "math"
+import (
+	"math"
+
+	"fettle/filter/response"
+)
 
 // Smear is the RMS duration of a response, in seconds: Total² is Magnitude² + Phase².
 type Smear struct {
@@ -13,45 +17,68 @@ type Smear struct {
 // magnitude: all of |N|² there counts as magnitude.
 const noMagnitude = 1e-9
 
-// weighting visits the bins of a sum with their weights.
-type weighting func(visit func(k int, weight float64))
+// faint is the |H|² under which phase cannot be told from magnitude.
+func (s *spectrum) faint() float64 { return noMagnitude * noMagnitude * s.peak }
 
-// whiteWeights counts every bin of the two-sided transform once.
-func (s *spectrum) whiteWeights(visit func(k int, weight float64)) {
+// weighting is how much bins first to last count, and their sums that need the
+// imaginary part of the moments.
+type weighting struct {
+	first, last int
+	at          func(k int) float64
+	across      float64 // Σ w·(Im{N H*})²/|H|² where |H| can tell
+	faint       float64 // Σ w·|N|² where it cannot
+}
+
+// whiteWeighting counts every bin of the two-sided transform once.
+func (s *spectrum) whiteWeighting() *weighting {
 	last := len(s.h) - 1
-	for k := range s.h {
+	return &weighting{last: last, at: func(k int) float64 {
 		if k == 0 || k == last {
-			visit(k, 1)
-		} else {
-			visit(k, 2)
+			return 1
 		}
+		return 2
+	}}
+}
+
+func (s *spectrum) pinkWeighting() *weighting {
+	q := response.PinkQuadrature(s.step, s.rate)
+	return &weighting{first: q.First, last: q.Last, at: q.Pink}
+}
+
+func (w *weighting) addAcross(k int, v float64) {
+	if k >= w.first && k <= w.last {
+		w.across += w.at(k) * v
+	}
+}
+
+func (w *weighting) addFaint(k int, v float64) {
+	if k >= w.first && k <= w.last {
+		w.faint += w.at(k) * v
 	}
 }
 
 // smear is the RMS duration under the given weights, about their own centroid
 // (Cohen 1995, Time-Frequency Analysis, chapter 1: variance of time as the
 // weighted mean of (d|H|/dω)² plus that of the group delay's square).
-func (s *spectrum) smear(each weighting) Smear {
+func (s *spectrum) smear(w *weighting) Smear {
 	var energy, moment float64
-	each(func(k int, w float64) {
-		energy += w * power(s.h[k])
-		moment += w * inPhase(s.nh[k], s.h[k])
-	})
-	centroid := complex(moment/energy, 0)
-	floor := noMagnitude * noMagnitude * s.peak
-	var magnitude, phase float64
-	each(func(k int, w float64) {
-		h := s.h[k]
-		n := s.nh[k] - centroid*h
-		hh := power(h)
-		if hh < floor {
-			magnitude += w * power(n)
-			return
+	for k := w.first; k <= w.last; k++ {
+		energy += w.at(k) * power(s.h[k])
+		moment += w.at(k) * s.along[k]
+	}
+	centroid := moment / energy
+	// Moments about the centroid are N - centroid·H. What is across H does not change.
+	magnitude, phase := w.across+w.faint, 0.0
+	faint := s.faint()
+	for k := w.first; k <= w.last; k++ {
+		hh := power(s.h[k])
+		if hh < faint {
+			magnitude += w.at(k) * centroid * (centroid*hh - 2*s.along[k])
+			continue
 		}
-		p, m := inPhase(n, h), quadrature(n, h)
-		phase += w * p * p / hh
-		magnitude += w * m * m / hh
-	})
+		p := s.along[k] - centroid*hh
+		phase += w.at(k) * p * p / hh
+	}
 	toSeconds := func(variance float64) float64 { return math.Sqrt(max(variance/energy, 0)) / s.rate }
 	return Smear{Total: toSeconds(magnitude + phase), Magnitude: toSeconds(magnitude), Phase: toSeconds(phase)}
 }

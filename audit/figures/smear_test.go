@@ -78,7 +78,8 @@ func TestSmearOfSymmetricKernels(t *testing.T) {
 	for range 300 {
 		h := symmetricWithZeros(r)
 		s := newSpectrum(h, float64(len(h)-1)/2, small, 1)
-		for _, m := range []Smear{s.smear(s.whiteWeights), s.smear(s.eachPink)} {
+		s.moments()
+		for _, m := range []Smear{s.smear(s.white), s.smear(s.pink)} {
 			share := m.Phase / m.Total
 			within(t, "phase share of the whole", share, 0, 1e-9)
 			worst = max(worst, share)
@@ -96,7 +97,7 @@ func symmetricWithZeros(r *rand.Rand) []float64 {
 		h[len(h)-1-i] = h[i]
 	}
 	for range 1 + r.IntN(6) {
-		h = newPlans().convolve(h, []float64{1, -2 * math.Cos(math.Pi*r.Float64()), 1})
+		h = newConvolver([]float64{1, -2 * math.Cos(math.Pi*r.Float64()), 1}, len(h)).of(h)
 	}
 	for i := range len(h) / 2 {
 		h[len(h)-1-i] = h[i] // the transform rounds

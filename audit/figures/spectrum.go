@@ -15,9 +15,11 @@ type spectrum struct {
 	size int          // K, transform length
 	step float64      // fs/K, Hz between bins
 	h    []complex128 // DFT(x), bins 0..K/2
-	nh   []complex128 // DFT((n-mid)·x)
 	peak float64      // max |H|² over the grid
-	*plans
+
+	// along is Re{N H*}, that is |H|² times the group delay after mid; see moments.
+	along       []float64
+	white, pink *weighting
 }
 
 // gridDensity keeps bins 0.1 Hz apart or closer, so that 1/f weights at 20 Hz
@@ -28,17 +30,33 @@ const gridDensity = 10
 // least allowed: 8 times the length, and ten bins a Hz.
 func newSpectrum(x []float64, mid, rate float64, refine int) *spectrum {
 	size := refine * fastLength(max(8*len(x), int(math.Ceil(gridDensity*rate))))
-	s := &spectrum{rate: rate, x: x, mid: mid, size: size, step: rate / float64(size), plans: newPlans()}
-	s.h = s.forward(x, size)
+	s := &spectrum{rate: rate, x: x, mid: mid, size: size, step: rate / float64(size)}
+	s.h = response.Spectrum(x, size)
 	for _, c := range s.h {
 		s.peak = max(s.peak, power(c))
 	}
-	moment := make([]float64, len(x))
-	for n, v := range x {
-		moment[n] = (float64(n) - mid) * v
-	}
-	s.nh = s.forward(moment, size)
 	return s
+}
+
+// moments transforms (n-mid)·x as well, but keeps no more of it than along and what
+// the weightings need: it is as long as h.
+func (s *spectrum) moments() {
+	s.along = make([]float64, len(s.h))
+	s.white, s.pink = s.whiteWeighting(), s.pinkWeighting()
+	faint := s.faint()
+	nh := response.Sequence{X: s.x, Moments: true, Origin: s.mid}
+	response.NewTransform(s.size, len(s.x)).Each(func(k int, v []complex128) {
+		n, h := v[0], s.h[k]
+		s.along[k] = inPhase(n, h)
+		across := quadrature(n, h)
+		if hh := power(h); hh < faint {
+			s.white.addFaint(k, power(n))
+			s.pink.addFaint(k, power(n))
+		} else {
+			s.white.addAcross(k, across*across/hh)
+			s.pink.addAcross(k, across*across/hh)
+		}
+	}, nh)
 }
 
 // each visits the bins whose weighted sum is the integral over lo..hi in Hz.
@@ -46,48 +64,10 @@ func (s *spectrum) each(lo, hi float64, visit func(k int, width float64)) {
 	response.EachBin(s.step, lo, hi, visit)
 }
 
-// eachPink visits the bins of pink weights.
-func (s *spectrum) eachPink(visit func(k int, pink float64)) {
-	response.EachPink(s.step, s.rate, visit)
-}
-
-// aligned is e^(j2πkt/K): what turns bin k of the transform of x as if x began t samples earlier.
-func (s *spectrum) aligned(k int, t float64) complex128 {
-	return turn(2 * math.Pi * float64(k) * t / float64(s.size))
-}
-
-// resync is how many steps a rotation by repeated multiplication may run before
-// it is set right again: its error grows by about 1e-16 a step.
-const resync = 512
-
-// transformAt is DFT(x) and DFT((n-mid)·x) at the frequency f in Hz, summed
-// directly, four samples to a step of the rotation.
-func transformAt(x []float64, mid, f, rate float64) (h, nh complex128) {
-	w := -2 * math.Pi * f / rate
-	r1, r2, r3, r4 := turn(w), turn(2*w), turn(3*w), turn(4*w)
-	fours := len(x) &^ 3
-	var z complex128
-	for n := 0; n < fours; n += 4 {
-		if n%(4*resync) == 0 {
-			z = turn(w * float64(n))
-		}
-		a, b, c, d := x[n], x[n+1], x[n+2], x[n+3]
-		br, bi := b*real(r1), b*imag(r1)
-		cr, ci := c*real(r2), c*imag(r2)
-		dr, di := d*real(r3), d*imag(r3)
-		sum := complex(a+br+cr+dr, bi+ci+di)
-		m := float64(n) - mid
-		moment := complex(m*real(sum)+br+2*cr+3*dr, m*imag(sum)+bi+2*ci+3*di)
-		h += z * sum
-		nh += z * moment
-		z *= r4
-	}
-	for n := fours; n < len(x); n++ {
-		v := complex(x[n], 0) * turn(w*float64(n))
-		h += v
-		nh += complex(float64(n)-mid, 0) * v
-	}
-	return h, nh
+// turns is e^(j2πkt/K) for k = first, first + 1, ...: what turns bins of the transform
+// of x as if x began t samples earlier.
+func (s *spectrum) turns(first int, t float64) *response.Turns {
+	return response.NewTurns(2*math.Pi*t/float64(s.size), first)
 }
 
 // support is x without the zeros at its ends, and the index it begins at; nil

@@ -5,6 +5,10 @@ import (
 	"math/cmplx"
 	"math/rand/v2"
 	"sync"
+
+	"fettle/filter/response"
+
+	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 const (
@@ -103,13 +107,12 @@ func poleDelay(poles []complex128, w float64) float64 {
 
 // zeroPhase is the response with the magnitude of x and no phase, from -half to +half.
 func zeroPhase(x []float64, half int) []float64 {
-	p := newPlans()
 	n := fastLength(16 * len(x))
-	h := p.forward(x, n)
+	h := response.Spectrum(x, n)
 	for k, c := range h {
 		h[k] = complex(cmplx.Abs(c), 0)
 	}
-	y := p.inverse(h, n)
+	y := inverse(h, n)
 	out := make([]float64, 2*half+1)
 	for i := range out {
 		// Made symmetric to the last bit: the inverse transform is so to rounding only.
@@ -117,6 +120,15 @@ func zeroPhase(x []float64, half int) []float64 {
 		out[i] = (y[m] + y[(n-m)%n]) / 2
 	}
 	return out
+}
+
+// inverse is the real sequence of length n whose transform is c.
+func inverse(c []complex128, n int) []float64 {
+	x := fourier.NewFFT(n).Sequence(nil, c)
+	for i := range x {
+		x[i] /= float64(n)
+	}
+	return x
 }
 
 // powers is the response of a one-pole: gain·a^n.

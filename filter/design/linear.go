@@ -80,10 +80,10 @@ type cutSearch struct {
 }
 
 func newCutSearch(t Target, size int) *cutSearch {
-	grid, aims := t.sample(size)
-	s := &cutSearch{grid: grid, size: size, dct: fourier.NewDCT(size/2 + 1), buf: make([]float64, size/2+1)}
-	s.spec = aims
-	s.zero = s.dct.Transform(nil, aims)
+	s := &cutSearch{size: size, dct: fourier.NewDCT(size/2 + 1), buf: make([]float64, size/2+1)}
+	s.spec = make([]float64, size/2+1)
+	s.grid = t.sample(size, s.spec)
+	s.zero = s.dct.Transform(nil, s.spec)
 	for n := range s.zero {
 		s.zero[n] /= float64(size)
 	}

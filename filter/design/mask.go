@@ -124,14 +124,20 @@ func side(intoPass, intoStop float64) region {
 // Bounds returns the least and the greatest allowed magnitude (linear) at hz,
 // 0..Rate/2; edges belong to the passband and to the stopband. In a transition
 // everything from 0 to the passband's maximum is allowed.
-func (m Mask) Bounds(hz float64) (lo, hi float64) {
-	switch m.regionAt(hz) {
-	case passband:
-		return fromDB(-m.RippleDB), fromDB(m.RippleDB)
-	case stopband:
-		return 0, fromDB(-m.RejectDB)
+func (m Mask) Bounds(hz float64) (lo, hi float64) { return m.BoundsFunc()(hz) }
+
+// BoundsFunc returns Bounds for many frequencies: powers of ten are taken once.
+func (m Mask) BoundsFunc() func(hz float64) (lo, hi float64) {
+	least, most, rejected := fromDB(-m.RippleDB), fromDB(m.RippleDB), fromDB(-m.RejectDB)
+	return func(hz float64) (lo, hi float64) {
+		switch m.regionAt(hz) {
+		case passband:
+			return least, most
+		case stopband:
+			return 0, rejected
+		}
+		return 0, most
 	}
-	return 0, fromDB(m.RippleDB)
 }
 
 func fromDB(db float64) float64 { return math.Pow(10, db/20) }

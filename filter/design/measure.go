@@ -56,11 +56,7 @@ func (t *tally) measured() Measured {
 // at the vertices of parabolas laid through local extremes of the grid.
 func MeasureTaps(taps []float64, m Mask) Measured {
 	k := response.NextPow2(16 * max(len(taps), 64))
-	spectrum := response.Spectrum(taps, k)
-	magnitude := make([]float64, len(spectrum))
-	for i, h := range spectrum {
-		magnitude[i] = cmplx.Abs(h)
-	}
+	magnitude := response.System{Taps: taps}.Magnitude(k)
 	t := newTally(m)
 	for i, h := range magnitude {
 		where := m.regionAt(float64(i) * m.Rate / float64(k))

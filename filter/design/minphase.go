@@ -4,10 +4,9 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"slices"
 
 	"fettle/filter/response"
-
-	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // ReflectSections returns the minimum-phase cascade of the same magnitude:
@@ -109,15 +108,11 @@ func MinimumPhase(taps []float64, tolDB float64) (minimum []float64, worstDB flo
 	if err := checkConvertible(taps, tolDB); err != nil {
 		return nil, 0, fmt.Errorf("minimum phase: %w", err)
 	}
-	wish := magnitudeTarget(taps, tolDB)
 	for grid := response.NextPow2(16 * max(len(taps), leastGrid/16)); grid <= mostGrid; grid *= 2 {
 		minimum = foldedKernel(taps, grid)
-		size := min(4*grid, 2*mostGrid)
-		wanted := wish.Sample(size)
-		reached := moduli(response.Spectrum(minimum, size))
-		at := Magnitude{Bin: func(k int) float64 { return reached[k] }}
-		worstDB = wanted.ErrorDB(at)
-		if wanted.Met(at) {
+		var excess float64
+		excess, worstDB = magnitudeErrors(taps, minimum, tolDB, min(4*grid, 2*mostGrid))
+		if excess <= guard {
 			return minimum, worstDB, nil
 		}
 	}
@@ -145,59 +140,33 @@ func checkConvertible(taps []float64, tolDB float64) error {
 	return nil
 }
 
-// magnitudeTarget asks for the kernel's own magnitude.
-func magnitudeTarget(taps []float64, tolDB float64) Target {
-	return Target{Grid: func(size int) []Level {
-		levels := make([]Level, 0, size/2+1)
-		for _, h := range moduli(response.Spectrum(taps, size)) {
-			levels = append(levels, Level{Aim: h, Low: h, High: h, Allow: tolDB})
-		}
-		return levels
-	}}
-}
-
-func moduli(spectrum []complex128) []float64 {
-	m := make([]float64, len(spectrum))
-	for i, h := range spectrum {
-		m[i] = cmplx.Abs(h)
+// magnitudeErrors compares a kernel's magnitude with the wanted one's, on a grid of so
+// many points: the excess over the tolerance at the worst (see Grid.Excess) and the
+// least tolerance in dB that is met.
+func magnitudeErrors(wanted, got []float64, tolDB float64, size int) (excess, strayedDB float64) {
+	transform, modulus := response.NewTransform(size, len(wanted)), func(h complex128) float64 {
+		return math.Sqrt(real(h)*real(h) + imag(h)*imag(h))
 	}
-	return m
+	top := 0.0
+	transform.Each(func(_ int, v []complex128) { top = math.Max(top, modulus(v[0])) }, response.Sequence{X: wanted})
+	at := bounds{allow: fromDB(tolDB) - 1, floor: top * fromDB(FloorDB)}
+	strayed := 0.0
+	transform.Each(func(_ int, v []complex128) {
+		at.high = modulus(v[0])
+		at.low = at.high
+		excess = math.Max(excess, at.excess(modulus(v[1])))
+		strayed = math.Max(strayed, at.strayed(modulus(v[1])))
+	}, response.Sequence{X: wanted}, response.Sequence{X: got})
+	return excess, 20 * math.Log10(1+strayed)
 }
 
 // foldedKernel does the cepstral conversion on a grid of so many points and
 // cuts the result to the kernel's length.
 func foldedKernel(taps []float64, grid int) []float64 {
-	spectrum := response.Spectrum(taps, grid)
-	floor := 0.0
-	for _, h := range spectrum {
-		floor = math.Max(floor, logFloor*cmplx.Abs(h))
+	logs := response.System{Taps: taps}.Magnitude(grid)
+	floor := logFloor * slices.Max(logs)
+	for k, h := range logs {
+		logs[k] = math.Log(math.Max(h, floor))
 	}
-	for i, h := range spectrum {
-		spectrum[i] = complex(math.Log(math.Max(cmplx.Abs(h), floor)), 0)
-	}
-	fft := fourier.NewFFT(grid)
-	cepstrum := fft.Sequence(nil, spectrum)
-	fold(cepstrum)
-	fft.Coefficients(spectrum, cepstrum)
-	for i, c := range spectrum {
-		spectrum[i] = cmplx.Exp(c / complex(float64(grid), 0))
-	}
-	h := fft.Sequence(cepstrum, spectrum)[:len(taps):len(taps)]
-	divide(h, float64(grid))
-	return append([]float64(nil), h...)
-}
-
-// fold moves what an even sequence has at negative times (its second half) to
-// positive ones: index 0 once, up to half the length twice, the middle of an
-// even length once, nothing beyond.
-func fold(cepstrum []float64) {
-	n := len(cepstrum)
-	for i := 1; i < n; i++ {
-		switch {
-		case 2*i < n:
-			cepstrum[i] *= 2
-		case 2*i > n:
-			cepstrum[i] = 0
-		}
-	}
+	return response.MinimumPhase(logs, len(taps))
 }

@@ -1,7 +1,6 @@
 package design
 
 import (
-	"fmt"
 	"math"
 	"math/cmplx"
 	"strconv"
@@ -137,18 +136,6 @@ func TestConvertedMasks(t *testing.T) {
 				break
 			}
 		}
-	}
-}
-
-// TestFold: the weights of an even sequence of any length sum to that length.
-func TestFold(t *testing.T) {
-	for _, n := range []int{1, 2, 8, 963, 964} {
-		weights := make([]float64, n)
-		for i := range weights {
-			weights[i] = 1
-		}
-		fold(weights)
-		near(t, fmt.Sprintf("sum of %d weights", n), compensatedSum(weights), float64(n), 0)
 	}
 }
 

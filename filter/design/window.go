@@ -25,17 +25,25 @@ func besselI0(x float64) float64 {
 // n >= 0 (one point is 1), beta 0 (rectangular) to 500. Source: Kaiser (1974).
 func KaiserWindow(n int, beta float64) []float64 {
 	w := make([]float64, n)
-	if n == 1 {
-		w[0] = 1
-		return w
-	}
-	last := float64(n - 1)
-	for i := 0; i <= (n-1)/2 && i < n; i++ {
-		inside := 2 * math.Sqrt(float64(i)*(last-float64(i))) / last
-		w[i] = besselI0(beta*inside) / besselI0(beta)
-		w[n-1-i] = w[i]
+	for j, v := range kaiserHalf(n, beta) {
+		w[n/2+j], w[(n-1)/2-j] = v, v
 	}
 	return w
+}
+
+// kaiserHalf is the second half of the window, the middle of an odd one included.
+func kaiserHalf(n int, beta float64) []float64 {
+	half := make([]float64, (n+1)/2)
+	last, norm := float64(n-1), besselI0(beta)
+	for j := range half {
+		i := float64((n-1)/2 - j)
+		inside := 2 * math.Sqrt(i*(last-i)) / last
+		half[j] = besselI0(beta*inside) / norm
+	}
+	if n == 1 {
+		half[0] = 1
+	}
+	return half
 }
 
 // KaiserBeta returns the shape parameter for ripples of attenuationDB below 1

@@ -1,10 +1,10 @@
 package response
 
 import (
+	"maps"
 	"math"
 	"math/cmplx"
-
-	"gonum.org/v1/gonum/dsp/fourier"
+	"slices"
 )
 
 // mirrorTolerance is how far mirrored taps may differ, as a fraction of the largest.
@@ -109,34 +109,32 @@ func Mirror(x []float64) (centre float64, ok bool) {
 // correlation is H(f)/f df over the pink range: the one-sided spectrum of the
 // correlation with pink noise.
 type correlation struct {
-	first int // bin of w[0]
-	size  int // K
-	w     []complex128
+	bins  []complex128 // DFT(h), all of it
+	size  int          // K
+	pink  Quadrature
 	total float64 // ∫|H|/f df
 }
 
 func pinkCorrelation(bins []complex128, size int, rate float64) *correlation {
-	c := &correlation{first: -1, size: size, w: make([]complex128, 0, len(bins))}
-	EachPink(rate/float64(size), rate, func(k int, pink float64) {
-		if c.first < 0 {
-			c.first = k
-		}
-		v := bins[k] * complex(pink, 0)
-		c.w = append(c.w, v)
-		c.total += cmplx.Abs(v)
-	})
+	c := &correlation{bins: bins, size: size, pink: PinkQuadrature(rate/float64(size), rate)}
+	for k := c.pink.First; k <= c.pink.Last; k++ {
+		c.total += cmplx.Abs(c.weighted(k))
+	}
 	return c
 }
+
+// weighted is H(f)/f df at bin k.
+func (c *correlation) weighted(k int) complex128 { return c.bins[k] * complex(c.pink.Pink(k), 0) }
 
 // at is the integral at a lag of t samples, and its first two derivatives by t.
 func (c *correlation) at(t float64) (a0, a1, a2 complex128) {
 	unit := 2 * math.Pi / float64(c.size)
 	rotation := turn(unit * t)
-	for from := 0; from < len(c.w); from += resync {
-		z := turn(unit * t * float64(c.first+from))
-		w := unit * float64(c.first+from)
-		for _, v := range c.w[from:min(from+resync, len(c.w))] {
-			v *= z
+	for from := c.pink.First; from <= c.pink.Last; from += resync {
+		z := turn(unit * t * float64(from))
+		w := unit * float64(from)
+		for k := from; k <= min(from+resync-1, c.pink.Last); k++ {
+			v := c.weighted(k) * z
 			a0 += v
 			a1 += complex(-w*imag(v), w*real(v))
 			a2 -= complex(w*w*real(v), w*w*imag(v))
@@ -161,24 +159,11 @@ const contender = 0.9
 
 // largest is the lag of the largest modulus: every coarse maximum that could be it, refined.
 func (c *correlation) largest() float64 {
-	// Half the bins hold every lag within K/4 samples, the length of x at least.
-	const stride = 2
-	n := c.size / stride
-	one := make([]complex128, n)
-	for i, v := range c.w {
-		if k := c.first + i; k%stride == 0 {
-			one[k/stride] = v
-		}
-	}
-	coarse := fourier.NewCmplxFFT(n).Sequence(nil, one)
-	var top float64
-	for _, v := range coarse {
-		top = max(top, power(v))
-	}
+	n := c.size / lagStride
+	coarse := c.contenders()
 	best, bestValue := 0.0, -1.0
-	for i, v := range coarse {
-		before, after := coarse[(i+n-1)%n], coarse[(i+1)%n]
-		if p := power(v); p < contender*contender*top || p < power(before) || p < power(after) {
+	for _, i := range slices.Sorted(maps.Keys(coarse)) {
+		if p := coarse[i]; p < coarse[(i+n-1)%n] || p < coarse[(i+1)%n] {
 			continue
 		}
 		lag := i
@@ -190,6 +175,51 @@ func (c *correlation) largest() float64 {
 		}
 	}
 	return best
+}
+
+// lagStride is every which bin is used to find lags: half the bins hold all within K/4
+// samples, the length of x at least.
+const lagStride = 2
+
+// contenders is the squared modulus at the whole lags where it comes near enough to the
+// largest; those below 0 stand at the end of K/lagStride.
+func (c *correlation) contenders() map[int]float64 {
+	n := c.size / lagStride
+	re, im := make([]float64, c.pink.Last/lagStride+1), make([]float64, c.pink.Last/lagStride+1)
+	for i := (c.pink.First + lagStride - 1) / lagStride; i < len(re); i++ {
+		v := c.weighted(i * lagStride)
+		re[i], im[i] = real(v), imag(v)
+	}
+	near := nearLargest{squares: map[int]float64{}}
+	NewTransform(n, len(re)).Each(func(k int, v []complex128) {
+		turned := complex(-imag(v[1]), real(v[1]))
+		near.see((n-k)%n, power(v[0]+turned))
+		near.see(k, power(v[0]-turned)) // the conjugate of what stands at -k
+	}, Sequence{X: re}, Sequence{X: im})
+	near.drop()
+	return near.squares
+}
+
+// nearLargest keeps squares, by index, of contenders for the largest of a long list.
+type nearLargest struct {
+	squares map[int]float64
+	top     float64
+	enough  int // to look for squares to be dropped
+}
+
+func (n *nearLargest) see(i int, square float64) {
+	if square < contender*contender*n.top {
+		return
+	}
+	n.squares[i], n.top = square, max(n.top, square)
+	if len(n.squares) > n.enough {
+		n.drop()
+		n.enough = 2*len(n.squares) + 1024
+	}
+}
+
+func (n *nearLargest) drop() {
+	maps.DeleteFunc(n.squares, func(_ int, square float64) bool { return square < contender*contender*n.top })
 }
 
 // climb finds the maximum within a sample of t: Newton steps, kept inside a
@@ -228,10 +258,6 @@ func (c *correlation) polarity(t float64) int {
 	}
 	return 1
 }
-
-// resync is how many steps a rotation by repeated multiplication may run before
-// it is set right again: its error grows by about 1e-16 a step.
-const resync = 512
 
 // power is |c|^2 without the square root of cmplx.Abs.
 func power(c complex128) float64 { return real(c)*real(c) + imag(c)*imag(c) }

@@ -120,14 +120,18 @@ func (c *Character) countTaps(taps []float64) {
 	}
 	blur := Blur / float64(len(taps))
 	outside := turnsWithin(taps, 1-blur)
-	notInside := turnsWithin(taps, 1+blur)
+	notInside := len(taps) - 1 - outside // a symmetric kernel's zeros are mirrored in the circle
+	if c.Linear == None {
+		notInside = turnsWithin(taps, 1/(1-blur))
+	}
 	c.Outside += outside
 	c.On += notInside - outside
 	c.Inside += len(taps) - 1 - notInside
 }
 
-// turnsWithin counts the roots x = 1/z of sum h[n] x^n with |x| < radius, by how
-// often the sum turns round 0 while x goes round the circle once.
+// turnsWithin counts the roots x = 1/z of P(x) = sum h[n] x^n with |x| < radius, by how
+// often P turns round 0 while x goes round the circle once: the quarters of the plane
+// that it passes on the upper half, two for each root.
 func turnsWithin(taps []float64, radius float64) int {
 	scaled := make([]float64, len(taps))
 	gain := 1.0
@@ -135,16 +139,41 @@ func turnsWithin(taps []float64, radius float64) int {
 		scaled[n] = h * gain
 		gain *= radius
 	}
-	for size := NextPow2(64 * len(taps)); ; size *= 2 {
-		spectrum := Spectrum(scaled, size)
-		turned, steepest := 0.0, 0.0
-		for k := 1; k < len(spectrum); k++ {
-			step := cmplx.Phase(spectrum[k] * cmplx.Conj(spectrum[k-1]))
-			turned -= step // x goes round one way while omega goes the other
-			steepest = math.Max(steepest, math.Abs(step))
-		}
-		if steepest < math.Pi/2 || size >= 1<<24 {
-			return int(math.Round(turned / math.Pi)) // half a round seen, the other is its mirror
-		}
+	size := NextPow2(64 * len(taps))
+	spectrum := Spectrum(scaled, size)
+	for _, end := range []int{0, size / 2} { // real but for rounding
+		spectrum[end] = complex(real(spectrum[end]), 0)
 	}
+	quarters := 0
+	for k := range size / 2 {
+		quarters += passed(scaled, spectrum[k], spectrum[k+1], 2*math.Pi*float64(k)/float64(size), 2*math.Pi/float64(size))
+	}
+	return -quarters / 2 // x goes round one way while omega goes the other
+}
+
+// finestStep is where the search for a turn's way ends: a root on the circle has none.
+const finestStep = 2 * math.Pi / (1 << 24)
+
+// passed counts the quarters that H passes, upwards, from a at omega to b a step
+// further. A turn of a quarter or more is halved until its way is plain.
+func passed(taps []float64, a, b complex128, omega, step float64) int {
+	if inPhase(a, b) > 0 || step < finestStep {
+		return (quarter(b)-quarter(a)+5)%4 - 1
+	}
+	middle := TapsAt(taps, omega+step/2)
+	return passed(taps, a, middle, omega, step/2) + passed(taps, middle, b, omega+step/2, step/2)
+}
+
+// quarter numbers the quarters of the plane upwards from the positive real axis, each
+// with the axis that it begins at.
+func quarter(c complex128) int {
+	switch re, im := real(c), imag(c); {
+	case re > 0 && im >= 0:
+		return 0
+	case re <= 0 && im > 0:
+		return 1
+	case re < 0:
+		return 2
+	}
+	return 3
 }

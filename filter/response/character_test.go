@@ -2,6 +2,8 @@ package response
 
 import (
 	"math"
+	"math/cmplx"
+	"math/rand/v2"
 	"testing"
 )
 
@@ -76,5 +78,64 @@ func TestCharacterOfLongKernel(t *testing.T) {
 	got := System{Taps: h}.Character(0)
 	if got.Inside != 2000 || got.On != 0 || got.Outside != 0 {
 		t.Errorf("%+v, want 2000 zeros inside", got)
+	}
+}
+
+// Kernels made from random zeros, one pair of them very near to the circles that the
+// count goes round: on every circle it finds what the moduli say. (Zeros that crowd
+// together move when a polynomial's coefficients are rounded.)
+func TestTurnsWithin(t *testing.T) {
+	rng := rand.New(rand.NewPCG(5, 6))
+	for range 200 {
+		taps, moduli := []float64{1}, []float64{}
+		for i := range 1 + rng.IntN(6) {
+			r, angle := 0.5+rng.Float64(), math.Pi*rng.Float64()
+			if i == 0 {
+				r = 1 + 1e-5*rng.NormFloat64()
+			}
+			taps = times(taps, 1, -2*r*math.Cos(angle), r*r)
+			moduli = append(moduli, r, r)
+		}
+		for _, radius := range []float64{1 - 3e-5, 1, 1 + 3e-5, 0.7} {
+			want := 0
+			for _, r := range moduli {
+				if 1/r < radius {
+					want++
+				}
+			}
+			if got := turnsWithin(taps, radius); got != want {
+				t.Errorf("zeros of moduli %v: %d within %g, want %d", moduli, got, radius, want)
+			}
+		}
+	}
+}
+
+// times is the product of polynomials.
+func times(x []float64, by ...float64) []float64 {
+	out := make([]float64, len(x)+len(by)-1)
+	for i, v := range x {
+		for j, w := range by {
+			out[i+j] += v * w
+		}
+	}
+	return out
+}
+
+// A quarter more or less is told from each other on and beside the axes.
+func TestQuarters(t *testing.T) {
+	for angle := 0; angle < 360; angle += 15 {
+		for turn := -75; turn <= 75; turn += 15 {
+			a := cmplx.Rect(1, math.Pi/180*(float64(angle)+7))
+			b := cmplx.Rect(1, math.Pi/180*float64(angle+turn+7))
+			want := int(math.Floor(float64(angle+turn+7)/90)) - int(math.Floor(float64(angle+7)/90))
+			if got := passed(nil, a, b, 0, 1); got != want {
+				t.Errorf("from %d by %d degrees: %d quarters, want %d", angle+7, turn, got, want)
+			}
+		}
+	}
+	for want, c := range []complex128{1, 1i, -1, -1i} {
+		if got := quarter(c); got != want {
+			t.Errorf("%v begins quarter %d, want %d", c, got, want)
+		}
 	}
 }

@@ -66,27 +66,27 @@ func (q quadratic) centred(p point) complex128 {
 	return complex(re, (q.c0-q.c2)*p.sine)
 }
 
-// delay returns the polynomial's group delay in samples at the point. With
-// X + jY the centred value, it is 1 - (X Y' - Y X')/(X^2 + Y^2), and
-// X Y' - Y X' reduces to (c0-c2)(c0 + c2 + c1 cos(omega)).
+// squareAndDelay returns the polynomial's squared modulus and its group delay in
+// samples at the point. With X + jY the centred value, the delay is
+// 1 - (X Y' - Y X')/(X^2 + Y^2), and X Y' - Y X' reduces to
+// (c0-c2)(c0 + c2 + c1 cos(omega)).
 //
 // A zero on the unit circle away from z = 1 and z = -1 means c0 = c2: a
 // constant delay of one sample. A zero at z = 1 or z = -1 exactly at the point
 // is taken by its limit.
-func (q quadratic) delay(p point) float64 {
+func (q quadratic) squareAndDelay(p point) (square, samples float64) {
 	m := q.mirrored(p)
-	difference := m.c0 - m.c2
-	if m == (quadratic{}) {
-		return math.NaN()
-	}
-	if difference == 0 {
-		return 1
-	}
-	sum := m.sum()
-	if sum == 0 && p.sine == 0 {
-		return 1 + m.c1/(2*difference)
-	}
+	difference, sum := m.c0-m.c2, m.sum()
 	x := sum - (m.c0+m.c2)*p.versine
 	y := difference * p.sine
-	return 1 - difference*(sum-m.c1*p.versine)/(x*x+y*y)
+	square = x*x + y*y
+	switch {
+	case m == (quadratic{}):
+		return square, math.NaN()
+	case difference == 0:
+		return square, 1
+	case sum == 0 && p.sine == 0:
+		return square, 1 + m.c1/(2*difference)
+	}
+	return square, 1 - difference*(sum-m.c1*p.versine)/square
 }

@@ -7,21 +7,62 @@ const PinkFrom = 20.0
 // fraction of the sample rate.
 const TopOfBand = 0.45
 
-// EachBin visits the bins of a transform, step Hz apart, whose weighted sum is ∫ df over lo..hi, with their weights in Hz: the
-// integral of the cubic through the four bins about each interval. Its error falls with the fourth power
-// of the step, wherever between bins lo and hi lie.
-func EachBin(step, lo, hi float64, visit func(k int, width float64)) {
-	first, last := int(lo/step), int(hi/step)
-	weights := make([]float64, last-first+4)
-	for i := first; i <= last; i++ {
-		from := max(0, lo/step-float64(i))
-		to := min(1, hi/step-float64(i))
-		for j, w := range cubicWeights(from, to) {
-			weights[i-first+j] += w
-		}
+// Quadrature makes ∫ df over lo..hi a weighted sum over the bins First to Last of a
+// transform: the integral of the cubic through the four bins about each interval. Its
+// error falls with the fourth power of the step, wherever between bins lo and hi lie.
+type Quadrature struct {
+	First, Last int
+
+	step       float64
+	inner      float64          // width of a bin that no end is near to, Hz
+	head, tail [nearEnd]float64 // widths of the first and of the last bins
+}
+
+// nearEnd is how many bins from an end on have a width of their own.
+const nearEnd = 4
+
+// NewQuadrature is that over lo..hi in Hz, bins step Hz apart.
+func NewQuadrature(step, lo, hi float64) Quadrature {
+	first, last := int(lo/step), int(hi/step) // the intervals that hold the ends
+	interval := func(i int) [4]float64 {
+		return cubicWeights(max(0, lo/step-float64(i)), min(1, hi/step-float64(i)))
 	}
-	for i, w := range weights {
-		visit(first-1+i, w*step)
+	width := func(k int) float64 {
+		var sum float64
+		for i := max(first, k-2); i <= min(last, k+1); i++ {
+			sum += interval(i)[k-i+1]
+		}
+		return sum * step
+	}
+	q := Quadrature{First: first - 1, Last: last + 2, step: step}
+	whole := cubicWeights(0, 1)
+	q.inner = (whole[3] + whole[2] + whole[1] + whole[0]) * step
+	for i := range nearEnd {
+		q.head[i], q.tail[i] = width(q.First+i), width(q.Last-i)
+	}
+	return q
+}
+
+// Width is bin k's weight in Hz, k from First to Last.
+func (q *Quadrature) Width(k int) float64 {
+	switch {
+	case k < q.First+nearEnd:
+		return q.head[k-q.First]
+	case k > q.Last-nearEnd:
+		return q.tail[q.Last-k]
+	}
+	return q.inner
+}
+
+// Pink is bin k's weight in the integral of df/f.
+func (q *Quadrature) Pink(k int) float64 { return q.Width(k) / (float64(k) * q.step) }
+
+// EachBin visits the bins of a transform, step Hz apart, whose weighted sum is ∫ df over
+// lo..hi, with their weights in Hz; see Quadrature.
+func EachBin(step, lo, hi float64, visit func(k int, width float64)) {
+	q := NewQuadrature(step, lo, hi)
+	for k := q.First; k <= q.Last; k++ {
+		visit(k, q.Width(k))
 	}
 }
 
@@ -48,10 +89,16 @@ func lagrange(u float64) [4]float64 {
 	}
 }
 
-// EachPink visits the bins of pink weights, the integral of df/f over 20 Hz to
-// 0.45 of the rate in Hz.
+// PinkQuadrature is that of pink weights, the integral of df/f over 20 Hz to 0.45 of
+// the rate in Hz; see Quadrature.Pink.
+func PinkQuadrature(step, rate float64) Quadrature {
+	return NewQuadrature(step, PinkFrom, TopOfBand*rate)
+}
+
+// EachPink visits the bins of pink weights.
 func EachPink(step, rate float64, visit func(k int, pink float64)) {
-	EachBin(step, PinkFrom, TopOfBand*rate, func(k int, width float64) {
-		visit(k, width/(float64(k)*step))
-	})
+	q := PinkQuadrature(step, rate)
+	for k := q.First; k <= q.Last; k++ {
+		visit(k, q.Pink(k))
+	}
 }

@@ -1,5 +1,7 @@
 package response
 
+import "math"
+
 // SectionsAt returns the cascade's complex response at omega, 0..pi radians
 // per sample (math.Pi stands for z = -1 exactly, and a zero there or at z = 1
 // gives exactly 0). An empty cascade is the identity.
@@ -27,11 +29,31 @@ func SectionsAt(s []Section, omega float64) complex128 {
 // circle (not a stable filter) likewise. A section of zero gain has no group
 // delay: NaN.
 func SectionsGroupDelay(s []Section, omega float64) (samples float64) {
+	_, samples = squareAndDelay(s, omega)
+	return samples
+}
+
+// SectionsMagnitude returns the modulus of SectionsAt, with the same accuracy and
+// much faster.
+func SectionsMagnitude(s []Section, omega float64) float64 {
+	squared, _ := squareAndDelay(s, omega)
+	return math.Sqrt(squared)
+}
+
+// squareAndDelay returns the cascade's |H|^2 and group delay.
+func squareAndDelay(s []Section, omega float64) (squared, samples float64) {
+	squared = 1
+	if len(s) == 0 {
+		return squared, samples
+	}
 	p := pointAt(omega)
 	for _, section := range s {
-		samples += section.numerator().delay(p) - section.denominator().delay(p)
+		above, late := section.numerator().squareAndDelay(p)
+		below, early := section.denominator().squareAndDelay(p)
+		squared *= above / below
+		samples += late - early
 	}
-	return samples
+	return squared, samples
 }
 
 // Impulse returns the first n samples of the cascade's impulse response, from

@@ -47,20 +47,51 @@ func (s System) At(omega float64) complex128 {
 	return h
 }
 
+// Magnitude gives |H| on the grid of Spectrum.
+func (s System) Magnitude(size int) []float64 {
+	out := make([]float64, size/2+1)
+	if s.Taps == nil {
+		for k := range out {
+			out[k] = 1
+		}
+	} else {
+		NewTransform(size, len(s.Taps)).Each(func(k int, v []complex128) { out[k] = math.Sqrt(power(v[0])) }, Sequence{X: s.Taps})
+	}
+	if len(s.Sections) > 0 || len(s.Zero) > 0 {
+		for k := range out {
+			omega := 2 * math.Pi * float64(k) / float64(size)
+			both, _ := squareAndDelay(s.Zero, omega)
+			out[k] *= SectionsMagnitude(s.Sections, omega) * both
+		}
+	}
+	return out
+}
+
 // GroupDelay gives the group delay in samples on the grid of Spectrum: by
 // Re{DFT(n h)/DFT(h)} for the kernel, NaN where that is not stated, plus the
 // sections' own formula.
 func (s System) GroupDelay(size int) []float64 {
 	tau := make([]float64, size/2+1)
-	if s.Taps != nil {
-		tau = TapsGroupDelay(s.Taps, size)
-	}
-	if len(s.Sections) > 0 {
-		for k := range tau {
-			tau[k] += SectionsGroupDelay(s.Sections, 2*math.Pi*float64(k)/float64(size))
-		}
-	}
+	s.EachBin(size, func(k int, _, delay float64) { tau[k] = delay })
 	return tau
+}
+
+// EachBin visits the grid of Spectrum in no order that matters, with |H|^2 and the
+// delay of GroupDelay.
+func (s System) EachBin(size int, visit func(k int, squared, delay float64)) {
+	whole := func(k int, squared, delay float64) {
+		omega := 2 * math.Pi * float64(k) / float64(size)
+		once, late := squareAndDelay(s.Sections, omega)
+		both, _ := squareAndDelay(s.Zero, omega)
+		visit(k, squared*once*both*both, delay+late)
+	}
+	if s.Taps != nil {
+		eachTapsBin(s.Taps, size, whole)
+		return
+	}
+	for k := range size/2 + 1 {
+		whole(k, 1, 0)
+	}
 }
 
 // PhaseDelay gives -arg H/omega in samples on the grid of Spectrum, the phase

@@ -57,3 +57,30 @@ func TestSystemIsTheProductOfItsParts(t *testing.T) {
 		}
 	}
 }
+
+// The ways to read a system on a grid agree, with and without each of its parts.
+func TestGridsOfASystem(t *testing.T) {
+	taps, one, both := noise(2, 50), []Section{{B0: 1, A1: -0.3}, {B0: 1, B1: 0.5, B2: 0.8, A1: 0.2, A2: 0.4}}, []Section{{B0: 0.5, B1: 0.5, A1: -0.2}}
+	const size = 4096
+	for _, s := range []System{{}, {Taps: taps}, {Sections: one}, {Zero: both}, {Taps: taps, Sections: one, Zero: both}} {
+		h, tau, magnitude := s.Spectrum(size), s.GroupDelay(size), s.Magnitude(size)
+		s.EachBin(size, func(k int, squared, delay float64) {
+			want := cmplx.Abs(h[k])
+			// Relative to the kernel's sum of moduli, about 40.
+			if !(math.Abs(magnitude[k]-want) <= 1e-13) || !(math.Abs(math.Sqrt(squared)-want) <= 1e-13) {
+				t.Fatalf("%+v, bin %d: |H| %g and %g, want %g", s, k, magnitude[k], math.Sqrt(squared), want)
+			}
+			if delay != tau[k] && !(math.IsNaN(delay) && math.IsNaN(tau[k])) {
+				t.Fatalf("%+v, bin %d: delay %g, want %g", s, k, delay, tau[k])
+			}
+		})
+	}
+}
+
+func TestSectionsMagnitude(t *testing.T) {
+	s := []Section{{B0: 1, B1: -1.99, B2: 1, A1: -1.98, A2: 0.985}, {B0: 0.1, B1: 0.1, A1: -0.8}}
+	for omega := 0.0; omega <= math.Pi; omega += math.Pi / 999 {
+		want := cmplx.Abs(SectionsAt(s, omega))
+		near(t, "|H|", SectionsMagnitude(s, omega), want, 1e-14*want+1e-16)
+	}
+}

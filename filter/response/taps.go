@@ -1,12 +1,9 @@
 package response
 
 import (
-	"fmt"
 	"math"
 	"math/bits"
 	"math/cmplx"
-
-	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // Stated is the magnitude, relative to the maximum, below which a group delay
@@ -26,11 +23,27 @@ func TapsAt(taps []float64, omega float64) complex128 {
 	return h
 }
 
-// Spectrum returns bins 0..k/2 of the k-point transform of taps padded with
-// zeros: bin i is H(2 pi i/k), not normalised. It panics unless k is even, at
-// least 2 and at least len(taps). A k of small prime factors is fast.
-func Spectrum(taps []float64, k int) []complex128 {
-	return newPaddedFFT(k).transform(taps)
+// TapsAtEach writes TapsAt at each omega into h, which is as long. It gives the same
+// to the last bit in half the time: two sums at once do not wait for each other.
+func TapsAtEach(h []complex128, taps, omegas []float64) {
+	for len(omegas) >= 2 {
+		h[0], h[1] = tapsAtTwo(taps, omegas[0], omegas[1])
+		h, omegas = h[2:], omegas[2:]
+	}
+	if len(omegas) == 1 {
+		h[0] = TapsAt(taps, omegas[0])
+	}
+}
+
+func tapsAtTwo(taps []float64, omega0, omega1 float64) (h0, h1 complex128) {
+	sin0, cos0 := math.Sincos(omega0)
+	sin1, cos1 := math.Sincos(omega1)
+	var re0, im0, re1, im1 float64
+	for n := len(taps) - 1; n >= 0; n-- {
+		re0, im0 = re0*cos0+im0*sin0+taps[n], im0*cos0-re0*sin0
+		re1, im1 = re1*cos1+im1*sin1+taps[n], im1*cos1-re1*sin1
+	}
+	return complex(re0, im0), complex(re1, im1)
 }
 
 // TapsGroupDelay returns the group delay in samples at bins 0..k/2 of the
@@ -38,23 +51,28 @@ func Spectrum(taps []float64, k int) []complex128 {
 // for the sake of accuracy. A bin more than 60 dB under the largest is NaN: not
 // stated. Panics as Spectrum does.
 func TapsGroupDelay(taps []float64, k int) []float64 {
-	middle := float64(len(taps)-1) / 2
-	ramped := make([]float64, len(taps))
-	for n, h := range taps {
-		ramped[n] = (float64(n) - middle) * h
-	}
-	fft := newPaddedFFT(k)
-	spectrum, slope := fft.transform(taps), fft.transform(ramped)
-	least := Stated * maxModulus(spectrum)
-	delay := make([]float64, len(spectrum))
-	for i, h := range spectrum {
-		delay[i] = math.NaN()
-		if modulus := cmplx.Abs(h); modulus > 0 && modulus >= least {
-			delay[i] = middle + real(slope[i]/h)
-		}
-	}
+	delay := make([]float64, k/2+1)
+	eachTapsBin(taps, k, func(bin int, _, samples float64) { delay[bin] = samples })
 	return delay
 }
+
+// eachTapsBin visits bins 0..size/2 in no order, with |H|^2 and the group delay of
+// TapsGroupDelay.
+func eachTapsBin(taps []float64, size int, visit func(k int, squared, delay float64)) {
+	middle := float64(len(taps)-1) / 2
+	h := Spectrum(taps, size)
+	largest := maxModulus(h)
+	NewTransform(size, len(taps)).Each(func(k int, v []complex128) {
+		squared, delay := power(h[k]), math.NaN()
+		if squared > 0 && squared >= Stated*Stated*largest*largest {
+			delay = middle + inPhase(v[0], h[k])/squared
+		}
+		visit(k, squared, delay)
+	}, Sequence{X: taps, Moments: true, Origin: middle})
+}
+
+// inPhase is Re{a b*}.
+func inPhase(a, b complex128) float64 { return real(a)*real(b) + imag(a)*imag(b) }
 
 func maxModulus(spectrum []complex128) float64 {
 	largest := 0.0
@@ -62,27 +80,6 @@ func maxModulus(spectrum []complex128) float64 {
 		largest = math.Max(largest, cmplx.Abs(h))
 	}
 	return largest
-}
-
-// paddedFFT transforms kernels that are shorter than the transform.
-type paddedFFT struct {
-	fft    *fourier.FFT
-	padded []float64
-}
-
-func newPaddedFFT(k int) *paddedFFT {
-	if k < 2 || k%2 != 0 {
-		panic(fmt.Sprintf("response: transform length %d is not an even number from 2 up", k))
-	}
-	return &paddedFFT{fft: fourier.NewFFT(k), padded: make([]float64, k)}
-}
-
-func (p *paddedFFT) transform(taps []float64) []complex128 {
-	if len(taps) > len(p.padded) {
-		panic(fmt.Sprintf("response: %d taps do not fit a transform of %d", len(taps), len(p.padded)))
-	}
-	clear(p.padded[copy(p.padded, taps):])
-	return p.fft.Coefficients(nil, p.padded)
 }
 
 // NextPow2 returns the least power of two that is at least n; 1 for n <= 1.

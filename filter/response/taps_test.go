@@ -42,6 +42,18 @@ func TestSpectrum(t *testing.T) {
 	}
 }
 
+// TestTapsAtEach: not a bit of difference, an odd number of frequencies included.
+func TestTapsAtEach(t *testing.T) {
+	taps, omegas := noise(4, 777), []float64{0, 0.1, 1, 2, 3, -1, math.Pi}
+	got := make([]complex128, len(omegas))
+	TapsAtEach(got, taps, omegas)
+	for i, omega := range omegas {
+		if want := TapsAt(taps, omega); got[i] != want {
+			t.Errorf("at %g: %v, want %v", omega, got[i], want)
+		}
+	}
+}
+
 // TestTapsGroupDelay: a pure delay is exact in every bin, a symmetric kernel of
 // N taps gives (N-1)/2, one pole agrees with the analytic sum, and a zero on
 // the circle is not stated there but is stated elsewhere.
