@@ -14,13 +14,13 @@ import (
 // rule, which is twice what is in use, a batch of short recordings would spend a
 // third of its time looking.
 const (
-	baseMemory = 40 << 20
+	baseMemory = 32 << 20
 	jobMemory  = 16 << 20
 )
 
 // boundMemory makes the runtime collect garbage when the bound for so many jobs is
 // near, and not before. What is in use may need more, as for the audit of a very
-// long kernel: then the bound is half as much again. The user's own GOGC and
+// long kernel: then the bound is a quarter more. The user's own GOGC and
 // GOMEMLIMIT stand.
 func boundMemory(jobs int) {
 	if os.Getenv("GOGC") != "" || os.Getenv("GOMEMLIMIT") != "" {
@@ -34,7 +34,7 @@ func boundMemory(jobs int) {
 		afterEachCollection(func() {
 			live := []metrics.Sample{{Name: "/gc/heap/live:bytes"}}
 			metrics.Read(live)
-			debug.SetMemoryLimit(max(leastMemory.Load(), int64(live[0].Value.Uint64())*3/2))
+			debug.SetMemoryLimit(max(leastMemory.Load(), int64(live[0].Value.Uint64())*5/4))
 		})
 	})
 }
