@@ -116,6 +116,11 @@ func (f *Figures) inTime(x []float64, rate, origin float64, k known, pink []floa
 	f.Lead = ahead.length(origin)
 	f.PreRing = ahead.ring(k.lobes, weighted)
 	eachStated(func(b *BandFigures, energy float64) { b.PreRing = ahead.early(b.Band, energy) })
+	if _, symmetric := response.Mirror(x); symmetric { // both sides are one
+		f.PostRing = f.PreRing
+		eachStated(func(b *BandFigures, _ float64) { b.PostRing = b.PreRing })
+		return
+	}
 	behind := newRinger(reversed(x), rate)
 	f.PostRing = behind.ring(k.lobes, weighted)
 	eachStated(func(b *BandFigures, energy float64) { b.PostRing = behind.early(b.Band, energy) })

@@ -114,5 +114,5 @@ func (p *bandSample) mixed(origin float64) (sum, most float64) {
 		m := 1 + math.Sqrt(power(h))
 		most += p.width(i) * m * m
 	}
-	return sum, most
+	return min(sum, most), most // equal but for rounding where nothing is lost
 }

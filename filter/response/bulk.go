@@ -79,7 +79,7 @@ func BulkLatencyOf(x []float64, bins []complex128, size int, rate float64) (t fl
 	c := pinkCorrelation(bins, size, rate)
 	t, symmetric := Mirror(x)
 	if !symmetric {
-		t = c.largest()
+		t = c.largest(max(2*len(x), int(bulkDensity*rate/2)))
 	}
 	return t, c.polarity(t)
 }
@@ -158,9 +158,14 @@ func (c *correlation) slope(t float64) (f, f1, f2 float64) {
 const contender = 0.9
 
 // largest is the lag of the largest modulus: every coarse maximum that could be it, refined.
-func (c *correlation) largest() float64 {
-	n := c.size / lagStride
-	coarse := c.contenders()
+// Coarse ones are looked for at n whole lags about 0, at least as many as given.
+func (c *correlation) largest(atLeast int) float64 {
+	stride := 1 // between the bins that hold so many lags
+	for c.size%(4*stride) == 0 && c.size/(2*stride) >= atLeast {
+		stride *= 2
+	}
+	n := c.size / stride
+	coarse := c.contenders(stride)
 	best, bestValue := 0.0, -1.0
 	for _, i := range slices.Sorted(maps.Keys(coarse)) {
 		if p := coarse[i]; p < coarse[(i+n-1)%n] || p < coarse[(i+1)%n] {
@@ -177,17 +182,13 @@ func (c *correlation) largest() float64 {
 	return best
 }
 
-// lagStride is every which bin is used to find lags: half the bins hold all within K/4
-// samples, the length of x at least.
-const lagStride = 2
-
 // contenders is the squared modulus at the whole lags where it comes near enough to the
-// largest; those below 0 stand at the end of K/lagStride.
-func (c *correlation) contenders() map[int]float64 {
-	n := c.size / lagStride
-	re, im := make([]float64, c.pink.Last/lagStride+1), make([]float64, c.pink.Last/lagStride+1)
-	for i := (c.pink.First + lagStride - 1) / lagStride; i < len(re); i++ {
-		v := c.weighted(i * lagStride)
+// largest, from every stride-th bin; those below 0 stand at the end of K/stride.
+func (c *correlation) contenders(stride int) map[int]float64 {
+	n := c.size / stride
+	re, im := make([]float64, c.pink.Last/stride+1), make([]float64, c.pink.Last/stride+1)
+	for i := (c.pink.First + stride - 1) / stride; i < len(re); i++ {
+		v := c.weighted(i * stride)
 		re[i], im[i] = real(v), imag(v)
 	}
 	near := nearLargest{squares: map[int]float64{}}

@@ -91,22 +91,28 @@ func finite(x float64) *float64 {
 	return &x
 }
 
+// How many windows are looked at, and how many frames of each. Those of a recording
+// under ten seconds are few and short, as the stretches are that are taken from them.
 const (
-	mostWindows  = 12
-	windowFrames = 4 * pair.AlignmentSize
+	windows, windowFrames           = 12, 4 * pair.AlignmentSize
+	shortWindows, shortWindowFrames = 4, 4096
 )
 
-// windows are where, in the output, so many frames are looked at: all of a short
-// recording, else windows spread evenly over it.
+// windows are where, in the output, so many frames are looked at: spread evenly over
+// it, or all of it if it has no more.
 func (r *rendering) windows() (starts []int64, length int64) {
-	frames := r.entry.Frames
-	if frames <= mostWindows*windowFrames {
+	frames, count := r.entry.Frames, int64(windows)
+	length = windowFrames
+	if frames < int64(10*r.entry.RateHz) {
+		count, length = shortWindows, shortWindowFrames
+	}
+	if frames <= count*length {
 		return []int64{0}, frames
 	}
-	for i := range int64(mostWindows) {
-		starts = append(starts, i*(frames-windowFrames)/(mostWindows-1))
+	for i := range count {
+		starts = append(starts, (2*i+1)*frames/(2*count)-length/2)
 	}
-	return starts, windowFrames
+	return starts, length
 }
 
 // compareWindows feeds every channel's alignment.
