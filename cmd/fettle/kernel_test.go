@@ -6,7 +6,6 @@ import (
 	"path/filepath"
 	"testing"
 
-	"fettle/audio"
 	"fettle/filter/stream/machine"
 )
 
@@ -30,7 +29,7 @@ func TestKernelIsNamed(t *testing.T) {
 			b.render(linearChain, args...).must(t, exitDone)
 			os.Unsetenv(kernelVariable)
 			mustEqual(t, "kernel", b.last()["kernel"], any(k.String()))
-			outputs = append(outputs, b.float64s("a.wav"))
+			outputs = append(outputs, samples(t, filepath.Join(b.Out, "a.wav")))
 		}
 	}
 	for i, y := range outputs {
@@ -86,19 +85,4 @@ func TestOtherKernelThanTheRecord(t *testing.T) {
 	for _, e := range b.record()[1:] {
 		mustEqual(t, "kernel of all anew", e["kernel"], any(other))
 	}
-}
-
-// float64s reads an output of 64-bit float.
-func (b *bench) float64s(rel string) []float64 {
-	b.t.Helper()
-	r, err := audio.Open(filepath.Join(b.Out, rel))
-	mustDo(b.t, err)
-	defer r.Close()
-	x := make([]float64, int(r.Frames())*r.Format().NumChannels)
-	for at := 0; at < len(x); {
-		n, err := r.ReadFrames(x[at:])
-		mustDo(b.t, err)
-		at += n * r.Format().NumChannels
-	}
-	return x
 }
