@@ -20,3 +20,20 @@ func (f fileReader) ReadAt(b []byte, at int64) (int, error) {
 	}
 	return len(b), nil
 }
+
+// Chunk returns the payload of the first chunk of that id, nil if there is none or
+// if it has more than most bytes. Errors of reading begin with the path.
+func (r *Recording) Chunk(id string, most int) ([]byte, error) {
+	for _, c := range r.layout.Chunks {
+		if c.ID != id {
+			continue
+		}
+		if c.Size > int64(most) {
+			return nil, nil
+		}
+		b := make([]byte, c.Size)
+		_, err := fileReader{r}.ReadAt(b, c.Offset)
+		return b, err
+	}
+	return nil, nil
+}

@@ -47,3 +47,9 @@ func (p part) payload() io.Reader { return io.NewSectionReader(p.from, p.offset,
 
 // inMemory is a part whose payload is b.
 func inMemory(id string, b []byte) part { return part{id, bytes.NewReader(b), 0, int64(len(b))} }
+
+// Fresh is a carriage for a file that has no original: one chunk of id, 4 printable
+// characters, stands between the fmt chunk and the samples.
+func Fresh(id string, payload []byte) *Carriage {
+	return &Carriage{head: []part{{id: "fmt "}, inMemory(id, payload)}}
+}

@@ -77,10 +77,13 @@ type measurement struct {
 	peak   int       // index in the linear region
 	mean   []float64 // cut
 	origin int       // index of the aligned instant
-	bands  []figures.Band
-	power  []float64 // of each band, mean |H|²
-	snr    []float64 // dB
-	median float64   // power of the median band
+	// cut is what of the mean is measured, cutOrigin the aligned instant's index in it.
+	cut       []float64
+	cutOrigin int
+	bands     []figures.Band
+	power     []float64 // of each band, mean |H|²
+	snr       []float64 // dB
+	median    float64   // power of the median band
 	// whole is measured of the mean, parts of the mean without each group.
 	whole *figures.Figures
 	parts []*figures.Figures
@@ -188,6 +191,7 @@ func (m *measurement) measureAll() {
 	}
 	carried := m.carried()
 	from, to := m.gates.extent(len(m.mean))
+	m.cut, m.cutOrigin = m.mean[from:to], m.origin-from
 	abreast(len(at), func(i int) { *at[i] = m.figuresOf(responses[i][from:to], m.origin-from, carried) })
 }
 
@@ -215,6 +219,7 @@ func (m *measurement) removed() int { return m.start - m.p.Lead + m.origin - m.e
 // placeIn fills in where the response is in time.
 func (r *Result) placeIn(m *measurement, driftErr float64) {
 	r.Removed = m.removed()
+	r.Response, r.Origin = m.cut, m.cutOrigin
 	r.Latency = float64(r.Removed) + r.Figures.Latency
 	r.LatencyErr = r.Errors.Latency
 	if m.repeats > 1 {

@@ -7,6 +7,7 @@ import (
 
 	"fettle/audio"
 	"fettle/audit/figures"
+	"fettle/audit/limits"
 	"fettle/audit/probe"
 )
 
@@ -47,9 +48,15 @@ type Result struct {
 	// same places, the half widths of their 95 % intervals, NaN where there is none.
 	// The sum test is taken at equal level. NotStated has keys as the audit's JSON has.
 	Figures, Errors *figures.Figures
-	Noise           []Noise
-	Products        []Product
-	Warnings        []string
+	// Response is the impulse response, cut, that Figures were taken of; Origin is the
+	// index of its aligned instant, Removed after the probe's first repeat.
+	Response []float64
+	Origin   int
+	Noise    []Noise
+	Products []Product
+	Warnings []string
+	// Verdicts are on the limits that Judge was given.
+	Verdicts []limits.Verdict
 
 	latencies []float64 // without each group
 }
@@ -137,7 +144,7 @@ func measure(p probe.Parameters, planes [][]float64) (*Report, error) {
 	return r, nil
 }
 
-// most is the greatest difference of clocks, in ppm, that is corrected. Crystals
+// mostPPM is the greatest difference of clocks, in ppm, that is corrected. Crystals
 // are within 100 (common practice, no source); more is a change of speed.
 const mostPPM = 500
 
@@ -181,5 +188,19 @@ func comparePlaces(channels []*Result) {
 		}
 		c.Behind = c.Latency - first.Latency
 		c.BehindErr = c.differenceErr(first)
+	}
+}
+
+// Judge holds every channel that has the probe against limits. Latency counts from the
+// probe's first repeat.
+func (r *Report) Judge(l []limits.Limit) {
+	for _, c := range r.Channels {
+		if c.Absent != "" {
+			continue
+		}
+		s := limits.Of(c.Figures, float64(c.Rate))
+		s.Errors = c.Errors
+		s.Latency, s.LatencyError = c.Latency, c.LatencyErr
+		c.Verdicts = limits.Judge(s, l)
 	}
 }

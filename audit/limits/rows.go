@@ -46,12 +46,13 @@ func (v Verdict) row() Row {
 
 func (v Verdict) worst() string {
 	p := v.Worst
-	text := v.amount(p.Value)
+	text := significant(p.Value)
+	if p.Half > 0 {
+		text += " ±" + strconv.FormatFloat(p.Half, 'g', 2, 64)
+	}
+	text += " " + v.Unit
 	if v.level && p.Value <= figures.None {
 		text = "none"
-	}
-	if p.Half > 0 {
-		text += fmt.Sprintf(" ± %s", significant(p.Half))
 	}
 	if p.Weights != "" {
 		text += ", " + p.Weights

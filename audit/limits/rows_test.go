@@ -49,7 +49,7 @@ func TestNotesOfRows(t *testing.T) {
 	errs := make([]figures.BandFigures, len(s.Figures.Bands))
 	m := OfBands(48000, s.Figures.Bands, errs, 1.9e-3, 0.2e-3, nil)
 	r = Rows([]Verdict{verdict(t, m, "delay spread=2 ms")})[0]
-	if r.Verdict != "not stated" || !strings.HasPrefix(r.Worst, "1.9 ms ± 0.2 at") || r.Margin != "+0.1 ms" || !strings.Contains(r.Notes[0], "interval") {
+	if r.Verdict != "not stated" || !strings.HasPrefix(r.Worst, "1.9 ±0.2 ms at") || r.Margin != "+0.1 ms" || !strings.Contains(r.Notes[0], "interval") {
 		t.Errorf("%+v", r)
 	}
 	gone := oneOff(1000, 9)

@@ -6,6 +6,7 @@ import (
 
 	"fettle/audit/estimate"
 	"fettle/audit/figures"
+	"fettle/audit/limits"
 )
 
 // Result is one channel.
@@ -27,6 +28,8 @@ type Result struct {
 	Curve     Curve
 	// NotStated has a reason for what is NaN, under the keys of the audit's JSON.
 	NotStated map[string]string
+	// Verdicts are on the limits that Judge was given.
+	Verdicts []limits.Verdict
 }
 
 // Band is one band of the transfer function. Times are relative to the bulk

@@ -79,6 +79,25 @@ func (p Parameters) Frames() int64 {
 	return int64(p.Lead) + int64(p.Repeats)*int64(p.Period)
 }
 
+// String tells a probe in one line.
+func (p Parameters) String() string {
+	what := "an impulse"
+	if p.Kind == Chirp {
+		what = fmt.Sprintf("a chirp of %.4g s from %g to %g Hz", float64(p.Signal)/float64(p.Rate), tenth(p.From), tenth(p.To))
+	}
+	dithered := ""
+	if p.Dither > 0 {
+		dithered = fmt.Sprintf(", with dither of %d bits", p.Dither)
+	}
+	times := "once"
+	if p.Repeats > 1 {
+		times = fmt.Sprintf("%d times, %.4g s apart", p.Repeats, float64(p.Period)/float64(p.Rate))
+	}
+	return fmt.Sprintf("%s, peak %g dBFS, %s, at %d Hz%s", what, p.Level, times, p.Rate, dithered)
+}
+
+func tenth(x float64) float64 { return math.Round(10*x) / 10 }
+
 // Amplitude is the peak of a signal, full scale 1.0.
 func (p Parameters) Amplitude() float64 { return math.Pow(10, p.Level/20) }
 

@@ -12,9 +12,9 @@ func limitsTable(b *strings.Builder, verdicts []limits.Verdict) {
 	if len(verdicts) == 0 {
 		return
 	}
-	fmt.Fprintf(b, "\n  %-22s %-20s %-24s %-14s %s\n", "limit", "verdict", "worst", "allowed", "margin")
+	fmt.Fprintf(b, "\n  %-22s %-18s %-30s %-11s %s\n", "limit", "verdict", "worst", "allowed", "margin")
 	for _, row := range limits.Rows(verdicts) {
-		fmt.Fprintf(b, "  %-22s %-20s %-24s %-14s %s\n", clip(row.Limit, 22), row.Verdict, clip(row.Worst, 24), clip(row.Allowed, 14), row.Margin)
+		fmt.Fprintf(b, "  %-22s %-18s %-30s %-11s %s\n", clip(row.Limit, 22), row.Verdict, clip(row.Worst, 30), clip(row.Allowed, 11), row.Margin)
 		for _, note := range row.Notes {
 			for _, line := range wrapped(note, Width-6) {
 				fmt.Fprintf(b, "      %s\n", line)
@@ -68,21 +68,13 @@ func verdictsOf(verdicts []limits.Verdict) []verdict {
 		j := verdict{
 			Name: v.Name, Source: v.Source, Status: string(v.Status), Measure: v.Measure, Outcome: string(v.Outcome), Reason: v.Reason,
 			Worst:  worst{number(v.Worst.Hz), number(v.Worst.Value), number(v.Worst.Limit), v.Unit, v.Worst.Weights},
-			Margin: number(v.Margin), UncoveredHz: numbers(v.Uncovered), UnstatedHz: numbers(v.Unstated), EarlyHz: numbers(v.Early),
+			Margin: number(v.Margin), UncoveredHz: scaled(v.Uncovered, 1), UnstatedHz: scaled(v.Unstated, 1), EarlyHz: scaled(v.Early, 1),
 		}
 		if v.Outcome == limits.Within || v.Outcome == limits.Exceeded {
 			pass := v.Outcome == limits.Within
 			j.Pass = &pass
 		}
 		out = append(out, j)
-	}
-	return out
-}
-
-func numbers(x []float64) []number {
-	out := []number{}
-	for _, v := range x {
-		out = append(out, number(v))
 	}
 	return out
 }

@@ -30,12 +30,8 @@ func Text(w io.Writer, r *audit.Result) error {
 
 func heading(b *strings.Builder, r *audit.Result) {
 	title := fmt.Sprintf("%s, %s, %s", clip(r.Chain, 48), r.Phase, place(r))
-	fmt.Fprintf(b, "%s\n%s\n", title, strings.Repeat("=", len([]rune(title))))
-	for _, sentence := range Words(r) {
-		for i, line := range wrapped(sentence, Width-4) {
-			fmt.Fprintf(b, "%s%s\n", [...]string{"  ", "    "}[min(i, 1)], line)
-		}
-	}
+	titled(b, title)
+	sentences(b, Words(r))
 	b.WriteByte('\n')
 	fmt.Fprintf(b, "  %-22s %s\n", "built as", builtOf(r))
 	if r.Character != "" {
@@ -44,10 +40,8 @@ func heading(b *strings.Builder, r *audit.Result) {
 	fmt.Fprintf(b, "  %-22s about %.0f multiplications a sample\n", "at a cost of", r.Operations)
 	label := "notes"
 	for _, note := range append(slices.Clone(r.Notes), r.Warnings...) {
-		for _, line := range wrapped(note, Width-25) {
-			fmt.Fprintf(b, "  %-22s %s\n", label, line)
-			label = ""
-		}
+		b.WriteString(fieldLines(label, note))
+		label = ""
 	}
 	fmt.Fprintf(b, "  %-22s %s dB (tolerance %g dB)\n", "off target by at most", decimal(r.TargetErrorDB, 3), r.ToleranceDB)
 }

@@ -17,16 +17,19 @@ const (
 
 // Words says in sentences what a result does to timing, whether its output may
 // be mixed with the untreated, and which limit is nearest.
-func Words(r *audit.Result) []string {
-	out := []string{timing(r), mixing(r.Figures)}
-	if s := nearest(r.Verdicts); s != "" {
+func Words(r *audit.Result) []string { return words(r.Figures, r.Verdicts) }
+
+func words(f *figures.Figures, verdicts []limits.Verdict) []string {
+	out := []string{timingOf(f), mixing(f)}
+	if s := nearest(verdicts); s != "" {
 		out = append(out, s)
 	}
 	return out
 }
 
-func timing(r *audit.Result) string {
-	f := r.Figures
+func timing(r *audit.Result) string { return timingOf(r.Figures) }
+
+func timingOf(f *figures.Figures) string {
 	var s string
 	switch last, first, ok := extremes(f.Bands); {
 	case math.IsNaN(f.DelaySpread) || !ok:

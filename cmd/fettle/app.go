@@ -79,14 +79,14 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 	app := &cli.App{
 		Name:      "fettle",
 		Usage:     "clean recordings, aligned to the sample",
-		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN\nfettle audit limits\nfettle compare CHAIN [CHAIN...]\nfettle export CHAIN\nfettle verify FOLDER\nfettle gather FOLDER",
+		UsageText: "fettle render --chain CHAIN --out FOLDER INPUT...\nfettle audit chain CHAIN\nfettle audit capture PROBE CAPTURE\nfettle audit pair ORIGINAL PROCESSED\nfettle audit limits\nfettle probe chirp --out FILE\nfettle compare CHAIN [CHAIN...]\nfettle export CHAIN\nfettle verify FOLDER\nfettle gather FOLDER",
 		Description: "Puts recordings through one chain of filters and hands them back aligned\n" +
 			"to the sample, with a record of what was done; and says in numbers what\n" +
 			"the chain does to time. Flags may stand before or after arguments.",
 		Version:   version(),
 		Writer:    stdout,
 		ErrWriter: stderr,
-		Commands:  []*cli.Command{renderCommand(), auditCommand(), compareCommand(), exportCommand(), verifyCommand(), gatherCommand()},
+		Commands:  []*cli.Command{renderCommand(), auditCommand(), probeCommand(), compareCommand(), exportCommand(), verifyCommand(), gatherCommand()},
 		// Errors are printed in one place, by finish.
 		ExitErrHandler:  func(*cli.Context, error) {},
 		OnUsageError:    usageError,

@@ -23,9 +23,9 @@ import (
 func auditCommand() *cli.Command {
 	return &cli.Command{
 		Name:        "audit",
-		Usage:       "say what a chain does to time",
-		UsageText:   "fettle audit chain CHAIN\nfettle audit limits",
-		Subcommands: []*cli.Command{auditChainCommand(), auditLimitsCommand()},
+		Usage:       "say what a chain, a device or a treatment does to time",
+		UsageText:   "fettle audit chain CHAIN\nfettle audit capture PROBE CAPTURE\nfettle audit pair ORIGINAL PROCESSED\nfettle audit limits",
+		Subcommands: []*cli.Command{auditChainCommand(), auditCaptureCommand(), auditPairCommand(), auditLimitsCommand()},
 		Action: func(c *cli.Context) error {
 			if c.Args().Present() {
 				return fmt.Errorf("%q: there is no such audit; see fettle audit --help", c.Args().First())
@@ -85,8 +85,8 @@ func auditChain(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	for _, name := range []string{c.String("json"), c.String("csv"), c.String("curve-csv"), c.String("html")} {
-		if err := tryWriting(name); err != nil {
+	for _, flag := range reportFlags {
+		if err := tryWriting(c.String(flag)); err != nil {
 			return err
 		}
 	}
@@ -211,7 +211,7 @@ func (a *chainAudit) listen() (*onsets.Report, error) {
 func (a *chainAudit) print(c *cli.Context, results []*audit.Result) error {
 	w := c.App.Writer
 	switch {
-	case c.String("json") == "-", c.String("csv") == "-", c.String("curve-csv") == "-", c.String("html") == "-":
+	case toStdout(c):
 		return nil
 	case c.Bool("methods"):
 		return printEach(w, results, func(r *audit.Result) error { return report.Methods(w, a.chain, r, c.App.Version) })

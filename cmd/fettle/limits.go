@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"strings"
+	"unicode/utf8"
 
 	"fettle/audit/limits"
 
@@ -33,15 +34,26 @@ func auditLimitsCommand() *cli.Command {
 
 // printWrapped sets a paragraph in four columns, for 80.
 func printWrapped(c *cli.Context, text string) {
-	line := "   "
+	fmt.Fprintln(c.App.Writer, "    "+strings.ReplaceAll(folded(text, 76), "\n", "\n    "))
+}
+
+// folded breaks a paragraph into lines of at most width characters.
+func folded(text string, width int) string {
+	var b strings.Builder
+	at := 0
 	for _, word := range strings.Fields(text) {
-		if len(line)+1+len(word) > 80 {
-			fmt.Fprintln(c.App.Writer, line)
-			line = "   "
+		n := utf8.RuneCountInString(word)
+		switch {
+		case at == 0:
+		case at+1+n > width:
+			b.WriteByte('\n')
+			at = 0
+		default:
+			b.WriteByte(' ')
+			at++
 		}
-		line += " " + word
+		b.WriteString(word)
+		at += n
 	}
-	if strings.TrimSpace(line) != "" {
-		fmt.Fprintln(c.App.Writer, line)
-	}
+	return b.String()
 }

@@ -14,6 +14,7 @@ import (
 	"unicode"
 	"unicode/utf8"
 
+	"fettle/audit/report"
 	"fettle/audit/report/page"
 
 	"github.com/google/renameio/v2"
@@ -22,7 +23,7 @@ import (
 
 // ours is how a file begins that fettle wrote and may replace; a recording, a
 // chain or anybody's notes named by mistake must not be lost.
-var ours = [][]byte{[]byte("{\n \"schema\": \"fettle."), []byte("chain,phase,rate_hz,channel,stage,"), []byte(page.Start)}
+var ours = [][]byte{[]byte("{\n \"schema\": \"fettle."), []byte("chain,phase,rate_hz,channel,stage,"), []byte(report.MeasuredCSV), []byte(page.Start)}
 
 func isOurs(start []byte) bool {
 	return page.IsPlot(start) || slices.ContainsFunc(ours, func(o []byte) bool { return bytes.HasPrefix(start, o) })

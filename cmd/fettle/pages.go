@@ -7,7 +7,9 @@ import (
 	"path/filepath"
 
 	"fettle/audit"
+	"fettle/audit/capture"
 	"fettle/audit/choose"
+	"fettle/audit/pair"
 	"fettle/audit/report"
 	"fettle/audit/report/page"
 
@@ -75,4 +77,32 @@ func writePages(c *cli.Context, p page.Page) error {
 		}
 	}
 	return nil
+}
+
+// capturePage is the page of a capture, one subject a channel.
+func capturePage(c *cli.Context, n report.Names, r *capture.Report) page.Page {
+	p := page.Page{Title: n.To + ", a capture of " + n.From, Version: c.App.Version, Notes: r.Warnings}
+	p.Tables = []page.Table{tableOf("The capture as a whole", report.CaptureTable(r))}
+	for _, ch := range r.Channels {
+		p.Subjects = append(p.Subjects, page.OfCapture(ch))
+	}
+	return p
+}
+
+// pairPage is the page of a processed recording beside its original, one subject a
+// channel.
+func pairPage(c *cli.Context, n report.Names, r *pair.Report) page.Page {
+	p := page.Page{Title: n.To + " beside " + n.From, Version: c.App.Version, Notes: r.Warnings}
+	if r.Reason != "" {
+		p.Summary = []string{r.Reason + "."}
+	}
+	p.Tables = []page.Table{tableOf("The pair as a whole", report.PairTable(r))}
+	for _, ch := range r.Channels {
+		p.Subjects = append(p.Subjects, page.OfPair(r, ch))
+	}
+	return p
+}
+
+func tableOf(caption string, rows [][]string) page.Table {
+	return page.Table{Caption: caption, Head: rows[0], Rows: rows[1:]}
 }

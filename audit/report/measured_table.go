@@ -1,0 +1,81 @@
+package report
+
+import (
+	"fmt"
+
+	"fettle/audit/capture"
+	"fettle/audit/figures"
+	"fettle/audit/pair"
+)
+
+// CaptureTable gives a capture's figures as rows of text, one column a channel; the
+// first row has their names.
+func CaptureTable(r *capture.Report) [][]string {
+	channels := captureChannels("", r)
+	places := map[int]*capture.Result{}
+	for _, c := range r.Channels {
+		places[c.Channel] = c
+	}
+	rows := measuredTable(channels)
+	row := func(name string, cell func(c *capture.Result) string) {
+		cells := []string{name}
+		for _, c := range channels {
+			cells = append(cells, cell(places[c.channel]))
+		}
+		rows = append(rows, cells)
+	}
+	row("latency, samples", func(c *capture.Result) string { return plusMinus(c.Latency, c.LatencyErr, 4) })
+	row("behind the first channel, samples", func(c *capture.Result) string { return plusMinus(c.Behind, c.BehindErr, 4) })
+	row("clock drift, ppm", func(*capture.Result) string { return plusMinus(r.Drift.PPM, r.Drift.Err, 3) })
+	row("distortion", func(c *capture.Result) string { return productsOf(c.Products) })
+	row("limits", func(c *capture.Result) string { return limitsCell(c.Verdicts) })
+	return rows
+}
+
+// PairTable gives a pair's figures as rows of text, one column a channel; the first
+// row has their names.
+func PairTable(r *pair.Report) [][]string {
+	rows := [][]string{{""}, {"verdict"}, {"delay, samples"}, {"gain, dB"}, {"coherence"}, {"polarity"}, {"delay spread"}, {"limits"}}
+	for _, c := range r.Channels {
+		cells := []string{fmt.Sprintf("channel %d", c.Channel), string(r.Verdict), plusMinus(c.Delay, c.DelayErr, 4), plusMinus(c.Gain, c.GainErr, 3),
+			decimal(c.Coherence, 3), polarityOf(&figures.Figures{Polarity: c.Polarity}), plusMinusMS(c.DelaySpread, c.DelaySpreadErr), limitsCell(c.Verdicts)}
+		if c.Absent != "" {
+			cells = []string{cells[0], c.Absent, "", "", "", "", "", ""}
+		}
+		for i := range rows {
+			rows[i] = append(rows[i], cells[i])
+		}
+	}
+	return rows
+}
+
+// measuredTable has what captures' figures as a whole have in common.
+func measuredTable(channels []measuredChannel) [][]string {
+	head := []string{""}
+	for _, c := range channels {
+		head = append(head, fmt.Sprintf("channel %d", c.channel))
+	}
+	rows := [][]string{head}
+	for _, x := range []struct {
+		name string
+		cell func(f, e *figures.Figures) string
+	}{
+		{"polarity", func(f, _ *figures.Figures) string { return polarityOf(f) }},
+		{"delay spread", func(f, e *figures.Figures) string { return plusMinusMS(f.DelaySpread, e.DelaySpread) }},
+		{"phase deviation, degrees", func(f, e *figures.Figures) string { return plusMinus(f.PhaseDeviation, e.PhaseDeviation, 2) }},
+		{"smear, pink", func(f, e *figures.Figures) string { return plusMinusMS(f.Pink.Total, e.Pink.Total) }},
+		{"of it by phase", func(f, e *figures.Figures) string { return plusMinusMS(f.Pink.Phase, e.Pink.Phase) }},
+		{"pre-ring to -60 dB, white", func(f, e *figures.Figures) string { return plusMinusMS(f.PreRing.White.Length, e.PreRing.White.Length) }},
+		{"post-ring to -60 dB, white", func(f, e *figures.Figures) string {
+			return plusMinusMS(f.PostRing.White.Length, e.PostRing.White.Length)
+		}},
+		{"sum test, dB", func(f, e *figures.Figures) string { return plusMinus(f.SumTest, e.SumTest, 2) }},
+	} {
+		cells := []string{x.name}
+		for _, c := range channels {
+			cells = append(cells, x.cell(c.figures, c.errs))
+		}
+		rows = append(rows, cells)
+	}
+	return rows
+}
