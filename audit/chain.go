@@ -48,6 +48,8 @@ type Result struct {
 	// and AnalyticDisagreement between impulse and the coefficients' own
 	// formulas, in the worst carried band; NaN when no band is carried.
 	Disagreement, AnalyticDisagreement float64
+	// ThroughFile is what Ship adds, one entry a kind of probe.
+	ThroughFile []ThroughFile
 }
 
 // Chain audits every path of a realised chain under one kernel.

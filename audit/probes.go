@@ -10,8 +10,8 @@ import (
 	goaudio "github.com/go-audio/audio"
 )
 
-// probe is a signal that plays in every channel.
-type probe struct {
+// played is a signal that plays in every channel.
+type played struct {
 	format *goaudio.Format
 	signal []float64
 	at     int // frames played
@@ -19,7 +19,7 @@ type probe struct {
 
 // everywhere plays one signal in every channel.
 func everywhere(rate, channels int, signal []float64) audio.Source {
-	return &probe{format: &goaudio.Format{SampleRate: rate, NumChannels: channels}, signal: signal}
+	return &played{format: &goaudio.Format{SampleRate: rate, NumChannels: channels}, signal: signal}
 }
 
 // impulse is a probe of silence with one sample of 1 at frame at.
@@ -29,10 +29,10 @@ func impulse(rate, channels, at, frames int) audio.Source {
 	return everywhere(rate, channels, x)
 }
 
-func (p *probe) Format() *goaudio.Format { return p.format }
-func (p *probe) Frames() int64           { return int64(len(p.signal)) }
+func (p *played) Format() *goaudio.Format { return p.format }
+func (p *played) Frames() int64           { return int64(len(p.signal)) }
 
-func (p *probe) ReadFrames(dst []float64) (int, error) {
+func (p *played) ReadFrames(dst []float64) (int, error) {
 	channels := p.format.NumChannels
 	frames := min(len(dst)/channels, len(p.signal)-p.at)
 	if frames == 0 {

@@ -16,8 +16,8 @@ const ChunkID = "fprb"
 // generator makes of it gets another number.
 const Schema = "fettle.probe/1"
 
-// MostBytes is the longest payload that is looked at.
-const MostBytes = 4096
+// mostBytes is the longest payload that is looked at.
+const mostBytes = 4096
 
 // ErrNoProbe marks bytes that are no parameters of a probe.
 var ErrNoProbe = errors.New("not the parameters of a probe")
@@ -40,8 +40,8 @@ func (p Parameters) Encode() []byte {
 // Decode reads what Encode wrote and checks it. Errors unwrap to ErrNoProbe.
 func Decode(payload []byte) (Parameters, error) {
 	payload = bytes.TrimRight(payload, "\x00")
-	if len(payload) > MostBytes {
-		return Parameters{}, fmt.Errorf("%w: %d bytes, more than %d", ErrNoProbe, len(payload), MostBytes)
+	if len(payload) > mostBytes {
+		return Parameters{}, fmt.Errorf("%w: %d bytes, more than %d", ErrNoProbe, len(payload), mostBytes)
 	}
 	var d document
 	dec := json.NewDecoder(bytes.NewReader(payload))

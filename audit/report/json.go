@@ -65,6 +65,7 @@ type result struct {
 	Bands             []band            `json:"bands"`
 	Curve             curve             `json:"curve"`
 	Probes            probes            `json:"probes"`
+	ThroughFile       []throughFile     `json:"through_file,omitempty"`
 	Limits            []verdict         `json:"limits"`
 	NotStated         map[string]string `json:"not_stated"`
 }
@@ -202,6 +203,9 @@ func resultOf(r *audit.Result) result {
 	out.TargetErrorDB = number(r.TargetErrorDB)
 	out.Probes = probes{number(r.Disagreement * toUS), number(r.AnalyticDisagreement * toUS)}
 	out.Limits = verdictsOf(r.Verdicts)
+	for _, t := range r.ThroughFile {
+		out.ThroughFile = append(out.ThroughFile, throughFileJSON(t))
+	}
 	if r.Character != "" {
 		out.Character = &r.Character
 	}

@@ -162,6 +162,9 @@ func microseconds(seconds float64) string {
 	if math.IsNaN(seconds) {
 		return "not stated"
 	}
+	if us := seconds * toUS; us >= 1 {
+		return fmt.Sprintf("%.0f us", us)
+	}
 	return fmt.Sprintf("%.1g us", seconds*toUS)
 }
 

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"context"
 	"errors"
 	"fmt"
 	"io"
@@ -10,6 +11,7 @@ import (
 	"strings"
 
 	"fettle/audio"
+	"fettle/audio/pcm"
 	"fettle/audit"
 	"fettle/audit/limits"
 	"fettle/audit/onsets"
@@ -51,6 +53,7 @@ func auditChainCommand() *cli.Command {
 			phaseFlag(),
 			limitFlag(),
 			&cli.StringFlag{Name: "recording", Usage: "what becomes of the onsets in `FILE`, too"},
+			&cli.StringFlag{Name: "through-file", Usage: "measure through files of `FORMAT`, such as pcm24, too"},
 			flag("stages", "what each stage costs by itself, too"),
 			flag("methods", "print a paragraph for a treatment report instead"),
 			kernelFlag(),
@@ -90,7 +93,7 @@ func auditChain(c *cli.Context) error {
 			return err
 		}
 	}
-	results, err := unlessInterrupted(c.Context, a.run)
+	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) { return a.run(c.Context) })
 	if err != nil {
 		return err
 	}
@@ -116,6 +119,7 @@ type chainAudit struct {
 	rates  []int
 	kernel machine.Kernel
 	limits []limits.Limit
+	file   *pcm.Encoding   // of files to measure through; nil: none
 	apart  bool            // each stage by itself, too
 	heard  report.Heard    // empty: no recording is named
 	stages []*audit.Result // of the first rate
@@ -130,6 +134,9 @@ func newChainAudit(c *cli.Context) (a *chainAudit, err error) {
 		return nil, err
 	}
 	if a.kernel, _, err = kernelOf(c); err != nil {
+		return nil, err
+	}
+	if a.file, err = encodingOf("through-file", c.String("through-file")); err != nil {
 		return nil, err
 	}
 	if a.limits, err = limitsOf(c, a.chain); err != nil {
@@ -151,7 +158,7 @@ func limitsOf(c *cli.Context, chain *filter.Chain) ([]limits.Limit, error) {
 	return append(all, more...), nil
 }
 
-func (a *chainAudit) run() ([]*audit.Result, error) {
+func (a *chainAudit) run(ctx context.Context) ([]*audit.Result, error) {
 	var all []*audit.Result
 	for _, rate := range a.rates {
 		f, err := a.chain.Realise(rate, a.phase)
@@ -164,6 +171,11 @@ func (a *chainAudit) run() ([]*audit.Result, error) {
 		}
 		for _, r := range results {
 			r.Judge(a.limits)
+		}
+		if a.file != nil {
+			if err := audit.Ship(ctx, f, results, a.kernel, *a.file); err != nil {
+				return nil, err
+			}
 		}
 		all = append(all, results...)
 	}
@@ -222,6 +234,15 @@ func (a *chainAudit) print(c *cli.Context, results []*audit.Result) error {
 		}
 	default:
 		if err := printEach(w, results, func(r *audit.Result) error { return report.Text(w, r) }); err != nil {
+			return err
+		}
+	}
+	for _, r := range results {
+		if len(r.ThroughFile) == 0 {
+			continue
+		}
+		fmt.Fprintf(w, "\n%s\n", report.Label(r))
+		if err := report.ThroughFile(w, r); err != nil {
 			return err
 		}
 	}

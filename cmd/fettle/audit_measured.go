@@ -181,21 +181,15 @@ func swapped(n report.Names) error {
 }
 
 // parametersOf reads a probe's parameters from its file.
-func parametersOf(probeFile, captured *audio.Recording, n report.Names) (p probe.Parameters, err error) {
-	chunk, err := probeFile.Chunk(probe.ChunkID, probe.MostBytes)
-	if err != nil {
+func parametersOf(probeFile, captured *audio.Recording, n report.Names) (probe.Parameters, error) {
+	p, err := probe.Of(probeFile)
+	if !errors.Is(err, probe.ErrNoProbe) {
 		return p, err
 	}
-	if chunk == nil {
-		if other, err := captured.Chunk(probe.ChunkID, probe.MostBytes); err == nil && other != nil {
-			return p, swapped(n)
-		}
-		return p, fmt.Errorf("%s: is no probe of fettle's, it has no %q chunk; name the file that fettle probe made, unchanged", n.From, probe.ChunkID)
+	if _, other := probe.Of(captured); other == nil {
+		return p, swapped(n)
 	}
-	if p, err = probe.Decode(chunk); err != nil {
-		return p, fmt.Errorf("%s: %w", n.From, err)
-	}
-	return p, nil
+	return p, fmt.Errorf("%s: %w", n.From, err)
 }
 
 func auditPair(c *cli.Context) error {

@@ -2,15 +2,10 @@ package main
 
 import (
 	"cmp"
-	"context"
 	"errors"
 	"fmt"
-	"io"
 	"os"
 
-	"fettle/audio"
-	"fettle/audio/container"
-	"fettle/audio/pcm"
 	"fettle/audit/probe"
 	"fettle/filter"
 
@@ -74,7 +69,7 @@ func makeProbe(c *cli.Context, kind probe.Kind) error {
 	if err != nil {
 		return err
 	}
-	to, err := encodingOf(cmp.Or(c.String("format"), "pcm24"))
+	to, err := encodingOf("format", cmp.Or(c.String("format"), "pcm24"))
 	if err != nil {
 		return err
 	}
@@ -85,7 +80,7 @@ func makeProbe(c *cli.Context, kind probe.Kind) error {
 	case err == nil:
 		return fmt.Errorf("--out: %s: is there already; name a new file", name)
 	}
-	if err := writeProbe(c.Context, name, p, *to); err != nil {
+	if err := p.Write(c.Context, name, *to); err != nil {
 		return err
 	}
 	describeProbe(c, name, p)
@@ -114,38 +109,6 @@ func probeOf(c *cli.Context, kind probe.Kind) (p probe.Parameters, err error) {
 		}
 	}
 	return r.Plan()
-}
-
-// writeProbe writes a probe with its parameters.
-func writeProbe(ctx context.Context, name string, p probe.Parameters, to pcm.Encoding) error {
-	spec := audio.Spec{Rate: p.Rate, Channels: p.Channels, Encoding: to, Frames: p.Frames(),
-		Carriage: container.Fresh(probe.ChunkID, p.Encode())}
-	if !to.Float && (p.Dither == 0 || p.Dither > to.Bits) { // else the probe's own dither serves
-		for ch := range p.Channels {
-			spec.Dither = append(spec.Dither, pcm.NewDither([32]byte{}, string(p.Encode()), ch))
-		}
-	}
-	w, err := audio.Create(name, spec)
-	if err != nil {
-		return err
-	}
-	defer w.Abort()
-	src := p.Source()
-	for buf := make([]float64, 16384*p.Channels); ; {
-		n, err := src.ReadFrames(buf)
-		if err == io.EOF {
-			return w.Commit()
-		}
-		if err == nil {
-			err = w.WriteFrames(buf[:n*p.Channels])
-		}
-		if err == nil {
-			err = ctx.Err()
-		}
-		if err != nil {
-			return err
-		}
-	}
 }
 
 func describeProbe(c *cli.Context, name string, p probe.Parameters) {

@@ -159,21 +159,21 @@ func renderOptions(c *cli.Context) (batch.Options, error) {
 			return o, fmt.Errorf("--shard: %w", err)
 		}
 	}
-	if o.Encoding, err = encodingOf(c.String("format")); err != nil {
+	if o.Encoding, err = encodingOf("format", c.String("format")); err != nil {
 		return o, err
 	}
 	o.Headroom, err = headroomOf(c.String("headroom"))
 	return o, err
 }
 
-// encodingOf is nil for none.
-func encodingOf(name string) (*pcm.Encoding, error) {
+// encodingOf reads the format that a flag names; nil for none.
+func encodingOf(flag, name string) (*pcm.Encoding, error) {
 	if name == "" {
 		return nil, nil
 	}
 	e, err := pcm.ParseEncoding(name)
 	if err != nil {
-		return nil, fmt.Errorf("--format: %w", err)
+		return nil, fmt.Errorf("--%s: %w", flag, err)
 	}
 	return &e, nil
 }
