@@ -139,11 +139,11 @@ type band struct {
 type curve struct {
 	Hz            []number `json:"hz"`
 	MagnitudeDB   []number `json:"magnitude_db"`
-	MagnitudeErr  []number `json:"magnitude_db_err,omitempty"`
+	MagnitudeErr  []number `json:"magnitude_db_err,omitzero"`
 	PhaseDeg      []number `json:"phase_deg"`
-	PhaseErr      []number `json:"phase_deg_err,omitempty"`
+	PhaseErr      []number `json:"phase_deg_err,omitzero"`
 	GroupDelayMS  []number `json:"group_delay_ms"`
-	GroupDelayErr []number `json:"group_delay_ms_err,omitempty"`
+	GroupDelayErr []number `json:"group_delay_ms_err,omitzero"`
 	Coherence     []number `json:"coherence,omitempty"`
 }
 

@@ -8,3 +8,8 @@ import _ "embed"
 //
 //go:embed compare-1.json
 var Compare []byte
+
+// Audit is the schema of fettle.audit/1.
+//
+//go:embed audit-1.json
+var Audit []byte
