@@ -25,11 +25,28 @@ func CaptureTable(r *capture.Report) [][]string {
 		rows = append(rows, cells)
 	}
 	row("latency, samples", func(c *capture.Result) string { return plusMinus(c.Latency, c.LatencyErr, 4) })
-	row("behind the first channel, samples", func(c *capture.Result) string { return plusMinus(c.Behind, c.BehindErr, 4) })
+	if len(channels) > 1 {
+		row("after the first channel, samples", func(c *capture.Result) string { return plusMinus(c.Behind, c.BehindErr, 4) })
+	}
 	row("clock drift, ppm", func(*capture.Result) string { return plusMinus(r.Drift.PPM, r.Drift.Err, 3) })
-	row("distortion", func(c *capture.Result) string { return productsOf(c.Products) })
+	for i := range mostProducts(r) {
+		row(fmt.Sprintf("distortion of order %d, dB", i+2), func(c *capture.Result) string {
+			if i >= len(c.Products) {
+				return "not stated"
+			}
+			return plusMinus(c.Products[i].Level, c.Products[i].Err, 1)
+		})
+	}
 	row("limits", func(c *capture.Result) string { return limitsCell(c.Verdicts) })
 	return rows
+}
+
+// mostProducts is how many orders of distortion any channel tells of, from the second on.
+func mostProducts(r *capture.Report) (most int) {
+	for _, c := range r.Channels {
+		most = max(most, len(c.Products))
+	}
+	return most
 }
 
 // PairTable gives a pair's figures as rows of text, one column a channel; the first

@@ -5,6 +5,7 @@ import (
 	"io"
 	"os"
 	"path/filepath"
+	"strings"
 
 	"fettle/audit"
 	"fettle/audit/capture"
@@ -81,7 +82,7 @@ func writePages(c *cli.Context, p page.Page) error {
 
 // capturePage is the page of a capture, one subject a channel.
 func capturePage(c *cli.Context, n report.Names, r *capture.Report) page.Page {
-	p := page.Page{Title: n.To + ", a capture of " + n.From, Version: c.App.Version, Notes: r.Warnings}
+	p := page.Page{Title: n.To + ", a capture of " + n.From, Version: c.App.Version, Notes: append(notesOf(r.Warnings), measuredNote)}
 	p.Tables = []page.Table{tableOf("The capture as a whole", report.CaptureTable(r))}
 	for _, ch := range r.Channels {
 		p.Subjects = append(p.Subjects, page.OfCapture(ch))
@@ -89,10 +90,22 @@ func capturePage(c *cli.Context, n report.Names, r *capture.Report) page.Page {
 	return p
 }
 
+// measuredNote says what differs from the page of a chain.
+const measuredNote = "Shaded bands and ± are 95 % intervals. A band counts as carried when it lies within 40 dB of the median band and stands out of the noise."
+
+// notesOf makes whole sentences of warnings.
+func notesOf(warnings []string) []string {
+	var out []string
+	for _, w := range warnings {
+		out = append(out, strings.ToUpper(w[:1])+w[1:]+".")
+	}
+	return out
+}
+
 // pairPage is the page of a processed recording beside its original, one subject a
 // channel.
 func pairPage(c *cli.Context, n report.Names, r *pair.Report) page.Page {
-	p := page.Page{Title: n.To + " beside " + n.From, Version: c.App.Version, Notes: r.Warnings}
+	p := page.Page{Title: n.To + " beside " + n.From, Version: c.App.Version, Notes: append(notesOf(r.Warnings), measuredNote)}
 	if r.Reason != "" {
 		p.Summary = []string{r.Reason + "."}
 	}

@@ -101,7 +101,9 @@ func charts(subjects []Subject) []*chart {
 	}
 	out = append(out, groupDelay(drawn))
 	out = append(out, underLimits(drawn)...)
-	out = append(out, phaseDeviation(drawn))
+	if c := phaseDeviation(drawn); c != nil {
+		out = append(out, c)
+	}
 	out = append(out, timelines(drawn)...)
 	return append(out, inTime(drawn)...)
 }

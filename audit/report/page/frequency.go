@@ -88,8 +88,14 @@ func magnitude(subjects []Subject) *chart {
 	c.note = "What passes at each frequency, relative to the input."
 	lowest, highest := math.Inf(1), math.Inf(-1)
 	for _, s := range subjects {
-		lowest = min(lowest, slices.Min(s.Figures.Curve.Magnitude))
-		highest = max(highest, slices.Max(s.Figures.Curve.Magnitude))
+		for _, db := range s.Figures.Curve.Magnitude {
+			if !math.IsNaN(db) {
+				lowest, highest = min(lowest, db), max(highest, db)
+			}
+		}
+	}
+	if lowest > highest { // nothing is stated
+		lowest, highest = 0, 0
 	}
 	c.y.min, c.y.max = roundedRange(min(max(lowest, highest-below), highest-12), highest+3)
 	if t := targets(subjects); t != nil {
@@ -319,7 +325,7 @@ func underLimit(subjects []Subject, i int, v limits.Verdict, points map[float64]
 	return c
 }
 
-// phaseDeviation draws each carried band's.
+// phaseDeviation draws each carried band's. Nil: none is stated.
 func phaseDeviation(subjects []Subject) *chart {
 	q := quantity{"phase deviation", "degrees", 2,
 		func(s Subject, i int) float64 {
@@ -333,7 +339,7 @@ func phaseDeviation(subjects []Subject) *chart {
 	c.y.label = "phase deviation, degrees"
 	c.note = "How far each carried band's phase lies, on average, from that of a plain delay."
 	c.columns = []column{{"band", "Hz", 1}}
-	worst := 1.0
+	worst, stated := 1.0, false
 	longest := subjects[0].Figures.Bands
 	for i, s := range subjects {
 		p := penOf(i)
@@ -348,12 +354,16 @@ func phaseDeviation(subjects []Subject) *chart {
 				worst = v.value
 			}
 		}
+		stated = stated || slices.ContainsFunc(m.lines, func(l segment) bool { return !math.IsNaN(l.y0) })
 		c.marks = append(c.marks, m)
 		c.keys = append(c.keys, key{text: s.Label, pen: p})
 		c.columns = append(c.columns, column{s.Label, q.unit, q.digits})
 		if len(s.Figures.Bands) > len(longest) {
 			longest = s.Figures.Bands
 		}
+	}
+	if !stated {
+		return nil
 	}
 	for k, b := range longest {
 		cells := []cell{exact(b.Nominal)}
