@@ -65,7 +65,7 @@ func NewAlignment(rate int, frames int64, known []complex128) *Alignment {
 	}
 	a := &Alignment{size: AlignmentSize}
 	parts := min(max(frames/int64(secondsAStretch*rate), usualStretchesOf), mostStretchesOf)
-	if frames < int64(secondsAStretch*rate) {
+	if frames < usualStretchesOf*AlignmentSize {
 		a.size, parts = shortestStretch, shortStretchesOf
 	}
 	a.part = max(frames/parts, int64(a.size))
@@ -182,7 +182,11 @@ func (a *Alignment) Result() Placement {
 	if p.NotStated = a.nothing(all); p.NotStated != "" {
 		return p
 	}
-	p.Coherence = all.bestOctave()
+	var resolved bool
+	if p.Coherence, resolved = all.bestOctave(); !resolved {
+		p.NotStated = fmt.Sprintf("what the output holds lies too low for stretches of %d frames", a.size)
+		return p
+	}
 	if p.Coherence < max(related, chanceOf/float64(all.segments)) {
 		p.Unrelated = true
 		p.NotStated = fmt.Sprintf("the output has little in common with what the chain makes of the original (coherence %.2f)", p.Coherence)
@@ -221,9 +225,10 @@ func (a *Alignment) nothing(all *spectra) string {
 }
 
 // bestOctave is the coherence of the octave where it is greatest, among those that hold
-// a thousandth of the output.
-func (s *spectra) bestOctave() float64 {
-	var all, best float64
+// a thousandth of the output. Not resolved: none of the octaves that the stretches are
+// long enough for does.
+func (s *spectra) bestOctave() (best float64, resolved bool) {
+	var all float64
 	for _, v := range s.yy {
 		all += v
 	}
@@ -233,10 +238,10 @@ func (s *spectra) bestOctave() float64 {
 			own += v
 		}
 		if own >= 1e-3*all {
-			best = max(best, s.coherence(lo, 2*lo))
+			best, resolved = max(best, s.coherence(lo, 2*lo)), true
 		}
 	}
-	return best
+	return best, resolved
 }
 
 // leakage is the share of the strongest bin's power under which a bin may hold nothing but

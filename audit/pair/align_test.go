@@ -232,3 +232,28 @@ func BenchmarkAlignment(b *testing.B) {
 		a.Result()
 	}
 }
+
+// TestLowSoundsAreNotJudged: sound below what the stretches resolve, of which a chain that
+// rings for longer leaves what cannot be foretold from them, is not called wrong.
+func TestLowSoundsAreNotJudged(t *testing.T) {
+	const chain = "phase: iir\nstages:\n  - highpass: {at: 60 Hz, order: 2}\n  - notch: {at: 50 Hz, q: 12}\n"
+	const rate = 48000
+	sweep := make([]float64, 16384) // 5 to 40 Hz
+	for n := range sweep {
+		at := float64(n) / float64(len(sweep))
+		sweep[n] = 0.3 * math.Sin(2*math.Pi*(5*at+17.5*at*at)*float64(len(sweep))/rate)
+	}
+	a, y := aligner(t, chain, rate, sweep)
+	if p := fed(a, sweep, y); p.Unrelated || p.NotStated == "" {
+		t.Errorf("%+v", p)
+	}
+	// All of a chirp is seen as what it is: part of it is high enough.
+	chirp := make([]float64, 10*rate)
+	for n := range chirp {
+		chirp[n] = 0.1 * math.Sin(2*math.Pi*5*1.25/math.Ln2*rate*(math.Exp2(float64(n)/rate/1.25)-1)/rate)
+	}
+	a, y = aligner(t, chain, rate, chirp)
+	if p := fed(a, chirp, y); p.NotStated != "" || math.Abs(p.Delay) > 0.01+p.Err {
+		t.Errorf("%+v", p)
+	}
+}
