@@ -38,7 +38,7 @@ type Recording struct {
 	encoding pcm.Encoding
 	format   goaudio.Format
 
-	buffer []byte
+	buffer []byte // taken at the first read
 	rest   []byte // read from the file and not yet decoded
 	next   int64  // byte in the file behind rest
 	frame  int64  // next frame to hand out
@@ -84,7 +84,6 @@ func (r *Recording) open() error {
 	f := r.layout.Format
 	r.encoding = pcm.Encoding{Float: f.Float, Bytes: f.Bytes, Bits: f.ValidBits}
 	r.format = goaudio.Format{NumChannels: f.Channels, SampleRate: f.Rate}
-	r.buffer = make([]byte, max(1, bufferBytes/f.FrameBytes())*f.FrameBytes())
 	return r.Rewind()
 }
 
@@ -142,7 +141,11 @@ func (r *Recording) SeekFrame(frame int64) error {
 }
 
 // Close closes the file.
-func (r *Recording) Close() error { return r.file.Close() }
+func (r *Recording) Close() error {
+	giveBuffer(r.buffer)
+	r.buffer, r.rest = nil, nil
+	return r.file.Close()
+}
 
 // ReadFrames reads as [Source] says. A NaN or an infinity in a float file ends
 // the stream with an error, as does a file that has become shorter since it was
@@ -193,6 +196,9 @@ func (r *Recording) fill() error {
 			return err
 		}
 	}
+	if r.buffer == nil {
+		r.buffer = takeBuffer(wholeFrames(r.layout.Format))
+	}
 	end := r.layout.Data.Offset + r.layout.Data.Size
 	b := r.buffer[:min(int64(len(r.buffer)), end-r.next)]
 	if err := r.readAt(b, r.next); err != nil {
@@ -205,6 +211,11 @@ func (r *Recording) fill() error {
 	r.next += int64(len(b))
 	r.rest = b
 	return nil
+}
+
+// wholeFrames is how many bytes of frames go through a buffer at once.
+func wholeFrames(f container.Format) int {
+	return max(1, bufferBytes/f.FrameBytes()) * f.FrameBytes()
 }
 
 // reverseSamples makes big-endian samples little-endian.

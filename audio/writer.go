@@ -6,7 +6,6 @@ import (
 	"errors"
 	"fmt"
 	"hash"
-	"hash/maphash"
 	"io"
 	"io/fs"
 	"os"
@@ -59,8 +58,9 @@ type Writer struct {
 	file      *renameio.PendingFile
 	out       io.Writer // the file
 	hash      hash.Hash
-	sent      maphash.Hash // of the same bytes, for the proof
-	sum       string       // set by Commit
+	sent      sections // the same bytes, for the proof
+	readers   int      // goroutines that read them back
+	sum       string   // set by Commit
 	quantiser *pcm.Quantiser
 	buffer    []byte
 	used      int   // bytes of buffer that hold encoded frames
@@ -87,9 +87,8 @@ func Create(path string, spec Spec) (*Writer, error) {
 	if err != nil {
 		return nil, err
 	}
-	frame := spec.Format().FrameBytes()
-	w := &Writer{path: path, spec: spec, outline: outline, file: file, out: file, hash: sha256.New(), quantiser: quantiser,
-		buffer: make([]byte, max(1, bufferBytes/frame)*frame)}
+	w := &Writer{path: path, spec: spec, outline: outline, file: file, out: file, hash: sha256.New(), readers: 1, quantiser: quantiser,
+		buffer: takeBuffer(wholeFrames(spec.Format()))}
 	if err := outline.WriteHead(putter{w}); err != nil {
 		return nil, w.abandon(err)
 	}
@@ -200,7 +199,7 @@ func (w *Writer) Commit() error {
 		w.err = err
 		return w.abandon(err)
 	}
-	w.done = true
+	w.end()
 	return syncFolder(w.path)
 }
 
@@ -230,24 +229,17 @@ func (w *Writer) finish() error {
 	return nil
 }
 
-// prove reads the file back. A keyed hash of 64 bits, many times as fast as
-// SHA-256, is enough to compare what was sent with what is there.
+// Readers sets how many goroutines may read the file back at once for the proof, 1
+// or more; without it, it is one.
+func (w *Writer) Readers(n int) { w.readers = n }
+
+// prove reads the file back.
 func (w *Writer) prove() error {
 	if w.spec.Proof == nil {
 		return nil
 	}
-	f, err := os.Open(w.file.Name())
-	if err != nil {
-		return fmt.Errorf("cannot be read back: %w; check the disk", bare(err))
-	}
-	defer f.Close()
-	var back maphash.Hash
-	back.SetSeed(w.sent.Seed())
-	if _, err := io.CopyBuffer(struct{ io.Writer }{&back}, f, make([]byte, bufferBytes)); err != nil {
-		return fmt.Errorf("cannot be read back: %w; check the disk", bare(err))
-	}
-	if back.Sum64() != w.sent.Sum64() {
-		return errors.New("read back, it is not what was written; check the disk and the memory")
+	if err := w.sent.readBack(w.file.Name(), w.readers, w.buffer); err != nil {
+		return err
 	}
 	return w.spec.Proof(w.file.Name())
 }
@@ -280,11 +272,18 @@ func (w *Writer) Abort() error {
 	if w.done {
 		return nil
 	}
-	w.done = true
+	w.end()
 	if err := w.file.Cleanup(); err != nil {
 		return fmt.Errorf("%s: its temporary file cannot be removed: %w; remove it by hand", w.path, err)
 	}
 	return nil
+}
+
+// end is once the file is written, or given up.
+func (w *Writer) end() {
+	w.done = true
+	giveBuffer(w.buffer)
+	w.buffer = nil
 }
 
 // abandon aborts because of err, and returns it.

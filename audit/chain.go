@@ -133,7 +133,7 @@ func (b *bench) compareRoads(r *Result, h []float64) error {
 	// At least as much chirp as response, so that it stays a chirp.
 	size := gridFor(2*(b.before+b.after+1), rate)
 	x := make([]float64, size)
-	copy(x[b.before:], chirp(rate, size-b.before-b.after))
+	copy(x[b.before:], chirp(r.Rate, size-b.before-b.after))
 	y, err := b.through(everywhere(r.Rate, b.channels, x))
 	if err != nil {
 		return err

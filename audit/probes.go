@@ -6,6 +6,7 @@ import (
 	"math"
 
 	"fettle/audio"
+	"fettle/audit/probe"
 
 	goaudio "github.com/go-audio/audio"
 )
@@ -47,44 +48,15 @@ func (p *played) ReadFrames(dst []float64) (int, error) {
 	return frames, nil
 }
 
-const (
-	// chirpFrom is well below the lowest band's edge (17.8 Hz), so that the
-	// taper is over when the bands begin.
-	chirpFrom = 8.0
-	// chirpLevel keeps a probe far from any full scale; in float64 it costs
-	// nothing.
-	chirpLevel = 0.1
-)
-
-// chirp is an exponential sweep from chirpFrom to half the rate,
-//
-//	x(t) = sin(2 pi f1 L (e^(t/L) - 1)),  L = T/ln(f2/f1)
-//
-// (Farina 2000, AES 108th Convention). It fades in over half an octave and out
-// above 0.46 of the rate, so that its ends do not ripple the spectrum by which
-// the response is divided.
-func chirp(rate float64, frames int) []float64 {
-	f2 := rate / 2
-	t := float64(frames) / rate
-	l := t / math.Log(f2/chirpFrom)
-	in := l * math.Ln2 / 2
-	out := l * math.Log(0.5/0.46)
-	x := make([]float64, frames)
-	for n := range x {
-		at := float64(n) / rate
-		fade := taper(at/in) * taper((t-at)/out)
-		x[n] = chirpLevel * fade * math.Sin(2*math.Pi*chirpFrom*l*math.Expm1(at/l))
+// chirp is one of package probe that lasts so many frames. From 8 Hz, where it begins, to
+// full level at 11.3 Hz and on is well below the lowest band's edge (17.8 Hz); it fades out
+// above 0.46 of the rate, so that its ends do not ripple the spectrum by which the response
+// is divided. Its level is far from any full scale; in float64 that costs nothing.
+func chirp(rate, frames int) []float64 {
+	p := probe.Parameters{
+		Kind: probe.Chirp, Rate: rate, From: 8 * math.Sqrt2, To: 0.46 * float64(rate), Level: -20, Signal: frames,
 	}
-	return x
-}
-
-// taper rises from 0 to 1 over 0..1 as a squared sine.
-func taper(x float64) float64 {
-	if x >= 1 {
-		return 1
-	}
-	s := math.Sin(math.Pi / 2 * math.Max(0, x))
-	return s * s
+	return p.Once(1)
 }
 
 // channelOf reads a whole stream and keeps one channel (from 0).

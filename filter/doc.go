@@ -18,6 +18,8 @@
 // Path.TargetErrorDB), so a comparison between them changes phase only. Stages delay
 // and allpass are intent: every realisation keeps them.
 //
-// A Filter is immutable and shared by all workers; state lives in the Source
-// that Apply returns. Apply is the one place where latency is removed.
+// A Filter is shared by all workers and does not change, but for memory that one
+// stream leaves to the next; state lives in the Source that Apply returns. Apply is
+// the one place where latency is removed. Slabs, of which it is made, let several
+// goroutines filter one stream.
 package filter

@@ -148,8 +148,8 @@ func (e *extended) pad(dst []float64) {
 
 // hold fills dst with the first frame of frames.
 func hold(dst, frames []float64, channels int) {
-	for at := 0; at < len(dst); at += channels {
-		copy(dst[at:], frames[:channels])
+	for n := copy(dst, frames[:channels]); n < len(dst); {
+		n += copy(dst[n:], dst[:n])
 	}
 }
 
@@ -173,16 +173,34 @@ func mirror(dst, ring []float64, channels int, from, length int64) {
 }
 
 // copySteps fills dst with frames of a ring, from frame k on by steps of 1, -1 or
-// 0.
+// 0, as far as the ring's end at a time.
 func copySteps(dst, ring []float64, channels, k, step int) {
 	size := len(ring) / channels
-	at := k % size
-	for ; len(dst) > 0; dst = dst[channels:] {
-		copy(dst, ring[at*channels:][:channels])
-		if at += step; at < 0 {
-			at = size - 1
-		} else if at == size {
+	for at := k % size; len(dst) > 0; {
+		n := len(dst) / channels
+		switch {
+		case step > 0:
+			n = min(n, size-at)
+			copy(dst[:n*channels], ring[at*channels:])
 			at = 0
+		case step < 0:
+			n = min(n, at+1)
+			copyBackward(dst[:n*channels], ring[(at-n+1)*channels:], channels)
+			at = size - 1
+		default:
+			hold(dst, ring[at*channels:], channels)
+		}
+		dst = dst[n*channels:]
+	}
+}
+
+// copyBackward fills dst with the first frames of src, the last of them first.
+func copyBackward(dst, src []float64, channels int) {
+	for c := range channels {
+		j := len(dst) - channels + c
+		for i := c; i < len(dst); i += channels {
+			dst[i] = src[j]
+			j -= channels
 		}
 	}
 }

@@ -153,11 +153,19 @@ func (p *Path) measureTarget(tolerance float64) float64 {
 // size points: H, and group delay in samples, delay stages included; NaN where
 // it is not stated.
 func (p *Path) Response(size int) (h []complex128, tau []float64) {
-	h, tau = p.System.Spectrum(size), p.System.GroupDelay(size)
+	tau = p.System.GroupDelay(size)
+	for k := range tau {
+		tau[k] += float64(p.Delay)
+	}
+	return p.Spectrum(size), tau
+}
+
+// Spectrum is the H of Response alone.
+func (p *Path) Spectrum(size int) []complex128 {
+	h := p.System.Spectrum(size)
 	for k := range h {
 		omega := 2 * math.Pi * float64(k) / float64(size)
 		h[k] *= cmplx.Rect(1, -omega*float64(p.Delay))
-		tau[k] += float64(p.Delay)
 	}
-	return h, tau
+	return h
 }

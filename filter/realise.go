@@ -19,6 +19,7 @@ type Filter struct {
 	as    Realisation
 	paths []*Path // the last serves every channel that no stage names
 	align alignment
+	spare sync.Pool // of *Slab
 }
 
 // Path is what one or more channels of a Filter go through. Its parts commute,

@@ -99,6 +99,15 @@ func pairsBulk(dst, left, right []float64) int {
 	return n
 }
 
+func unpairsBulk(left, right, src []float64) int {
+	n := groups(len(left))
+	if n == 0 {
+		return 0
+	}
+	unpairsAVX2(&left[0], &right[0], &src[0], n)
+	return n
+}
+
 func finiteBulk(x []float64) int {
 	n := groups(len(x))
 	if n == 0 {

@@ -12,4 +12,6 @@ func (d *Dither) draw(dst []float64) { d.drawGeneric(dst) }
 
 func pairsBulk(_, _, _ []float64) int { return 0 }
 
+func unpairsBulk(_, _, _ []float64) int { return 0 }
+
 func finiteBulk([]float64) int { return 0 }

@@ -51,3 +51,6 @@ func drawAVX512(dst *float64, state *[4][8]uint64, steps int)
 
 //go:noescape
 func pairsAVX2(dst *float64, left *float64, right *float64, n int)
+
+//go:noescape
+func unpairsAVX2(left *float64, right *float64, src *float64, n int)

@@ -599,3 +599,36 @@ samples:
 	JNZ       samples
 	VZEROUPPER
 	RET
+
+// func unpairsAVX2(left *float64, right *float64, src *float64, n int)
+// Requires: AVX, AVX2
+TEXT ·unpairsAVX2(SB), NOSPLIT, $0-32
+	MOVQ left+0(FP), AX
+	MOVQ right+8(FP), CX
+	MOVQ src+16(FP), DX
+	MOVQ n+24(FP), BX
+
+samples:
+	VMOVUPD   (DX), Y0
+	VMOVUPD   32(DX), Y1
+	VUNPCKLPD Y1, Y0, Y2
+	VUNPCKHPD Y1, Y0, Y0
+	VPERMPD   $0xd8, Y2, Y2
+	VPERMPD   $0xd8, Y0, Y0
+	VMOVUPD   Y2, (AX)
+	VMOVUPD   Y0, (CX)
+	VMOVUPD   64(DX), Y0
+	VMOVUPD   96(DX), Y1
+	VUNPCKLPD Y1, Y0, Y2
+	VUNPCKHPD Y1, Y0, Y0
+	VPERMPD   $0xd8, Y2, Y2
+	VPERMPD   $0xd8, Y0, Y0
+	VMOVUPD   Y2, 32(AX)
+	VMOVUPD   Y0, 32(CX)
+	ADDQ      $0x80, DX
+	ADDQ      $0x40, AX
+	ADDQ      $0x40, CX
+	SUBQ      $0x08, BX
+	JNZ       samples
+	VZEROUPPER
+	RET

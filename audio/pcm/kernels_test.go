@@ -195,19 +195,30 @@ func TestDrawIsTheSame(t *testing.T) {
 	})
 }
 
+// TestInterleave: every sample lands in its place, and back in the place it came
+// from.
 func TestInterleave(t *testing.T) {
+	const from = 3
 	vectortest.Each(t, func(t *testing.T) {
 		for channels := 1; channels <= 5; channels++ {
 			for frames := 1; frames <= longest; frames++ {
-				x := make([][]float64, channels)
+				x, back := make([][]float64, channels), make([][]float64, channels)
 				for c := range x {
-					x[c] = noise(longest+c, 1+float64(c)) // longer than what is taken
+					x[c] = noise(from+longest+c, 1+float64(c)) // longer than what is taken
+					back[c] = slices.Clone(x[c])
+					clear(back[c][from:][:frames])
 				}
 				got := make([]float64, channels*frames)
-				interleave(got, x)
+				Interleave(got, x, from)
 				for i, v := range got {
-					if want := x[i%channels][i/channels]; v != want {
+					if want := x[i%channels][from+i/channels]; v != want {
 						t.Fatalf("%d channels, sample %d: %v, want %v", channels, i, v, want)
+					}
+				}
+				Separate(back, from, got)
+				for c := range x {
+					if !slices.Equal(back[c], x[c]) {
+						t.Fatalf("%d channels, %d frames: channel %d came back as %v, want %v", channels, frames, c, back[c], x[c])
 					}
 				}
 			}
@@ -255,9 +266,10 @@ func stayInside(t *testing.T, e Encoding, front bool) {
 		} else {
 			NewDither([32]byte{}, "", 0).draw(written[longest-turns:])
 		}
-		if n%2 == 0 {
+		if n > 0 && n%2 == 0 {
 			half := [][]float64{values[first : first+n/2], values[end-n/2 : end]}
-			interleave(written[first:end], half)
+			Interleave(written[first:end], half, 0)
+			Separate(half, 0, written[first:end])
 		}
 	}
 }

@@ -139,7 +139,7 @@ func (q *Quantiser) drawNoise(frames int) {
 			d.Fill(q.drawn[c][:frames])
 		}
 	}
-	interleave(q.noise[:frames*q.channels], q.drawn)
+	Interleave(q.noise[:frames*q.channels], q.drawn, 0)
 }
 
 // encodeBulk encodes samples of src from the at-th on with what assembly there is,

@@ -8,6 +8,7 @@ import (
 	"slices"
 
 	"fettle/audit"
+	"fettle/audit/onsets"
 	"fettle/filter"
 	"fettle/filter/response"
 )
@@ -42,6 +43,9 @@ type Candidate struct {
 	Refused error
 	// Results are the audit of the candidate that its row shows, one a path.
 	Results []*audit.Result
+	// Onsets are what becomes of those of the recording; nil: none is named, or the
+	// candidate is not the one that its row shows.
+	Onsets *onsets.Report
 	// Speed is how many seconds of sound one goroutine filtered in one second,
 	// as measured on this machine; 0: not measured.
 	Speed float64
@@ -86,6 +90,9 @@ const agreeFloor = 0.1
 // is the largest difference found, in dB in that sense; +Inf when they treat
 // channels differently.
 func (c *Candidate) Agrees(other *Candidate) (apart float64, ok bool) {
+	if c.Filter == other.Filter {
+		return 0, true
+	}
 	tolerance := 2 * max(c.Chain.Tolerance, other.Chain.Tolerance)
 	p, q := c.Filter.Paths(), other.Filter.Paths()
 	if len(p) != len(q) {

@@ -37,6 +37,25 @@ func isFree(s *filter.Stage) bool {
 	return s.Phase != filter.Given && !slices.Contains(intent, s.Kind) && !slices.Contains(coefficients, s.Kind)
 }
 
+// asWritten is the realisation that would leave every stage as the file has it; Written:
+// none would.
+func (c Chain) asWritten() filter.Realisation {
+	as := c.Phase
+	if as == filter.Written {
+		as = filter.Given
+	}
+	for _, s := range c.Stages {
+		own := s.Phase
+		if own == filter.Written && slices.Contains(coefficients, s.Kind) {
+			own = filter.Given
+		}
+		if s.Phase != filter.Given && own != filter.Written && own != as {
+			return filter.Written
+		}
+	}
+	return as
+}
+
 // uniform is the chain's phases as Realise has them when it is asked for one.
 func (c Chain) uniform(as filter.Realisation) phases {
 	p := phases{chain: as}

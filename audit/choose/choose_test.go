@@ -177,3 +177,36 @@ func TestRefusals(t *testing.T) {
 		t.Errorf("a wrong purpose: %v", err)
 	}
 }
+
+// TestWrittenIsDesignedOnce where another candidate would be the same: it then is what that would be
+// by itself, and where a stage says otherwise, written is a candidate of its own.
+func TestWrittenIsDesignedOnce(t *testing.T) {
+	for _, c := range []struct{ text, twin string }{
+		{"phase: linear\nstages: [highpass: {at: 100 Hz, order: 2}, delay: {by: 1 ms}]", "linear"},
+		{"phase: linear\nstages: [highpass: {at: 100 Hz, order: 2, phase: linear}, notch: {at: 600 Hz, width: 60 Hz, phase: given}]", "linear"},
+		{"phase: minimum\nstages: [highpass: {at: 100 Hz, order: 2}]", "minimum"},
+		{"stages: [highpass: {at: 100 Hz, order: 2}, biquads: {sections: [[1, 0.2, 0.1, 1, -0.3, 0.1]]}]", "given"},
+		{"phase: linear\nstages: [highpass: {at: 100 Hz, order: 2, phase: iir}]", ""},
+		{"phase: linear\nstages: [biquads: {sections: [[1, 0.2, 0.1, 1, -0.3, 0.1]]}]", ""},
+		{"stages: [highpass: {at: 100 Hz, order: 2, phase: iir}]", ""},
+	} {
+		chain := chainOf(t, c.text)
+		if got := string(chain.asWritten()); got != c.twin {
+			t.Errorf("%s: as written it is %q, want %q", c.text, got, c.twin)
+		}
+		names := []string{"iir", "linear", AsWritten, "minimum", "given"}
+		made := candidatesOf(chain, names, 8000)
+		for i, n := range made {
+			alone := newCandidate(chain, names[i], 8000)
+			if n.Name != names[i] || n.Filter.Phase() != alone.Filter.Phase() {
+				t.Errorf("%s: candidate %d is %s, a %s, want %s, a %s", c.text, i, n.Name, n.Filter.Phase(), names[i], alone.Filter.Phase())
+			}
+			if apart, _ := n.Agrees(alone); apart != 0 {
+				t.Errorf("%s: %s is %g dB from what it is by itself", c.text, n.Name, apart)
+			}
+			if shared := n.Filter == made[2].Filter; shared != (n.Name == AsWritten || n.Name == c.twin) {
+				t.Errorf("%s: %s shares written's filter: %v", c.text, n.Name, shared)
+			}
+		}
+	}
+}

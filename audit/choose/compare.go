@@ -1,6 +1,7 @@
 package choose
 
 import (
+	"errors"
 	"fmt"
 	"slices"
 
@@ -16,6 +17,8 @@ type Request struct {
 	Names  []string // of the candidates of each chain
 	Rate   int      // Hz
 	Kernel machine.Kernel
+	// Recording is a file, at Rate, whose onsets are compared before and after; "": none.
+	Recording string
 	// Purpose is what the output is for. Own: by limits only, or, when there are
 	// none either, for each purpose in turn.
 	Purpose Purpose
@@ -24,19 +27,21 @@ type Request struct {
 
 // Comparison is the outcome. Rows are in the order of the chains and of the names.
 type Comparison struct {
-	Rate    int // Hz
-	Kernel  machine.Kernel
-	Rows    []*Row
-	Refused []*Candidate
+	Rate      int // Hz
+	Kernel    machine.Kernel
+	Recording string // whose onsets were compared; "": none
+	Rows      []*Row
+	Refused   []*Candidate
 	// Advice has one entry when a purpose or a limit was given, else one for each
 	// purpose.
 	Advice []*Advice
 }
 
 // Compare realises, audits and judges. It fails when a chain's limits are none;
-// a realisation that a chain refuses is in Refused.
+// a realisation that a chain refuses is in Refused. It fails, too, when the recording cannot
+// be read or does not suit a chain.
 func Compare(r Request) (*Comparison, error) {
-	c := &Comparison{Rate: r.Rate, Kernel: r.Kernel}
+	c := &Comparison{Rate: r.Rate, Kernel: r.Kernel, Recording: r.Recording}
 	var users [][]limits.Limit // of each row
 	for _, chain := range r.Chains {
 		own, err := limits.Resolve(chain.Limits)
@@ -91,11 +96,13 @@ func (c *Comparison) Asked() *Advice {
 	return c.Advice[0]
 }
 
+// atOnce bounds the memory: the audit of a kernel that is long takes some 50 MB.
+const atOnce = 4
+
 // candidates compares the realisations of one chain.
 func (c *Comparison) candidates(chain Chain, names []string) ([]*Row, error) {
 	var all []*Candidate
-	for _, name := range names {
-		n := newCandidate(chain, name, c.Rate)
+	for _, n := range candidatesOf(chain, names, c.Rate) {
 		if n.Refused != nil {
 			c.Refused = append(c.Refused, n)
 			continue
@@ -103,13 +110,47 @@ func (c *Comparison) candidates(chain Chain, names []string) ([]*Row, error) {
 		all = append(all, n)
 	}
 	rows := rowsOf(all)
-	for _, r := range rows {
-		var err error
-		if r.Shown().Results, err = audit.Chain(r.Shown().Filter, c.Kernel); err != nil {
-			return nil, err
-		}
+	failed := make([]error, len(rows))
+	audit.Abreast(len(rows), atOnce, func(i int) {
+		n := rows[i].Shown()
+		n.Results, failed[i] = audit.Chain(n.Filter, c.Kernel)
+	})
+	if err := errors.Join(failed...); err != nil || c.Recording == "" {
+		return rows, err
 	}
-	return rows, nil
+	return rows, c.listen(rows)
+}
+
+// candidatesOf realises a chain as each name says. What written comes to under another of
+// the names is designed once.
+func candidatesOf(chain Chain, names []string, rate int) []*Candidate {
+	made := make([]*Candidate, len(names))
+	written, twin := slices.Index(names, AsWritten), slices.Index(names, string(chain.asWritten()))
+	shared := written >= 0 && twin >= 0
+	audit.Abreast(len(names), atOnce, func(i int) {
+		if !shared || i != twin {
+			made[i] = newCandidate(chain, names[i], rate)
+		}
+	})
+	if shared {
+		n := *made[written]
+		n.Name = names[twin]
+		made[twin] = &n
+	}
+	return made
+}
+
+// listen compares the onsets of the recording for the candidate that each row shows.
+func (c *Comparison) listen(rows []*Row) error {
+	var filters []*filter.Filter
+	for _, r := range rows {
+		filters = append(filters, r.Shown().Filter)
+	}
+	heard, err := audit.Listen(c.Recording, c.Kernel, filters...)
+	for i := range heard {
+		rows[i].Shown().Onsets = heard[i]
+	}
+	return err
 }
 
 // MeasureSpeed fills in the speed of the candidate that each row shows.

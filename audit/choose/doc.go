@@ -8,6 +8,9 @@
 // so that it rings after the sound; all others become one symmetric kernel. See
 // [Mixed]. Candidates whose responses agree ([Candidate.Agrees]) share a row.
 //
+// With a recording, what each row makes of its onsets is measured too
+// ([Candidate.Onsets]); no rule asks for that.
+//
 // # Rules
 //
 // What the output is for asks for limits, and says in which order candidates are

@@ -73,8 +73,8 @@ func choiceOf(alone *filter.Chain, rate int) (Choice, error) {
 // ringOf is how long a filter that is one kernel rings; of one that names channels
 // the first is meant.
 func ringOf(f *filter.Filter) float64 {
-	ring := figures.Measure(figures.Response{H: f.Paths()[0].System.Taps, Rate: float64(f.Rate())}).PostRing
-	return math.Max(ring.White.Length, ring.Pink.Length)
+	white, pink := figures.RingsFor(f.Paths()[0].System.Taps, float64(f.Rate()))
+	return math.Max(white, pink)
 }
 
 func (c Choice) String() string {

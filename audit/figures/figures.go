@@ -126,6 +126,19 @@ func (f *Figures) inTime(x []float64, rate, origin float64, k known, pink []floa
 	eachStated(func(b *BandFigures, energy float64) { b.PostRing = behind.early(b.Band, energy) })
 }
 
+// RingsFor is the length of the post-ring alone, white and pink, in seconds: how long after
+// its peak a response at a rate in Hz still holds -60 dB of its energy. NaN where Measure
+// states nothing.
+func RingsFor(h []float64, rate float64) (white, pink float64) {
+	if (Response{H: h, Rate: rate}).unusable() != "" {
+		return math.NaN(), math.NaN()
+	}
+	x, _ := support(h)
+	behind := newRinger(reversed(x), rate)
+	ring := behind.ring(lobes{}, newConvolver(pinkFilter(rate), len(x)))
+	return ring.White.Length, ring.Pink.Length
+}
+
 // extreme keeps squares, and sums of squares, within the range of float64.
 const extreme = 1e100
 

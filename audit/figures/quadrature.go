@@ -53,18 +53,6 @@ func (s *spectrum) sampleDirectly(b Band) *bandSample {
 	return p
 }
 
-// energyDirectly is ∫|DFT(x)|² df over the band.
-func energyDirectly(x []float64, b Band, rate float64) float64 {
-	hz, width := legendre(b, float64(len(x))/rate)
-	near := newNearBand(x, 0, b, rate)
-	var e float64
-	for i, f := range hz {
-		h, _ := near.at(f)
-		e += width[i] * power(h)
-	}
-	return e
-}
-
 // legendre is the Gauss-Legendre rule for a band of a response that lasts the given
 // seconds. The squared magnitude is band-limited: over the band it makes width
 // times duration cycles at most, a cycle needs π points (Trefethen 2008, SIAM

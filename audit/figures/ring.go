@@ -1,11 +1,5 @@
 package figures
 
-import (
-	"math"
-
-	"fettle/filter/response"
-)
-
 // cutPeriods is the width of the half-cosine cut of band ring, and the shortest
 // time it can tell, in periods of the band's centre.
 const (
@@ -17,15 +11,12 @@ const (
 // peak, give it the response reversed in time.
 type ringer struct {
 	*profile
-	x   []float64
-	cut []float64 // room for a response that is cut
-
-	transforms map[[2]int]*response.Transform
-	kept       int // points of all these transforms
+	x     []float64
+	grids *gridKeeper
 }
 
 func newRinger(x []float64, rate float64) *ringer {
-	return &ringer{profile: newProfile(x, rate), x: x, cut: make([]float64, len(x)), transforms: map[[2]int]*response.Transform{}}
+	return &ringer{profile: newProfile(x, rate), x: x, grids: newGridKeeper()}
 }
 
 // ring is the energy ahead of the peak, and the same under the weighting.
@@ -39,10 +30,11 @@ func (r *ringer) ring(l lobes, weighted *convolver) Ring {
 func (r *ringer) early(b Band, whole float64) float64 {
 	limit := lengthThreshold * whole
 	least, most := leastPeriods/b.Centre, r.atMost(b, limit)
-	over := func(t float64) float64 { return decibels(r.cutEnergy(b, t, limit) / limit) }
 	if most <= least {
 		return 0
 	}
+	cut := newCutBand(b, r.x, r.rate, r.reaches(negligible*limit*2/r.rate), r.grids)
+	over := func(t float64) float64 { return decibels(cut.energy(r.peak-t*r.rate) / limit) }
 	nearest := over(least)
 	if nearest < 0 {
 		return 0
@@ -100,62 +92,3 @@ func (r *ringer) atMost(b Band, limit float64) float64 {
 // negligible is the share of the limit that samples ahead of the cut response may
 // hold without being looked at: they move the result by less than 1e-3.
 const negligible = 1e-7
-
-// cutEnergy is ∫|DFT(w·x)|² df over the band, w the half-cosine step from 1 to 0
-// centred t seconds before the peak and four periods wide.
-func (r *ringer) cutEnergy(b Band, t, limit float64) float64 {
-	period := r.rate / b.Centre
-	centre := r.peak - t*r.rate
-	from := r.reaches(negligible * limit * 2 / r.rate)
-	to := min(int(math.Ceil(centre+leastPeriods*period)), len(r.x))
-	if to <= from {
-		return 0
-	}
-	y := r.cut[:to-from]
-	for i := range y {
-		at := (float64(from+i) - centre) / (cutPeriods * period)
-		y[i] = r.x[from+i] * 0.5 * (1 - math.Sin(math.Pi*max(-0.5, at)))
-	}
-	return r.bandEnergy(b, y)
-}
-
-// binsOfCut is how many bins of its transform a band must hold to be summed over.
-const binsOfCut = 64
-
-// directCost is how many samples of a transform cost as much as one product of a direct sum.
-const directCost = 0.1
-
-// bandEnergy is ∫|DFT(y)|² df over the band, by whichever road is shorter.
-func (r *ringer) bandEnergy(b Band, y []float64) float64 {
-	seconds := float64(len(y)) / r.rate
-	points := 32 + math.Pi*b.width()*seconds
-	// A transform no longer than y wraps its autocorrelation; what wraps is the product of
-	// its two faded ends, so the sum over 64 bins or more does not see it.
-	size := fastLength(max(len(y), int(binsOfCut*r.rate/b.width())))
-	if directCost*points*float64(len(y)) < float64(size) {
-		return energyDirectly(y, b, r.rate)
-	}
-	q := response.NewQuadrature(r.rate/float64(size), b.Lower, b.Upper)
-	var e float64
-	r.transform(size, len(y)).Within(q.First, q.Last, func(k int, v []complex128) {
-		e += q.Width(k) * power(v[0])
-	}, response.Sequence{X: y})
-	return e
-}
-
-// mostKept bounds the memory for transforms to about 5 MB.
-const mostKept = 1 << 17
-
-// transform is kept for the next response of about the same length: a band asks for the
-// same few sizes again and again, and to make one costs a third of using it.
-func (r *ringer) transform(size, length int) *response.Transform {
-	key := [2]int{size, response.NextPow2(length)}
-	if r.transforms[key] == nil {
-		if r.kept += size; r.kept > mostKept {
-			clear(r.transforms)
-			r.kept = size
-		}
-		r.transforms[key] = response.NewTransform(size, min(size, key[1]))
-	}
-	return r.transforms[key]
-}

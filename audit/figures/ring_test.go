@@ -77,15 +77,15 @@ func slowRing(x []float64, b Band, rate, whole float64) float64 {
 	return 0
 }
 
-// Both roads to a band's energy lead to the same place.
-func TestBandEnergyRoads(t *testing.T) {
-	const rate = 8000.0
-	y := decaying(5, 3000)
-	r := newRinger(y, rate)
-	for _, b := range Bands(rate) {
-		direct := energyDirectly(y, b, rate)
-		// A transform as long as the response samples |Y|² at half the density it needs: 2 % of
-		// energy, 0.1 dB, moves a ring of -60 dB by a thousandth of its length or so.
-		within(t, "band energy", r.bandEnergy(b, y)/direct, 1, 0.02)
+// The length of the post-ring is the same taken by itself, and not stated of nothing.
+func TestRingsFor(t *testing.T) {
+	for _, h := range [][]float64{decaying(3, 2000), zeroPhase(butterworth(4, 100, openTop, rate8, 800), half), {0, 1, 0}} {
+		f := Measure(Response{H: h, Rate: rate8})
+		white, pink := RingsFor(h, rate8)
+		within(t, "white", white, f.PostRing.White.Length, 1e-9)
+		within(t, "pink", pink, f.PostRing.Pink.Length, 1e-9)
+	}
+	if white, pink := RingsFor([]float64{0, 0}, rate8); !math.IsNaN(white) || !math.IsNaN(pink) {
+		t.Errorf("silence rings for %g and %g s", white, pink)
 	}
 }

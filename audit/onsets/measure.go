@@ -28,35 +28,43 @@ type Options struct {
 // and closes neither. Errors are of reading, or say that the two do not go
 // together; what the recordings do not show is in the Report.
 func Measure(original, processed audio.Source, o Options) (*Report, error) {
-	a, b := original.Format(), processed.Format()
-	if a.SampleRate != b.SampleRate || a.NumChannels != b.NumChannels {
-		return nil, fmt.Errorf("the original has %d channel(s) at %d Hz, the processed recording %d at %d Hz; compare recordings of the same rate and channels",
-			a.NumChannels, a.SampleRate, b.NumChannels, b.SampleRate)
-	}
-	tallies := make([]*channelTally, a.NumChannels)
-	for c := range tallies {
-		tallies[c] = newChannelTally()
-	}
-	strongest := newRanking(o.Strongest, o.Apart, a.NumChannels)
-	tracks, frames, err := follow(original, processed, func(o Onset) {
-		tallies[o.Channel-1].add(o)
-		strongest.add(o)
-	})
+	reports, err := MeasureEach(original, []audio.Source{processed}, o)
 	if err != nil {
 		return nil, err
 	}
-	r := &Report{Rate: a.SampleRate, Frames: frames, Strongest: strongest.list()}
-	for c, t := range tracks {
-		r.Channels = append(r.Channels, tallies[c].report(t))
+	return reports[0], nil
+}
+
+// MeasureEach is Measure of several processed recordings of one original, whose onsets
+// are found once. The reports are in the order of the recordings.
+func MeasureEach(original audio.Source, processed []audio.Source, o Options) ([]*Report, error) {
+	tallies := make([]*reportTally, len(processed))
+	for i, p := range processed {
+		a, b := original.Format(), p.Format()
+		if a.SampleRate != b.SampleRate || a.NumChannels != b.NumChannels {
+			return nil, fmt.Errorf("the original has %d channel(s) at %d Hz, the processed recording %d at %d Hz; compare recordings of the same rate and channels",
+				a.NumChannels, a.SampleRate, b.NumChannels, b.SampleRate)
+		}
+		tallies[i] = newReportTally(a.NumChannels, o)
 	}
-	return r, nil
+	tracks, frames, err := follow(original, processed, func(i int, o Onset) { tallies[i].add(o) })
+	if err != nil {
+		return nil, err
+	}
+	var reports []*Report
+	for i, t := range tallies {
+		r := t.report(tracks, i)
+		r.Rate, r.Frames = original.Format().SampleRate, frames
+		reports = append(reports, r)
+	}
+	return reports, nil
 }
 
 // Detect gives the onsets of a recording to found, each channel's in order of time,
 // some tenths of a second after they were read. It reads the recording to
 // its end.
 func Detect(src audio.Source, found func(Onset)) error {
-	_, _, err := follow(src, nil, found)
+	_, _, err := follow(src, nil, func(_ int, o Onset) { found(o) })
 	return err
 }
 
@@ -70,15 +78,15 @@ func Strongest(src audio.Source, count int, apart float64) ([]Onset, error) {
 	return strongest.list(), nil
 }
 
-// follow reads an original and, unless it is nil, a processed recording in step to
-// the end, and gives every onset to found.
-func follow(original, processed audio.Source, found func(Onset)) (tracks []*track, frames int64, err error) {
+// follow reads an original and processed recordings in step to the end, and gives every
+// onset to found.
+func follow(original audio.Source, processed []audio.Source, found finder) (tracks []*track, frames int64, err error) {
 	format := original.Format()
 	if format.SampleRate < leastRate {
 		return nil, 0, fmt.Errorf("onsets cannot be timed at %d Hz; use a recording of at least %d Hz", format.SampleRate, leastRate)
 	}
 	for c := range format.NumChannels {
-		tracks = append(tracks, newTrack(c+1, float64(format.SampleRate), processed != nil, found))
+		tracks = append(tracks, newTrack(c+1, float64(format.SampleRate), len(processed), found))
 	}
 	buffer := make([]float64, int(chunkSeconds*float64(format.SampleRate))*format.NumChannels)
 	for end := false; !end; {
@@ -90,8 +98,8 @@ func follow(original, processed audio.Source, found func(Onset)) (tracks []*trac
 		for c, t := range tracks {
 			t.original.append(buffer[:n], c, len(tracks))
 		}
-		if processed != nil {
-			if err := alongside(processed, tracks, buffer, n); err != nil {
+		for i, p := range processed {
+			if err := alongside(p, i, tracks, buffer, n); err != nil {
 				return nil, 0, err
 			}
 		}
@@ -103,9 +111,8 @@ func follow(original, processed audio.Source, found func(Onset)) (tracks []*trac
 	return tracks, frames, nil
 }
 
-// alongside reads as many samples of the processed recording as there were of the
-// original.
-func alongside(processed audio.Source, tracks []*track, buffer []float64, n int) error {
+// alongside reads as many samples of processed recording i as there were of the original.
+func alongside(processed audio.Source, i int, tracks []*track, buffer []float64, n int) error {
 	got, err := fill(processed, buffer)
 	if err != nil {
 		return fmt.Errorf("reading the processed recording: %w", err)
@@ -118,7 +125,7 @@ func alongside(processed audio.Source, tracks []*track, buffer []float64, n int)
 		return fmt.Errorf("the %s is longer than the %s; compare an aligned recording of the same length", longer, shorter)
 	}
 	for c, t := range tracks {
-		t.processed.append(buffer[:n], c, len(tracks))
+		t.outcomes[i].processed.append(buffer[:n], c, len(tracks))
 	}
 	return nil
 }

@@ -13,6 +13,8 @@ import (
 	"fettle/filter"
 
 	goaudio "github.com/go-audio/audio"
+	"github.com/google/go-cmp/cmp"
+	"github.com/google/go-cmp/cmp/cmpopts"
 )
 
 // A recording and itself: nothing moves, nothing is early, whatever it holds.
@@ -514,6 +516,33 @@ func TestPortionsDoNotMatter(t *testing.T) {
 	}
 }
 
+// Several processed recordings at once are each what it is by itself.
+func TestMeasureEach(t *testing.T) {
+	x, _ := strikes(16000, 10, 0.3, 1e-4)
+	made := [][]float64{delayed(x, 3), x, silence(16000, 10), scaled(delayed(x, -20), 0.5)}
+	var all []audio.Source
+	for _, y := range made {
+		all = append(all, source(16000, y))
+	}
+	o := Options{Strongest: 5, Apart: 0.1}
+	got, err := MeasureEach(source(16000, x), all, o)
+	if err != nil || len(got) != len(made) {
+		t.Fatal(len(got), err)
+	}
+	for i, y := range made {
+		want, err := Measure(source(16000, x), source(16000, y), o)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if diff := cmp.Diff(want, got[i], cmpopts.EquateNaNs()); diff != "" {
+			t.Errorf("recording %d: %s", i, diff)
+		}
+	}
+	if got[2].Channels[0].Lost < 20 || got[0].Channels[0].Lost > 0 {
+		t.Errorf("%d onsets lost in silence, %d in a copy", got[2].Channels[0].Lost, got[0].Channels[0].Lost)
+	}
+}
+
 func TestMeasureErrors(t *testing.T) {
 	x := silence(16000, 1)
 	broken := errors.New("the disk is gone")
@@ -580,7 +609,7 @@ func TestMemoryIsBounded(t *testing.T) {
 	held := func(minutes int64) (samples int) {
 		e := &endless{frames: minutes * 60 * rate, rate: rate, check: func() {}}
 		strongest := newRanking(8, 0.5, 1)
-		tracks, frames, err := follow(e, &endless{frames: e.frames, rate: rate, check: func() {}}, strongest.add)
+		tracks, frames, err := follow(e, []audio.Source{&endless{frames: e.frames, rate: rate, check: func() {}}}, func(_ int, o Onset) { strongest.add(o) })
 		if err != nil || frames != e.frames {
 			t.Fatal(frames, err)
 		}
@@ -588,7 +617,8 @@ func TestMemoryIsBounded(t *testing.T) {
 			t.Errorf("%d onsets, want %d", tracks[0].onsets, want)
 		}
 		tr := tracks[0]
-		return cap(tr.original.x) + cap(tr.processed.x) + 3*cap(tr.x.power) + 3*cap(tr.y.power) +
+		p := tr.outcomes[0]
+		return cap(tr.original.x) + cap(p.processed.x) + 3*cap(tr.x.power) + 3*cap(p.y.power) +
 			cap(tr.detections) + 16*cap(strongest.onsets)
 	}
 	minute, twenty := held(1), held(20)

@@ -32,6 +32,34 @@ type Channel struct {
 	NotStated map[string]string
 }
 
+// reportTally gathers the onsets of one processed recording.
+type reportTally struct {
+	channels  []*channelTally
+	strongest *ranking
+}
+
+func newReportTally(channels int, o Options) *reportTally {
+	t := &reportTally{strongest: newRanking(o.Strongest, o.Apart, channels)}
+	for range channels {
+		t.channels = append(t.channels, newChannelTally())
+	}
+	return t
+}
+
+func (t *reportTally) add(o Onset) {
+	t.channels[o.Channel-1].add(o)
+	t.strongest.add(o)
+}
+
+// report is that of processed recording i.
+func (t *reportTally) report(tracks []*track, i int) *Report {
+	r := &Report{Strongest: t.strongest.list()}
+	for c, from := range tracks {
+		r.Channels = append(r.Channels, t.channels[c].report(from, i))
+	}
+	return r
+}
+
 // channelTally gathers one channel's onsets.
 type channelTally struct {
 	shift, rise, riseChange, floor *tally
@@ -56,10 +84,11 @@ func (t *channelTally) add(o Onset) {
 	}
 }
 
-func (t *channelTally) report(from *track) *Channel {
+// report is that of processed recording i.
+func (t *channelTally) report(from *track, i int) *Channel {
 	c := &Channel{
 		Channel: from.channel, Onsets: from.onsets, Unclear: from.unclear, Weak: from.weak,
-		Lost: from.lost, Blurred: from.blurred,
+		Lost: from.outcomes[i].lost, Blurred: from.outcomes[i].blurred,
 		Shift: t.shift.summary(), Rise: t.rise.summary(), RiseChange: t.riseChange.summary(),
 		Floor: t.floor.summary(), NotStated: map[string]string{},
 	}

@@ -10,31 +10,41 @@ const (
 	kept = 0.8
 )
 
-// track follows one channel of an original and, unless that is nil, of what was
-// made of it.
+// track follows one channel of an original and of all that was made of it.
 type track struct {
-	channel             int // from 1
-	rate                float64
-	original, processed *signal
-	x, y                envelope // of what is being judged
-	flux                *flux
-	picker              picker
-	fluxes              int64     // values of the detection function so far
-	detections          []float64 // times, not judged yet
-	last                float64   // time of the last onset
-	onsets              int
-	unclear, weak       int
-	lost, blurred       int
-	found               func(Onset)
+	channel       int // from 1
+	rate          float64
+	original      *signal
+	outcomes      []*outcome
+	x             envelope // of what is being judged
+	flux          *flux
+	picker        picker
+	fluxes        int64     // values of the detection function so far
+	detections    []float64 // times, not judged yet
+	last          float64   // time of the last onset
+	onsets        int
+	unclear, weak int
+	found         finder
 }
 
-func newTrack(channel int, rate float64, compared bool, found func(Onset)) *track {
+// outcome follows the channel in one processed recording.
+type outcome struct {
+	processed     *signal
+	y             envelope
+	lost, blurred int
+}
+
+// finder takes an onset as it is in processed recording i, from 0; once with i 0 where there
+// is none.
+type finder func(i int, o Onset)
+
+func newTrack(channel int, rate float64, processed int, found finder) *track {
 	t := &track{
 		channel: channel, rate: rate, original: newSignal(rate), flux: newFlux(rate),
 		last: math.Inf(-1), found: found,
 	}
-	if compared {
-		t.processed = newSignal(rate)
+	for range processed {
+		t.outcomes = append(t.outcomes, &outcome{processed: newSignal(rate)})
 	}
 	return t
 }
@@ -56,10 +66,9 @@ func (t *track) advance(end bool) {
 		t.judge(t.detections[0])
 		t.detections = t.detections[1:]
 	}
-	for _, s := range []*signal{t.original, t.processed} {
-		if s != nil {
-			s.keep(int(kept * t.rate))
-		}
+	t.original.keep(int(kept * t.rate))
+	for _, p := range t.outcomes {
+		p.processed.keep(int(kept * t.rate))
 	}
 }
 
@@ -89,44 +98,47 @@ func (t *track) judge(detected float64) {
 		t.onsets++
 		o := newOnset(t.channel, &t.x, a)
 		t.last = o.Time
-		if t.processed != nil {
-			t.compare(&o, a)
+		if len(t.outcomes) == 0 {
+			t.found(0, o)
 		}
-		t.found(o)
+		for i, p := range t.outcomes {
+			t.found(i, t.compared(p, o, a))
+		}
 	}
 }
 
-// compare measures an onset in the processed recording.
-func (t *track) compare(o *Onset, a attack) {
-	t.processed.readInto(&t.y, a.from-2*quiet-together-2*reach-smoothing, a.from+2*attackEnds+2*reach+smoothing)
-	b, lag, found := t.answer(a)
+// compared is an onset as it is in a processed recording.
+func (t *track) compared(p *outcome, o Onset, a attack) Onset {
+	p.processed.readInto(&p.y, a.from-2*quiet-together-2*reach-smoothing, a.from+2*attackEnds+2*reach+smoothing)
+	b, lag, found := t.answer(p, a)
 	switch {
 	case !found:
-		t.lost++
-	case !t.y.isClear(b) || math.Abs(b.onset-a.onset) > reach:
-		t.blurred++
+		p.lost++
+	case !p.y.isClear(b) || math.Abs(b.onset-a.onset) > reach:
+		p.blurred++
 	default:
 		lag = b.onset - a.onset
-		o.Shift, o.RiseChange = lag, t.y.rise(b)-o.Rise
+		o.Shift, o.RiseChange = lag, p.y.rise(b)-o.Rise
 	}
 	before, there := t.original.earlyAt(o.Time)
-	after, too := t.processed.earlyAt(o.Time + lag)
+	after, too := p.processed.earlyAt(o.Time + lag)
 	if there && too {
 		o.setEarly(before, after)
 	}
+	return o
 }
 
-// answer finds what answers an attack in the processed recording, and about how much
+// answer finds what answers an attack in a processed recording, and about how much
 // later that is: what stands in the same place, unless something very much larger
 // is near; then correlation finds it. A voice, whose pulses are alike, would
 // correlate with itself a pulse later.
-func (t *track) answer(a attack) (b attack, lag float64, found bool) {
-	b, found = t.y.answer(a, a.from)
-	if found && b.peak >= aside*t.y.most(a.from-reach, a.from+a.long+reach) {
+func (t *track) answer(p *outcome, a attack) (b attack, lag float64, found bool) {
+	b, found = p.y.answer(a, a.from)
+	if found && b.peak >= aside*p.y.most(a.from-reach, a.from+a.long+reach) {
 		return b, 0, true
 	}
-	lag = t.x.lagTo(&t.y, a)
-	if far, ok := t.y.answer(a, a.from+lag); ok {
+	lag = t.x.lagTo(&p.y, a)
+	if far, ok := p.y.answer(a, a.from+lag); ok {
 		return far, lag, true
 	}
 	return b, 0, found

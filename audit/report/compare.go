@@ -11,12 +11,12 @@ import (
 	"fettle/audit/limits"
 )
 
-// Compare writes a comparison for a terminal: one row a realisation in three
+// Compare writes a comparison for a terminal: one row a realisation in some
 // tables, what must be known of them, and the recommendation. No line is longer
-// than Width.
+// than Width, and none of figures than narrow.
 func Compare(w io.Writer, c *choose.Comparison) error {
 	var b strings.Builder
-	for _, t := range comparisonTables {
+	for _, t := range tablesOf(c) {
 		if len(c.Rows) > 0 {
 			t.write(&b, c)
 			b.WriteByte('\n')
@@ -28,8 +28,12 @@ func Compare(w io.Writer, c *choose.Comparison) error {
 	return err
 }
 
-// nameColumn is the width of the rows' names in a comparison.
-const nameColumn = 28
+const (
+	// narrow is the most columns that figures take, words apart: those of a usual terminal.
+	narrow = 80
+	// nameColumn is the width of the rows' names in a comparison.
+	nameColumn = 28
+)
 
 // comparisonTable sets one row a realisation under two lines of headings.
 type comparisonTable []comparisonColumn
@@ -37,6 +41,7 @@ type comparisonTable []comparisonColumn
 type comparisonColumn struct {
 	width   int // with the blank before it; 0: stands to the left, two blanks off
 	heading [2]string
+	name    string // where there is room for it
 	cell    func(n *choose.Candidate, r *audit.Result) string
 }
 
@@ -44,29 +49,31 @@ type comparisonColumn struct {
 // look-ahead are in samples.
 var comparisonTables = []comparisonTable{
 	{
-		{11, [2]string{"off target", "dB"}, ofResult(func(r *audit.Result) string { return decimal(r.TargetErrorDB, 3) })},
-		{11, [2]string{"latency", "removed"}, ofResult(func(r *audit.Result) string { return decimal(r.Latency.Removed, 2) })},
-		{11, [2]string{"look-", "ahead"}, ofResult(func(r *audit.Result) string { return fmt.Sprint(r.Latency.LookAhead) })},
-		{11, [2]string{"delay", "spread, ms"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.DelaySpread*toMS, 3) })},
-		{11, [2]string{"phase dev.", "degrees"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.PhaseDeviation, 1) })},
-		{11, [2]string{"sum test", "dB"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.SumTest, 1) })},
+		{11, [2]string{"off target", "dB"}, "off target, dB", ofResult(func(r *audit.Result) string { return decimal(r.TargetErrorDB, 3) })},
+		{10, [2]string{"latency", "removed"}, "latency removed, samples", ofResult(func(r *audit.Result) string { return decimal(r.Latency.Removed, 2) })},
+		{7, [2]string{"look-", "ahead"}, "look-ahead, samples", ofResult(func(r *audit.Result) string { return fmt.Sprint(r.Latency.LookAhead) })},
+		{11, [2]string{"delay", "spread, ms"}, "delay spread, ms", ofResult(func(r *audit.Result) string { return decimal(r.Figures.DelaySpread*toMS, 3) })},
+		{11, [2]string{"phase dev.", "degrees"}, "phase deviation, degrees", ofResult(func(r *audit.Result) string { return decimal(r.Figures.PhaseDeviation, 1) })},
 	},
 	{
-		{8, [2]string{"smear", "ms"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.Pink.Total*toMS, 3) })},
-		{8, [2]string{"by", "magn."}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.Pink.Magnitude*toMS, 3) })},
-		{8, [2]string{"by", "phase"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.Pink.Phase*toMS, 3) })},
-		{9, [2]string{"pre-ring", "dB"}, ofResult(func(r *audit.Result) string { return ringCell(r.Figures.PreRing.Pink.Level) })},
-		{8, [2]string{"to -60", "dB, ms"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.PreRing.Pink.Length*toMS, 2) })},
-		{9, [2]string{"beyond", "5 ms, dB"}, ofResult(func(r *audit.Result) string { return ringCell(r.Figures.PreRing.Pink.Beyond[1]) })},
-		{10, [2]string{"post-ring", "dB"}, ofResult(func(r *audit.Result) string { return ringCell(r.Figures.PostRing.Pink.Level) })},
-		{8, [2]string{"to -60", "dB, ms"}, ofResult(func(r *audit.Result) string { return decimal(r.Figures.PostRing.Pink.Length*toMS, 2) })},
+		{11, [2]string{"smear", "ms"}, "smear, ms", ofResult(func(r *audit.Result) string { return decimal(r.Figures.Pink.Total*toMS, 3) })},
+		{14, [2]string{"by magnitude", "ms"}, "smear by magnitude, ms", ofResult(func(r *audit.Result) string { return decimal(r.Figures.Pink.Magnitude*toMS, 3) })},
+		{11, [2]string{"by phase", "ms"}, "smear by phase, ms", ofResult(func(r *audit.Result) string { return decimal(r.Figures.Pink.Phase*toMS, 3) })},
+		{11, [2]string{"sum test", "dB"}, "sum test, dB", ofResult(func(r *audit.Result) string { return decimal(r.Figures.SumTest, 1) })},
 	},
 	{
-		{8, [2]string{"taps", ""}, ofResult(func(r *audit.Result) string { return fmt.Sprint(r.Taps) })},
-		{6, [2]string{"sect-", "ions"}, ofResult(func(r *audit.Result) string { return fmt.Sprint(r.Sections + r.ZeroSections) })},
-		{7, [2]string{"oper-", "ations"}, ofResult(func(r *audit.Result) string { return decimal(r.Operations, 0) })},
-		{7, [2]string{"x real", "time"}, func(n *choose.Candidate, _ *audit.Result) string { return speedCell(n.Speed) }},
-		{0, [2]string{"worst margin, of which limit", ""}, ofResult(func(r *audit.Result) string { return marginCell(r.Verdicts) })},
+		{9, [2]string{"pre-ring", "dB"}, "pre-ring, dB", ofResult(func(r *audit.Result) string { return ringCell(r.Figures.PreRing.Pink.Level) })},
+		{9, [2]string{"length", "ms"}, "pre-ring to -60 dB, ms", ofResult(func(r *audit.Result) string { return decimal(r.Figures.PreRing.Pink.Length*toMS, 2) })},
+		{12, [2]string{"5 ms ahead", "dB"}, "pre-ring beyond 5 ms, dB", ofResult(func(r *audit.Result) string { return ringCell(r.Figures.PreRing.Pink.Beyond[1]) })},
+		{11, [2]string{"post-ring", "dB"}, "post-ring, dB", ofResult(func(r *audit.Result) string { return ringCell(r.Figures.PostRing.Pink.Level) })},
+		{9, [2]string{"length", "ms"}, "post-ring to -60 dB, ms", ofResult(func(r *audit.Result) string { return decimal(r.Figures.PostRing.Pink.Length*toMS, 2) })},
+	},
+	{
+		{6, [2]string{"taps", ""}, "taps", ofResult(func(r *audit.Result) string { return fmt.Sprint(r.Taps) })},
+		{9, [2]string{"sections", ""}, "sections", ofResult(func(r *audit.Result) string { return fmt.Sprint(r.Sections + r.ZeroSections) })},
+		{9, [2]string{"products", "a sample"}, "products a sample", ofResult(func(r *audit.Result) string { return decimal(r.Operations, 0) })},
+		{7, [2]string{"x real", "time"}, "times real time", func(n *choose.Candidate, _ *audit.Result) string { return speedCell(n.Speed) }},
+		{0, [2]string{"worst margin, of which limit", ""}, "worst margin, of which limit", ofResult(func(r *audit.Result) string { return marginCell(r.Verdicts) })},
 	},
 }
 
@@ -107,22 +114,17 @@ func (t comparisonTable) line(b *strings.Builder, name string, cell func(col com
 // CompareTable is a comparison as rows of text, one a figure; the first has the
 // realisations' names.
 func CompareTable(c *choose.Comparison) [][]string {
+	columns := slices.Concat(tablesOf(c)...)
 	out := [][]string{{""}}
-	for _, t := range comparisonTables {
-		for _, col := range t {
-			out = append(out, []string{strings.TrimSpace(strings.ReplaceAll(col.heading[0]+" "+col.heading[1], "- ", "-"))})
-		}
+	for _, col := range columns {
+		out = append(out, []string{col.name})
 	}
 	for _, row := range c.Rows {
 		n := row.Shown()
 		for _, r := range n.Results {
 			out[0] = append(out[0], RowLabel(c, row, r))
-			i := 1
-			for _, t := range comparisonTables {
-				for _, col := range t {
-					out[i] = append(out[i], col.cell(n, r))
-					i++
-				}
+			for i, col := range columns {
+				out[i+1] = append(out[i+1], col.cell(n, r))
 			}
 		}
 	}
@@ -135,6 +137,11 @@ func RowLabel(c *choose.Comparison, row *choose.Row, r *audit.Result) string {
 		return row.Shown().Chain.File + ", " + rowName(row, r)
 	}
 	return rowName(row, r)
+}
+
+// RowName tells a row from the others, whatever the channels.
+func RowName(c *choose.Comparison, row *choose.Row) string {
+	return RowLabel(c, row, &audit.Result{Shared: true})
 }
 
 // several tells whether more than one chain is compared.

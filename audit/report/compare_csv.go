@@ -16,7 +16,8 @@ func CompareCSV(w io.Writer, c *choose.Comparison) error {
 	rows := [][]string{append(subjectColumns(), strings.Fields(`file target_error_db latency_samples look_ahead_samples
 		delay_spread_ms phase_deviation_deg smear_pink_ms smear_pink_magnitude_ms smear_pink_phase_ms
 		pre_ring_pink_db pre_ring_pink_ms pre_ring_pink_beyond_5_ms_db post_ring_pink_db post_ring_pink_ms
-		sum_test_db worst_limit worst_limit_margin worst_limit_unit taps sections operations times_real_time recommended_for`)...)}
+		sum_test_db onsets onsets_lost_or_blurred onset_shift_ms_median onset_shift_ms_worst onset_rise_change_ms_worst
+		onset_early_beyond_5_ms_db_worst worst_limit worst_limit_margin worst_limit_unit taps sections operations times_real_time recommended_for`)...)}
 	for _, row := range c.Rows {
 		n := row.Shown()
 		for _, r := range n.Results {
@@ -27,11 +28,12 @@ func CompareCSV(w io.Writer, c *choose.Comparison) error {
 			if v, ok := limits.Nearest(r.Verdicts); ok {
 				limit, margin, unit = v.Name, field(v.Margin), v.Unit
 			}
-			rows = append(rows, append(about, n.Chain.File,
+			timing := append(about, n.Chain.File,
 				field(r.TargetErrorDB), field(r.Latency.Removed), strconv.Itoa(r.Latency.LookAhead),
 				field(f.DelaySpread*toMS), field(f.PhaseDeviation), field(f.Pink.Total*toMS), field(f.Pink.Magnitude*toMS), field(f.Pink.Phase*toMS),
 				field(pre.Level), field(pre.Length*toMS), field(pre.Beyond[1]), field(post.Level), field(post.Length*toMS),
-				field(f.SumTest), limit, margin, unit,
+				field(f.SumTest))
+			rows = append(rows, append(append(timing, onsetFields(n, r)...), limit, margin, unit,
 				strconv.Itoa(r.Taps), strconv.Itoa(r.Sections+r.ZeroSections), field(r.Operations), speedField(n.Speed), recommendedFor(c, row)))
 		}
 	}

@@ -32,6 +32,8 @@ type comparisonRow struct {
 	TimesRealTime number   `json:"times_real_time"` // measured; null: not
 	Mixed         []choice `json:"mixed"`
 	Results       []result `json:"results"`
+	// Onsets is null without a recording.
+	Onsets *onsetsDocument `json:"onsets"`
 }
 
 type choice struct {
@@ -70,7 +72,7 @@ func CompareJSON(w io.Writer, c *choose.Comparison, version string) error {
 		Rows: []comparisonRow{}, Refused: []refusal{}, Advice: []advice{},
 	}
 	for _, row := range c.Rows {
-		doc.Rows = append(doc.Rows, comparisonRowOf(row))
+		doc.Rows = append(doc.Rows, comparisonRowOf(c, row))
 	}
 	for _, n := range c.Refused {
 		doc.Refused = append(doc.Refused, refusal{n.Chain.Name, n.Chain.File, n.Name, n.Refused.Error()})
@@ -83,11 +85,12 @@ func CompareJSON(w io.Writer, c *choose.Comparison, version string) error {
 	return enc.Encode(doc)
 }
 
-func comparisonRowOf(row *choose.Row) comparisonRow {
+func comparisonRowOf(c *choose.Comparison, row *choose.Row) comparisonRow {
 	n := row.Shown()
 	out := comparisonRow{
 		Chain: n.Chain.Name, File: n.Chain.File, Realisations: row.Names(), ApartDB: number(row.Apart),
 		TimesRealTime: stated(n.Speed), Mixed: []choice{}, Results: []result{},
+		Onsets: onsetsJSON(c.Recording, n.Onsets),
 	}
 	for _, n := range row.Candidates {
 		for _, x := range n.Choices {

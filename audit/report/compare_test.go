@@ -33,20 +33,33 @@ const lateRight = `stages:
   - lowpass: {at: 3 kHz, order: 2, channels: [2]}
 `
 
-// comparisonOf compares at 8 kHz. Speeds are made up: 1000, 2000 and so on.
+// comparisonOf compares at 8 kHz.
 func comparisonOf(t *testing.T, names []string, purpose choose.Purpose, limit []string, texts ...string) *choose.Comparison {
 	t.Helper()
-	r := choose.Request{Names: names, Rate: 8000, Kernel: machine.Portable, Purpose: purpose}
+	r := choose.Request{Names: names, Rate: 8000, Purpose: purpose}
+	var err error
+	if r.Limits, err = limits.Parse(limit...); err != nil {
+		t.Fatal(err)
+	}
+	return compared(t, r, texts...)
+}
+
+// heardComparison compares with a sample recording.
+func heardComparison(t *testing.T, recording string, rate int, text string) *choose.Comparison {
+	t.Helper()
+	return compared(t, choose.Request{Names: choose.Usual, Rate: rate, Purpose: choose.Master, Recording: "../../samples/recordings/" + recording}, text)
+}
+
+// compared compares chains. Speeds are made up: 1000, 2000 and so on.
+func compared(t *testing.T, r choose.Request, texts ...string) *choose.Comparison {
+	t.Helper()
+	r.Kernel = machine.Portable
 	for i, text := range texts {
 		c, err := filter.Parse([]byte(text), "chain"+strconv.Itoa(i+1)+".yaml")
 		if err != nil {
 			t.Fatal(err)
 		}
 		r.Chains = append(r.Chains, choose.Chain{Chain: c, Text: []byte(text)})
-	}
-	var err error
-	if r.Limits, err = limits.Parse(limit...); err != nil {
-		t.Fatal(err)
 	}
 	c, err := choose.Compare(r)
 	if err != nil {
@@ -64,6 +77,7 @@ func comparisons(t *testing.T) map[string]*choose.Comparison {
 	return map[string]*choose.Comparison{
 		"each":     comparisonOf(t, choose.Usual, choose.Own, nil, stem),
 		"master":   comparisonOf(t, choose.Usual, choose.Master, nil, stem),
+		"heard":    heardComparison(t, "interviews/deckhand_side_a.wav", 16000, stem),
 		"channels": comparisonOf(t, choose.Usual, choose.Own, []string{"delay-spread=1 ms", "pre-ring=-60 dB beyond 5 ms"}, lateRight, stem),
 	}
 }
@@ -147,6 +161,20 @@ func TestCompareAgrees(t *testing.T) {
 	for _, want := range []string{"take linear", "iir: misses sum-test -0.5 dB by"} {
 		if !strings.Contains(table.String(), want) {
 			t.Errorf("the words lack %q: %s", want, table.String())
+		}
+	}
+}
+
+func TestCompareTitle(t *testing.T) {
+	names := []string{"iir", "linear"}
+	for want, c := range map[string]*choose.Comparison{
+		"chain1: 2 realisations side by side at 8 kHz":            comparisonOf(t, names, choose.Own, nil, stem),
+		"chain1 and chain2: 4 realisations side by side at 8 kHz": comparisonOf(t, names, choose.Own, nil, lateRight, stem),
+		"chain1: one realisation at 8 kHz":                        comparisonOf(t, names[:1], choose.Own, nil, stem),
+		"0 realisations side by side at 8 kHz":                    comparisonOf(t, []string{"zero"}, choose.Own, nil, lateRight),
+	} {
+		if got := CompareTitle(c); got != want {
+			t.Errorf("%q, want %q", got, want)
 		}
 	}
 }

@@ -9,6 +9,22 @@ import (
 	"fettle/audit/limits"
 )
 
+// CompareTitle names what is compared, as a heading.
+func CompareTitle(c *choose.Comparison) string {
+	var chains []string
+	count := 0
+	for _, row := range c.Rows {
+		count += len(row.Candidates)
+		if name := row.Shown().Chain.Name; !slices.Contains(chains, name) {
+			chains = append(chains, name)
+		}
+	}
+	if count == 1 {
+		return fmt.Sprintf("%s: one realisation at %s", listed(chains), hertz(float64(c.Rate)))
+	}
+	return strings.TrimPrefix(fmt.Sprintf("%s: %d realisations side by side at %s", listed(chains), count, hertz(float64(c.Rate))), ": ")
+}
+
 // compareNotes says what a reader of the tables must know.
 func compareNotes(b *strings.Builder, c *choose.Comparison) {
 	for _, s := range CompareNotes(c) {
@@ -37,7 +53,10 @@ func CompareNotes(c *choose.Comparison) []string {
 	if len(c.Rows) == 0 {
 		return out
 	}
-	return append(out, fmt.Sprintf("Latency and look-ahead are in samples, operations are multiplications a sample; smear and rings are pink-weighted. The speed, in multiples of real time, was measured here and now by one thread under the kernel %v: it differs from run to run.", c.Kernel))
+	if c.Recording != "" {
+		out = append(out, onsetsWords(c))
+	}
+	return append(out, fmt.Sprintf("Latency and look-ahead are in samples, products are multiplications; smear and rings are pink-weighted. A ring's length is to where the energy beyond is -60 dB of all. The speed, in multiples of real time, was measured here and now by one thread under the kernel %v: it differs from run to run.", c.Kernel))
 }
 
 // whose names the chain where there are several.

@@ -10,12 +10,11 @@ import (
 	"os"
 	"strings"
 
-	"fettle/audio"
 	"fettle/audio/pcm"
 	"fettle/audit"
 	"fettle/audit/limits"
-	"fettle/audit/onsets"
 	"fettle/audit/report"
+	"fettle/audit/report/page"
 	"fettle/filter"
 	"fettle/filter/stream/machine"
 
@@ -53,7 +52,7 @@ func auditChainCommand() *cli.Command {
 			phaseFlag(),
 			limitFlag(),
 			&cli.StringFlag{Name: "recording", Usage: "what becomes of the onsets in `FILE`, too"},
-			&cli.StringFlag{Name: "through-file", Usage: "measure through files of `FORMAT`, such as pcm24, too"},
+			&cli.StringFlag{Name: "through-file", Usage: "measure through files of format `F`, such as pcm24, too"},
 			flag("stages", "what each stage costs by itself, too"),
 			flag("methods", "print a paragraph for a treatment report instead"),
 			kernelFlag(),
@@ -103,7 +102,7 @@ func auditChain(c *cli.Context) error {
 	if err := writeReports(c, append(results, a.stages...), a.heard); err != nil {
 		return err
 	}
-	if err := writePages(c, auditPage(c, a.chain.Name, results)); err != nil {
+	if err := writePages(c, func() (page.Page, error) { return auditPage(c, a, results) }); err != nil {
 		return err
 	}
 	if audit.Exceeded(results) {
@@ -119,10 +118,12 @@ type chainAudit struct {
 	rates  []int
 	kernel machine.Kernel
 	limits []limits.Limit
-	file   *pcm.Encoding   // of files to measure through; nil: none
-	apart  bool            // each stage by itself, too
-	heard  report.Heard    // empty: no recording is named
-	stages []*audit.Result // of the first rate
+	file   *pcm.Encoding // of files to measure through; nil: none
+	apart  bool          // each stage by itself, too
+	heard  report.Heard  // empty: no recording is named
+	// heardBy is the chain at the recording's rate.
+	heardBy *filter.Filter
+	stages  []*audit.Result // of the first rate
 }
 
 func newChainAudit(c *cli.Context) (a *chainAudit, err error) {
@@ -181,7 +182,7 @@ func (a *chainAudit) run(ctx context.Context) ([]*audit.Result, error) {
 	}
 	var err error
 	if a.heard.Recording != "" {
-		if a.heard.Onsets, err = a.listen(); err != nil {
+		if err = a.listen(); err != nil {
 			return nil, err
 		}
 	}
@@ -193,30 +194,19 @@ func (a *chainAudit) run(ctx context.Context) ([]*audit.Result, error) {
 
 // listen compares the onsets of the recording with what the chain makes of them, at
 // the recording's own rate.
-func (a *chainAudit) listen() (*onsets.Report, error) {
-	before, err := audio.Open(a.heard.Recording)
+func (a *chainAudit) listen() (err error) {
+	rate, err := rateOfRecording(a.heard.Recording)
 	if err != nil {
-		return nil, err
+		return err
 	}
-	defer before.Close()
-	again, err := audio.Open(a.heard.Recording)
-	if err != nil {
-		return nil, err
+	if a.heardBy, err = a.chain.Realise(rate, a.phase); err != nil {
+		return fmt.Errorf("%s: %w", a.heard.Recording, err)
 	}
-	defer again.Close()
-	f, err := a.chain.Realise(before.Format().SampleRate, a.phase)
-	if err != nil {
-		return nil, fmt.Errorf("%s: %w", a.heard.Recording, err)
+	reports, err := audit.Listen(a.heard.Recording, a.kernel, a.heardBy)
+	if err == nil {
+		a.heard.Onsets = reports[0]
 	}
-	setup := f.Setup()
-	setup.Kernel = a.kernel
-	after, err := f.ApplyWith(again, setup)
-	if err != nil {
-		return nil, fmt.Errorf("%s: %w", a.heard.Recording, err)
-	}
-	ahead := audio.NewAhead(after, 16384, 2)
-	defer ahead.Close()
-	return onsets.Measure(before, ahead, onsets.Options{})
+	return err
 }
 
 // print prints the figures, unless standard output is for another form of them.

@@ -57,7 +57,7 @@ func measuredFlags() []cli.Flag {
 // measuredForms are the ways in which a measurement is told.
 type measuredForms struct {
 	text, bands, curve, json func(io.Writer) error
-	page                     func() page.Page
+	page                     func() (page.Page, error)
 	failed                   bool // by a limit
 }
 
@@ -104,10 +104,8 @@ func (m measuredForms) write(c *cli.Context) error {
 			return err
 		}
 	}
-	if c.String("html") != "" || c.String("plots") != "" {
-		if err := writePages(c, m.page()); err != nil {
-			return err
-		}
+	if err := writePages(c, m.page); err != nil {
+		return err
 	}
 	if m.failed {
 		return &failure{exitLimit, nil}
@@ -131,7 +129,7 @@ func auditCapture(c *cli.Context) error {
 		bands: func(w io.Writer) error { return report.CaptureBandsCSV(w, n.To, r) },
 		curve: func(w io.Writer) error { return report.CaptureCurveCSV(w, n.To, r) },
 		json:  func(w io.Writer) error { return report.CaptureJSON(w, n, r, c.App.Version) },
-		page:  func() page.Page { return capturePage(c, shown, r) },
+		page:  func() (page.Page, error) { return capturePage(c, shown, r) },
 
 		failed: slices.ContainsFunc(r.Channels, func(ch *capture.Result) bool { return len(limits.Failed(ch.Verdicts)) > 0 }),
 	}.write(c)
@@ -208,7 +206,7 @@ func auditPair(c *cli.Context) error {
 		bands: func(w io.Writer) error { return report.PairBandsCSV(w, n.To, r) },
 		curve: func(w io.Writer) error { return report.PairCurveCSV(w, n.To, r) },
 		json:  func(w io.Writer) error { return report.PairJSON(w, n, r, c.App.Version) },
-		page:  func() page.Page { return pairPage(c, shown, r) },
+		page:  func() (page.Page, error) { return pairPage(c, shown, r) },
 
 		failed: slices.ContainsFunc(r.Channels, func(ch *pair.Result) bool { return len(limits.Failed(ch.Verdicts)) > 0 }),
 	}.write(c)

@@ -8,9 +8,11 @@ import (
 	"slices"
 	"strings"
 
+	"fettle/audio"
 	"fettle/audit/choose"
 	"fettle/audit/limits"
 	"fettle/audit/report"
+	"fettle/audit/report/page"
 	"fettle/filter"
 
 	"github.com/urfave/cli/v2"
@@ -27,7 +29,8 @@ func compareCommand() *cli.Command {
 			&cli.StringFlag{Name: "as", Value: strings.Join(choose.Usual, ","), Usage: "compare the realisations `LIST`; also given"},
 			&cli.StringFlag{Name: "for", Usage: "what the output is for: `PURPOSE`", DefaultText: "each in turn"},
 			limitFlag(),
-			rateFlag(),
+			comparedRateFlag(),
+			&cli.StringFlag{Name: "recording", Usage: "what becomes of the onsets in `FILE`, too"},
 			kernelFlag(),
 			jsonFlag(),
 			htmlFlag(),
@@ -109,11 +112,44 @@ func comparisonOf(c *cli.Context) (r choose.Request, err error) {
 	if r.Limits, err = limits.Parse(*c.Generic("limit").(*texts)...); err != nil {
 		return r, fmt.Errorf("--limit: %w", err)
 	}
-	if r.Rate, err = rateOf(c.String("rate")); err != nil {
+	r.Recording = c.String("recording")
+	if r.Rate, err = comparedRate(c); err != nil {
 		return r, err
 	}
 	r.Kernel, _, err = kernelOf(c)
 	return r, err
+}
+
+func comparedRateFlag() cli.Flag {
+	flag := rateFlag().(*cli.StringFlag)
+	flag.DefaultText = "that of --recording, or " + flag.Value
+	return flag
+}
+
+// comparedRate is the recording's where one is named: what is heard is what is measured.
+func comparedRate(c *cli.Context) (int, error) {
+	asked, err := rateOf(c.String("rate"))
+	recording := c.String("recording")
+	if err != nil || recording == "" {
+		return asked, err
+	}
+	rate, err := rateOfRecording(recording)
+	if err != nil {
+		return 0, fmt.Errorf("--recording: %w", err)
+	}
+	if c.IsSet("rate") && asked != rate {
+		return 0, fmt.Errorf("--rate: is %d Hz, but %s has %d Hz; leave out --rate, or name a recording of that rate", asked, recording, rate)
+	}
+	return rate, nil
+}
+
+func rateOfRecording(name string) (int, error) {
+	r, err := audio.Open(name)
+	if err != nil {
+		return 0, err
+	}
+	defer r.Close()
+	return r.Format().SampleRate, nil
 }
 
 func comparedChain(path string) (choose.Chain, error) {
@@ -188,7 +224,7 @@ func writeComparison(c *cli.Context, result *choose.Comparison) error {
 	if err != nil {
 		return err
 	}
-	return writePages(c, comparePage(c, result))
+	return writePages(c, func() (page.Page, error) { return comparePage(c, result) })
 }
 
 // saveAdvised writes the chain that was advised.

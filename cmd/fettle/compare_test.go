@@ -152,6 +152,40 @@ func TestCompareSaveElsewhere(t *testing.T) {
 	}
 }
 
+// TestCompareRecording: at the recording's own rate, which --rate may repeat but not change.
+func TestCompareRecording(t *testing.T) {
+	b := newBench(t)
+	const recording = "../../samples/recordings/interviews/deckhand_side_a.wav" // 16 kHz
+	compare := func(args ...string) outcome {
+		return fettle(append([]string{"compare", "--as", "iir,linear", b.chain(speechChain), "--recording", recording}, args...)...)
+	}
+	got := compare("--json", "-")
+	got.must(t, exitDone)
+	var doc struct {
+		RateHz int `json:"rate_hz"`
+		Rows   []struct {
+			Onsets struct {
+				Recording string
+				Channels  []struct{ Found int }
+			}
+		}
+	}
+	mustDo(t, json.Unmarshal([]byte(got.stdout), &doc))
+	mustEqual(t, "rate", doc.RateHz, 16000)
+	mustEqual(t, "rows", len(doc.Rows), 2)
+	for _, row := range doc.Rows {
+		mustEqual(t, "recording", row.Onsets.Recording, recording)
+		if len(row.Onsets.Channels) != 1 || row.Onsets.Channels[0].Found < 4 { // a slate and three plosives
+			t.Errorf("onsets %+v", row.Onsets)
+		}
+	}
+	compare("--rate", "16k").must(t, exitDone)
+	compare("--rate", "48k").must(t, exitNotStarted, "--rate", "48000 Hz", "16000 Hz", "leave out --rate")
+	fettle("compare", b.chain(speechChain), "--recording", b.path("none.wav")).must(t, exitNotStarted, "--recording", "none.wav")
+	right := b.file("right.yaml", []byte("stages:\n  - highpass: {at: 80 Hz, order: 4, channels: [2]}\n"))
+	fettle("compare", right, "--recording", recording).must(t, exitNotStarted, "channel 2", "right.yaml")
+}
+
 func TestCompareCSV(t *testing.T) {
 	b := newBench(t)
 	file := b.path("rows.csv")

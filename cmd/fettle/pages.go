@@ -10,6 +10,7 @@ import (
 	"fettle/audit"
 	"fettle/audit/capture"
 	"fettle/audit/choose"
+	"fettle/audit/hear"
 	"fettle/audit/pair"
 	"fettle/audit/report"
 	"fettle/audit/report/page"
@@ -26,34 +27,48 @@ func plotsFlag() cli.Flag {
 }
 
 // auditPage is the page of one chain's audit.
-func auditPage(c *cli.Context, name string, results []*audit.Result) page.Page {
-	p := page.Page{Title: plain(name), Version: c.App.Version}
-	rows := report.BriefTable(results)
-	p.Tables = []page.Table{{Caption: "The audit as a whole", Head: rows[0], Rows: rows[1:]}}
+func auditPage(c *cli.Context, a *chainAudit, results []*audit.Result) (page.Page, error) {
+	p := page.Page{Title: plain(a.chain.Name), Version: c.App.Version}
+	p.Tables = []page.Table{tableOf("The audit as a whole", report.BriefTable(results))}
 	for _, r := range results {
 		p.Subjects = append(p.Subjects, page.Of(report.Label(r), r))
 	}
-	return p
+	if a.heardBy == nil {
+		return p, nil
+	}
+	return p, addHearing(&p, a.heard.Recording, []hear.Way{heardWay(string(a.heardBy.Phase()), a.heardBy, a.kernel, results)})
 }
 
 // comparePage is the page of a comparison, one subject a row and way of treatment.
-func comparePage(c *cli.Context, result *choose.Comparison) page.Page {
-	rows := report.CompareTable(result)
-	p := page.Page{Title: "Realisations side by side", Version: c.App.Version, Notes: report.CompareNotes(result),
-		Tables: []page.Table{{Caption: "Realisations", Head: rows[0], Rows: rows[1:]}}}
+func comparePage(c *cli.Context, result *choose.Comparison) (page.Page, error) {
+	p := page.Page{Title: plain(report.CompareTitle(result)), Version: c.App.Version, Notes: report.CompareNotes(result),
+		Tables: []page.Table{tableOf("Realisations", report.CompareTable(result))}}
 	for _, a := range result.Advice {
 		p.Summary = append(p.Summary, report.AdviceWords(result, a)...)
 	}
+	var ways []hear.Way
 	for _, row := range result.Rows {
-		for _, r := range row.Shown().Results {
+		shown := row.Shown()
+		for _, r := range shown.Results {
 			p.Subjects = append(p.Subjects, page.Of(report.RowLabel(result, row, r), r))
 		}
+		ways = append(ways, heardWay(report.RowName(result, row), shown.Filter, result.Kernel, shown.Results))
 	}
-	return p
+	if result.Recording == "" || len(ways) == 0 {
+		return p, nil
+	}
+	return p, addHearing(&p, result.Recording, ways)
 }
 
-// writePages writes what --html and --plots ask for.
-func writePages(c *cli.Context, p page.Page) error {
+// writePages writes what --html and --plots ask for; it makes the page only then.
+func writePages(c *cli.Context, make func() (page.Page, error)) error {
+	if c.String("html") == "" && c.String("plots") == "" {
+		return nil
+	}
+	p, err := unlessInterrupted(c.Context, make)
+	if err != nil {
+		return err
+	}
 	if err := writeTo(c, c.String("html"), func(w io.Writer) error { return page.Write(w, p) }); err != nil {
 		return err
 	}
@@ -65,6 +80,11 @@ func writePages(c *cli.Context, p page.Page) error {
 	if err != nil {
 		return err
 	}
+	heard, err := page.OnsetPlotFiles(p.Hearing)
+	if err != nil {
+		return err
+	}
+	files = append(files, heard...)
 	if err := os.MkdirAll(dir, 0o777); err != nil {
 		return fmt.Errorf("--plots: %w; choose another folder", err)
 	}
@@ -81,13 +101,13 @@ func writePages(c *cli.Context, p page.Page) error {
 }
 
 // capturePage is the page of a capture, one subject a channel.
-func capturePage(c *cli.Context, n report.Names, r *capture.Report) page.Page {
+func capturePage(c *cli.Context, n report.Names, r *capture.Report) (page.Page, error) {
 	p := page.Page{Title: n.To + ", a capture of " + n.From, Version: c.App.Version, Notes: append(notesOf(r.Warnings), measuredNote)}
 	p.Tables = []page.Table{tableOf("The capture as a whole", report.CaptureTable(r))}
 	for _, ch := range r.Channels {
 		p.Subjects = append(p.Subjects, page.OfCapture(ch))
 	}
-	return p
+	return p, nil
 }
 
 // measuredNote says what differs from the page of a chain.
@@ -104,7 +124,7 @@ func notesOf(warnings []string) []string {
 
 // pairPage is the page of a processed recording beside its original, one subject a
 // channel.
-func pairPage(c *cli.Context, n report.Names, r *pair.Report) page.Page {
+func pairPage(c *cli.Context, n report.Names, r *pair.Report) (page.Page, error) {
 	p := page.Page{Title: n.To + " beside " + n.From, Version: c.App.Version, Notes: append(notesOf(r.Warnings), measuredNote)}
 	if r.Reason != "" {
 		p.Summary = []string{r.Reason + "."}
@@ -113,7 +133,7 @@ func pairPage(c *cli.Context, n report.Names, r *pair.Report) page.Page {
 	for _, ch := range r.Channels {
 		p.Subjects = append(p.Subjects, page.OfPair(r, ch))
 	}
-	return p
+	return p, nil
 }
 
 func tableOf(caption string, rows [][]string) page.Table {

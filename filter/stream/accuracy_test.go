@@ -26,7 +26,7 @@ func TestAccuracy(t *testing.T) {
 		want[i] = slowFIRAt(h, x[i%2], at[i])
 	}
 	for _, kernel := range machine.Available() {
-		y := runChannels(f.Kernel(2, Run{-1, kernel, 1}), x)
+		y := runChannels(f.Kernel(2, Run{-1, kernel}), x)
 		var square float64
 		for i, n := range at {
 			d := y[i%2][n] - want[i]
@@ -50,7 +50,7 @@ func FuzzFIR(f *testing.F) {
 	f.Fuzz(func(t *testing.T, seed uint64, taps uint16, channels uint8, frames uint16, way uint8, step uint16, announced int16) {
 		h := noise(seed, 1+int(taps)%4096)
 		all := machine.Available()
-		run := Run{Frames: int64(announced), Kernel: all[int(way)%len(all)], Workers: int(way) / 8 % 4}
+		run := Run{Frames: int64(announced), Kernel: all[int(way)%len(all)]}
 		count := 1 + int(channels)%6
 		k := NewFIR(h).Kernel(count, run)
 		x := noisePlanes(seed+1, count, int(frames)%20_000+min(k.Delay(), 40_000))

@@ -30,7 +30,7 @@ func BenchmarkFIR(b *testing.B) {
 		for _, taps := range []int{15, 255, 1023, 4095, 16383, 65535} {
 			for _, channels := range []int{1, 2} {
 				b.Run(fmt.Sprintf("kernel=%v/taps=%d/channels=%d", kernel, taps, channels), func(b *testing.B) {
-					benchKernel(b, NewFIR(noise(2, taps)).Kernel(channels, Run{-1, kernel, 1}), channels)
+					benchKernel(b, NewFIR(noise(2, taps)).Kernel(channels, Run{-1, kernel}), channels)
 				})
 			}
 		}
@@ -42,7 +42,7 @@ func BenchmarkFIR(b *testing.B) {
 func BenchmarkGonum(b *testing.B) {
 	for _, taps := range []int{255, 4095, 65535} {
 		b.Run(fmt.Sprintf("taps=%d", taps), func(b *testing.B) {
-			g := newGonumOverlapSave(noise(2, taps), blockSize(taps, 2, Run{-1, machine.Portable, 1}))
+			g := newGonumOverlapSave(noise(2, taps), blockSize(taps, 2, Run{-1, machine.Portable}))
 			x := noise(1, len(g.block))
 			y := make([]float64, g.hop)
 			for b.Loop() {

@@ -14,7 +14,8 @@
 //
 //   - [FIR]: taps, that is a finite impulse response h[0], h[1], ..., by
 //     overlap-save, or summed directly when there are few. The immutable part
-//     is shared, and each stream asks it for a kernel of its own.
+//     is shared, and each stream asks it for a kernel of its own, or for [Hops],
+//     which several goroutines can filter.
 //   - [Cascade]: second-order sections one after another.
 //   - [Delay]: whole samples.
 //   - [Series]: kernels one after another.

@@ -68,13 +68,10 @@ type Run struct {
 	// decides about blocks, nothing else: the stream may turn out longer.
 	Frames int64
 	Kernel machine.Kernel
-	// Workers is how many goroutines may work on a stream at once; below 2: one.
-	// The output does not depend on it, only Delay does.
-	Workers int
 }
 
-// Anything is a run of unknown length on one goroutine with the best kernel.
-func Anything() Run { return Run{Frames: -1, Kernel: machine.Best(), Workers: 1} }
+// Anything is a run of unknown length with the best kernel.
+func Anything() Run { return Run{Frames: -1, Kernel: machine.Best()} }
 
 // Kernel returns a kernel for one stream of so many channels, one or more; it
 // panics if there are none or the run's kernel does not run here. Its Tail is
@@ -98,5 +95,5 @@ func (f *FIR) kernel(channels int, run Run, size int) Kernel {
 	if size == 0 {
 		return newDirect(f.taps, channels)
 	}
-	return newOverlapSave(f.plan(size, run.Kernel), len(f.taps), channels, run)
+	return newOverlapSave(f.hops(channels, run, size))
 }

@@ -127,21 +127,52 @@ func TestFIRBlockSizeDoesNotMatter(t *testing.T) {
 	}
 }
 
-// TestWorkersDoNotMatter: the same bits, whatever the number of goroutines.
-func TestWorkersDoNotMatter(t *testing.T) {
+// TestHopsInAnyOrder: the same bits as of the kernel, whoever filters which period
+// when.
+func TestHopsInAnyOrder(t *testing.T) {
 	f := NewFIR(noise(40, 1000))
 	for _, kernel := range machine.Available() {
 		for _, channels := range []int{1, 2, 3, 5} {
-			x := noisePlanes(41, channels, 150_000)
-			want := runChannels(f.Kernel(channels, Run{-1, kernel, 1}), x)
-			for workers := 2; workers <= 5; workers++ {
-				got := runChannels(f.Kernel(channels, Run{-1, kernel, workers}), x)
-				for c := range got {
-					compare(t, fmt.Sprintf("%v, %d workers, channel %d of %d", kernel, workers, c, channels), got[c], want[c], 0)
-				}
+			run := Run{-1, kernel}
+			k := f.Kernel(channels, run)
+			h := f.Hops(channels, run)
+			x := noisePlanes(41, channels, 6*h.Hop())
+			want := runChannels(k, x)
+			got := filterInAnyOrder(h, x)
+			for c := range got {
+				compare(t, fmt.Sprintf("%v, channel %d of %d", kernel, c, channels), got[c], want[c], 0)
 			}
 		}
 	}
+	if h := NewFIR([]float64{1}).Hops(2, Anything()); h != nil {
+		t.Errorf("hops of %d where a single tap is summed directly", h.Hop())
+	}
+}
+
+// filterInAnyOrder filters signals of whole periods, the last period first, each on
+// a goroutine of its own.
+func filterInAnyOrder(h *Hops, x [][]float64) [][]float64 {
+	var blocks [][][]float64
+	for from := 0; from < len(x[0]); from += h.Hop() {
+		block := planes(len(x), h.History()+h.Hop())
+		for c := range block {
+			before := min(from, h.History())
+			copy(block[c][h.History()-before:], x[c][from-before:from+h.Hop()])
+		}
+		blocks = append(blocks, block)
+	}
+	var wait sync.WaitGroup
+	for at := len(blocks) - h.Period(); at >= 0; at -= h.Period() {
+		wait.Go(func() { h.Filter(blocks[at:at+h.Period()], h.Scratch()) })
+	}
+	wait.Wait()
+	y := make([][]float64, len(x))
+	for _, block := range blocks {
+		for c := range y {
+			y[c] = append(y[c], block[c][h.History():]...)
+		}
+	}
+	return y
 }
 
 func TestFIRIsShared(t *testing.T) {
@@ -157,14 +188,14 @@ func TestFIRIsShared(t *testing.T) {
 }
 
 // TestFIRSizes: a period is one hop for an even number of channels and two for an
-// odd one, times the workers.
+// odd one.
 func TestFIRSizes(t *testing.T) {
 	f := NewFIR(noise(28, 4095))
 	hop := blockSize(4095, 2, Anything()) - 4094
-	for _, c := range []struct{ channels, workers, hops int }{{2, 1, 1}, {3, 1, 2}, {2, 3, 3}, {1, 2, 4}, {6, 0, 1}} {
-		k := f.Kernel(c.channels, Run{-1, machine.Best(), c.workers})
+	for _, c := range []struct{ channels, hops int }{{1, 2}, {2, 1}, {3, 2}, {6, 1}} {
+		k := f.Kernel(c.channels, Anything())
 		if k.Tail() != 4094 || k.Delay() != c.hops*hop {
-			t.Errorf("%d channels, %d workers: tail %d and delay %d, want 4094 and %d", c.channels, c.workers, k.Tail(), k.Delay(), c.hops*hop)
+			t.Errorf("%d channels: tail %d and delay %d, want 4094 and %d", c.channels, k.Tail(), k.Delay(), c.hops*hop)
 		}
 	}
 	if f.Taps() != 4095 {

@@ -32,9 +32,9 @@ func TestKernels(t *testing.T) {
 	for _, taps := range []int{1, 2, 3, 24, 25, 100, 300} {
 		h := noise(3, taps)
 		f := NewFIR(h)
-		for _, run := range runs() {
-			t.Run(fmt.Sprintf("FIR of %d, %v, %d workers", taps, run.Kernel, run.Workers), func(t *testing.T) {
-				testKernel(t, func(channels int) Kernel { return f.kernel(channels, run, smallBlock(taps)) },
+		for _, kernel := range machine.Available() {
+			t.Run(fmt.Sprintf("FIR of %d, %v", taps, kernel), func(t *testing.T) {
+				testKernel(t, func(channels int) Kernel { return f.kernel(channels, Run{-1, kernel}, smallBlock(taps)) },
 					func(x []float64) []float64 { return slowFIR(h, x) }, blockError(h))
 			})
 		}
@@ -68,15 +68,6 @@ func smallBlock(taps int) int {
 		return 0
 	}
 	return 512
-}
-
-// runs are all kernels, with one worker and with several.
-func runs() []Run {
-	var all []Run
-	for _, k := range machine.Available() {
-		all = append(all, Run{-1, k, 1}, Run{-1, k, 2})
-	}
-	return all
 }
 
 func testSeries(t *testing.T) {

@@ -13,7 +13,7 @@ func TestBlockSizes(t *testing.T) {
 		for taps := 1; taps <= 1<<20; taps += 1 + taps/20 {
 			for _, frames := range []int64{-1, 0, 1, 1000, 48000, 1 << 32} {
 				for _, channels := range []int{1, 2, 3} {
-					size := blockSize(taps, channels, Run{frames, kernel, 1})
+					size := blockSize(taps, channels, Run{frames, kernel})
 					if size != 0 && (size < taps || bits.OnesCount(uint(size)) != 1) {
 						t.Errorf("%v, %d taps, %d frames, %d channels: blocks of %d", kernel, taps, frames, channels, size)
 					}
@@ -28,16 +28,16 @@ func TestBlockSizes(t *testing.T) {
 // of four times its length.
 func TestPlannerIsSensible(t *testing.T) {
 	for _, kernel := range machine.Available() {
-		if size := blockSize(1, 2, Run{-1, kernel, 1}); size != 0 {
+		if size := blockSize(1, 2, Run{-1, kernel}); size != 0 {
 			t.Errorf("%v: one tap is done in blocks of %d", kernel, size)
 		}
 		for _, taps := range []int{255, 4095, 65535, 530333} {
-			size := blockSize(taps, 2, Run{-1, kernel, 1})
+			size := blockSize(taps, 2, Run{-1, kernel})
 			if size < 2*(taps-1) || size > 64*taps {
 				t.Errorf("%v: %d taps are done in blocks of %d", kernel, taps, size)
 			}
 			for _, frames := range []int64{1000, 48000, 480000} {
-				short := blockSize(taps, 2, Run{frames, kernel, 1})
+				short := blockSize(taps, 2, Run{frames, kernel})
 				if need := int(frames) + taps - 1; short >= 4*max(need, 256) {
 					t.Errorf("%v: %d frames and %d taps are done in blocks of %d", kernel, frames, taps, short)
 				}
@@ -51,7 +51,7 @@ func TestPlannerTakesTheCheapest(t *testing.T) {
 	for _, kernel := range machine.Available() {
 		for _, taps := range []int{5, 100, 4095, 100000} {
 			for _, frames := range []int64{-1, 3000, 1 << 20} {
-				run := Run{frames, kernel, 1}
+				run := Run{frames, kernel}
 				size := blockSize(taps, 1, run)
 				least := directCost(taps, 1, run)
 				if size > 0 {
@@ -108,7 +108,7 @@ func TestPlannedBlocks(t *testing.T) {
 		{machine.AVX512, 4095, 480000, 2, 131072},
 		{machine.AVX512, 530333, -1, 2, 2097152},
 	} {
-		if got := blockSize(c.taps, c.channels, Run{c.frames, c.kernel, 1}); got != c.want {
+		if got := blockSize(c.taps, c.channels, Run{c.frames, c.kernel}); got != c.want {
 			t.Errorf("%v, %d taps, %d frames, %d channels: blocks of %d, want %d", c.kernel, c.taps, c.frames, c.channels, got, c.want)
 		}
 	}

@@ -165,3 +165,32 @@ func pairs() {
 	VZEROUPPER()
 	RET()
 }
+
+// unpairs writes the function that undoes pairs.
+func unpairs() {
+	TEXT("unpairsAVX2", NOSPLIT, "func(left *float64, right *float64, src *float64, n int)")
+	Pragma("noescape")
+	left := Load(Param("left"), GP64())
+	right := Load(Param("right"), GP64())
+	src := Load(Param("src"), GP64())
+	n := Load(Param("n"), GP64())
+	Label("samples")
+	for half := range 2 {
+		low, high, l, r := YMM(), YMM(), YMM(), YMM()
+		VMOVUPD(Mem{Base: src, Disp: 64 * half}, low)
+		VMOVUPD(Mem{Base: src, Disp: 64*half + 32}, high)
+		VUNPCKLPD(high, low, l)
+		VUNPCKHPD(high, low, r)
+		VPERMPD(Imm(0b11_01_10_00), l, l)
+		VPERMPD(Imm(0b11_01_10_00), r, r)
+		VMOVUPD(l, Mem{Base: left, Disp: 32 * half})
+		VMOVUPD(r, Mem{Base: right, Disp: 32 * half})
+	}
+	ADDQ(Imm(128), src)
+	ADDQ(Imm(64), left)
+	ADDQ(Imm(64), right)
+	SUBQ(Imm(group), n)
+	JNZ(LabelRef("samples"))
+	VZEROUPPER()
+	RET()
+}

@@ -15,5 +15,6 @@ func main() {
 	drawAVX2()
 	drawAVX512()
 	pairs()
+	unpairs()
 	Generate()
 }

@@ -4,12 +4,14 @@ import (
 	"bytes"
 	"context"
 	"encoding/json"
+	"iter"
 	"math"
 	"os"
 	"os/exec"
 	"path/filepath"
 	"strconv"
 	"strings"
+	"sync"
 	"testing"
 	"time"
 
@@ -33,6 +35,32 @@ type tab struct {
 // opened opens the page of the rumble chain.
 func opened(t *testing.T) *tab {
 	t.Helper()
+	results, p := rumblePage(t)
+	x := openedPage(t, p)
+	x.results = results
+	return x
+}
+
+// The tests share one browser.
+var browser struct {
+	sync.Once
+	ctx  context.Context
+	stop context.CancelFunc
+	err  error
+}
+
+func TestMain(m *testing.M) {
+	code := m.Run()
+	if browser.stop != nil {
+		browser.stop()
+	}
+	os.Exit(code)
+}
+
+// startedBrowser gives the context of the browser, for tabs. Without one the test is
+// skipped; where continuous integration runs there must be one.
+func startedBrowser(t *testing.T) context.Context {
+	t.Helper()
 	program, err := exec.LookPath("chromium")
 	if err != nil {
 		const missing = "chromium is missing: apt-get install chromium"
@@ -41,7 +69,21 @@ func opened(t *testing.T) *tab {
 		}
 		t.Skip(missing)
 	}
-	results, p := rumblePage(t)
+	browser.Do(func() {
+		// The page is our own: a browser run by root, as in a container, has no sandbox.
+		browser.ctx, browser.stop = chromedp.NewContext(context.Background(), chromedp.WithAllocatorOptions(chromedp.ExecPath(program), chromedp.NoSandbox))
+		browser.err = chromedp.Do(browser.ctx)
+	})
+	if browser.err != nil {
+		t.Fatal(browser.err)
+	}
+	return browser.ctx
+}
+
+// openedPage opens a page from disk, and fails if the console has anything to say.
+func openedPage(t *testing.T, p Page) *tab {
+	t.Helper()
+	started := startedBrowser(t)
 	name := filepath.Join(t.TempDir(), "page.html")
 	var b bytes.Buffer
 	if err := Write(&b, p); err != nil {
@@ -50,24 +92,29 @@ func opened(t *testing.T) *tab {
 	if err := os.WriteFile(name, b.Bytes(), 0o666); err != nil {
 		t.Fatal(err)
 	}
-	// The page is our own: a browser run by root, as in a container, has no sandbox.
-	ctx, stop := chromedp.NewContext(t.Context(), chromedp.WithAllocatorOptions(chromedp.ExecPath(program), chromedp.NoSandbox))
+	ctx, stop := chromedp.NewContext(started)
 	t.Cleanup(stop)
-	x := &tab{t, ctx, results, p}
+	x := &tab{T: t, ctx: ctx, page: p}
 	x.do(chromedp.EmulateViewport(1280, 900))
 	messages := chromedp.Console(ctx)
 	x.do(chromedp.Navigate("file://" + name))
+	x.nothingSaid(messages)
+	return x
+}
+
+// nothingSaid fails if there are errors or other words in the console.
+func (x *tab) nothingSaid(messages iter.Seq2[chromedp.ConsoleMessage, error]) {
+	x.Helper()
 	x.do(chromedp.Evaluate[chromedp.Void](`console.error("the last word")`))
 	for m, err := range messages {
 		if err != nil {
-			t.Fatal(err)
+			x.Fatal(err)
 		}
 		if m.Text == "the last word" {
-			break // errors are heard
+			return // errors are heard
 		}
-		t.Errorf("the console says: %s", m)
+		x.Errorf("the console says: %s", m)
 	}
-	return x
 }
 
 func (x *tab) do(steps ...chromedp.Action[chromedp.Void]) {

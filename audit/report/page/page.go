@@ -8,6 +8,7 @@ import (
 	"io"
 
 	"fettle/audit/figures"
+	"fettle/audit/hear"
 	"fettle/audit/limits"
 )
 
@@ -19,6 +20,10 @@ type Page struct {
 	Tables   []Table // in their order, ahead of the plots
 	Subjects []Subject
 	Notes    []string // whole sentences, at the end
+	// Hearing is what can be listened to; nil: nothing. See Room.
+	Hearing *hear.Excerpts
+
+	drawn []view // the subjects' plots, once they are
 }
 
 // Table is text in rows and columns. Its first column names the rows.
@@ -60,12 +65,13 @@ type Target struct{ Aim, Low, High []float64 }
 // Start is how every page begins.
 const Start = "<!doctype html>\n<!-- fettle page -->"
 
-//go:embed page.html page.css page.js
+//go:embed page.html page.css page.js hearing.js
 var files embed.FS
 
 var layout = template.Must(template.New("page.html").Funcs(template.FuncMap{
 	"css":   func() template.CSS { return template.CSS(asset("page.css")) },
 	"js":    func() template.JS { return template.JS(asset("page.js")) },
+	"ear":   func() template.JS { return template.JS(asset("hearing.js")) },
 	"start": func() template.HTML { return template.HTML(Start) },
 }).ParseFS(files, "page.html"))
 
@@ -79,25 +85,45 @@ func asset(name string) string {
 
 // Write writes a page. A subject without bands or curve has no plots.
 func Write(w io.Writer, p Page) error {
-	var all []view
-	for _, c := range charts(p.Subjects) {
-		v, err := c.view()
-		if err != nil {
-			return fmt.Errorf("the plot %q cannot be drawn: %w", c.title, err)
-		}
-		all = append(all, v)
+	if err := p.draw(); err != nil {
+		return err
+	}
+	heard, err := hearingOf(p.Hearing)
+	if err != nil {
+		return err
 	}
 	var b bytes.Buffer
-	err := layout.Execute(&b, struct {
+	err = layout.Execute(&b, struct {
 		Page
 		Limits []Table
 		Plots  []view
-	}{p, limitTables(p.Subjects), all})
+		Heard  *hearingView
+	}{p, limitTables(p.Subjects), p.drawn, heard})
 	if err != nil {
 		return err
 	}
 	_, err = b.WriteTo(w)
 	return err
+}
+
+// draw draws the subjects' plots unless they are drawn.
+func (p *Page) draw() (err error) {
+	if p.drawn == nil {
+		p.drawn, err = views(charts(p.Subjects))
+	}
+	return err
+}
+
+func views(drawn []*chart) ([]view, error) {
+	var all []view
+	for _, c := range drawn {
+		v, err := c.view()
+		if err != nil {
+			return nil, fmt.Errorf("the plot %q cannot be drawn: %w", c.title, err)
+		}
+		all = append(all, v)
+	}
+	return all, nil
 }
 
 // limitTables are the verdicts on each subject that was judged.

@@ -5,6 +5,8 @@ import (
 	"encoding/binary"
 	"fmt"
 	"hash/crc32"
+
+	"fettle/audit/hear"
 )
 
 // PlotFile is one plot as a file.
@@ -15,9 +17,14 @@ type PlotFile struct {
 
 // PlotFiles draws every plot that the page of these subjects has, each as SVG and
 // as PNG, in ink on white.
-func PlotFiles(subjects []Subject) ([]PlotFile, error) {
+func PlotFiles(subjects []Subject) ([]PlotFile, error) { return plotFiles(charts(subjects)) }
+
+// OnsetPlotFiles are those of the plots about the onset; nil has none.
+func OnsetPlotFiles(e *hear.Excerpts) ([]PlotFile, error) { return plotFiles(aboutOnset(e)) }
+
+func plotFiles(drawn []*chart) ([]PlotFile, error) {
 	var out []PlotFile
-	for _, c := range charts(subjects) {
+	for _, c := range drawn {
 		svg, _, _, err := c.svg(c.title, true)
 		if err != nil {
 			return nil, fmt.Errorf("the plot %q cannot be drawn: %w", c.title, err)

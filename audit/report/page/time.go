@@ -220,7 +220,7 @@ func energy(subjects []Subject) *chart {
 	c.columns = []column{{"time", "ms", 3}}
 	all := [][]float64{}
 	for i, s := range subjects {
-		levels := highest(envelope(s.Response, s.Origin, s.reach(c.x)), s, times, step)
+		levels := highest(s.envelope(c.x), s, times, step)
 		p := penOf(i)
 		c.marks = append(c.marks, curve{times, levels, p})
 		c.keys = append(c.keys, key{text: s.Label, pen: p})
@@ -230,7 +230,7 @@ func energy(subjects []Subject) *chart {
 	var skirts []plot.Plotter
 	for _, rate := range ratesOf(subjects) {
 		identity := Subject{Rate: rate, Response: []float64{1}}
-		skirt := highest(envelope(identity.Response, 0, identity.reach(c.x)), identity, times, step)
+		skirt := highest(identity.envelope(c.x), identity, times, step)
 		skirts = append(skirts, curve{times, skirt, skirtLine})
 		c.columns = append(c.columns, column{fmt.Sprintf("identity at %g kHz", rate/1000), "dB", 1})
 		all = append(all, skirt)
@@ -259,9 +259,13 @@ func ratesOf(subjects []Subject) []float64 {
 	return out
 }
 
-// reach is how many samples an axis spans, and a response with it.
-func (s Subject) reach(a axis) int {
-	return len(s.Response) + int((a.max-a.min)/toMS*s.Rate) + 1
+// envelope is that of the response over an axis. What lies farther off than the axis is
+// long is left out: it hardly shows, and some responses are many times as long.
+func (s Subject) envelope(a axis) level {
+	span := int((a.max-a.min)/toMS*s.Rate) + 1
+	first := max(0, s.Origin+int(a.min/toMS*s.Rate)-span)
+	end := min(len(s.Response), s.Origin+int(a.max/toMS*s.Rate)+span)
+	return envelope(s.Response[first:end], s.Origin-first, span)
 }
 
 // level is an envelope over time: at[i] is in dB, of sample i - origin.

@@ -8,7 +8,7 @@ import (
 
 // isDone compares what the record has of an earlier run with what is asked now.
 func (p *Plan) isDone(j *Job, e *Entry) bool {
-	if e == nil || e.Status != StatusDone || e.Input != name(absolute(j.Path)) || e.Settings != p.settings(j) {
+	if e == nil || e.Status != StatusDone || e.Input != name(j.absolute) || e.Settings != p.settings(j) {
 		return false
 	}
 	out, err := os.Stat(j.Output)

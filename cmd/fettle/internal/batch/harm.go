@@ -13,17 +13,17 @@ import (
 
 // refuseHarm checks that every output is its own and none is an original.
 func (p *Plan) refuseHarm() error {
-	originals := map[string]*Job{}
+	folders, originals, outputs := folderNames{}, map[string]*Job{}, map[string]*Job{}
 	for _, j := range p.Jobs {
-		originals[absolute(j.Path)] = j
+		j.absolute = folders.absolute(j.Path)
+		originals[j.absolute] = j
 	}
-	outputs := map[string]*Job{}
 	for _, j := range p.Jobs {
 		for _, output := range []string{j.Output, p.removedPath(j)} {
 			if output == "" {
 				continue
 			}
-			if err := p.refuseOutput(j, output, originals, outputs); err != nil {
+			if err := p.refuseOutput(j, output, folders, originals, outputs); err != nil {
 				return err
 			}
 		}
@@ -31,15 +31,15 @@ func (p *Plan) refuseHarm() error {
 	return nil
 }
 
-func (p *Plan) refuseOutput(j *Job, output string, originals, outputs map[string]*Job) error {
-	key := folded(filepath.Join(absolute(filepath.Dir(output)), filepath.Base(output)))
+func (p *Plan) refuseOutput(j *Job, output string, folders folderNames, originals, outputs map[string]*Job) error {
+	key := folded(filepath.Join(folders.absolute(filepath.Dir(output)), filepath.Base(output)))
 	if other := outputs[key]; other == j {
 		return fmt.Errorf("%s: the output and what is removed would both go there; choose another folder for --removed", output)
 	} else if other != nil {
 		return fmt.Errorf("%s: %s and %s would both become this output; treat them in batches of their own", output, other.Path, j.Path)
 	}
 	outputs[key] = j
-	if original := originals[absolute(output)]; original != nil || sameFile(output, j.Path) {
+	if original := originals[folders.absolute(output)]; original != nil || sameFile(output, j.Path) {
 		return fmt.Errorf("%s: this output would replace an original, which is never written to; choose another folder", output)
 	}
 	if isRecordName(j.Rel) {

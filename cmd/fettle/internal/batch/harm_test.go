@@ -38,6 +38,13 @@ func TestAbsolute(t *testing.T) {
 			t.Errorf("%s became %s, want %s", path, got, want)
 		}
 	}
+	folders := folderNames{}
+	for _, path := range []string{"link", "link/x.wav", "link/y.wav", "real/../link/x", "dangling", "dangling/x", "absent/x", ".", "/", "/x"} {
+		path = filepath.Join(dir, path)
+		if got, want := folders.absolute(path), absolute(path); got != want {
+			t.Errorf("%s in its folder became %s, want %s", path, got, want)
+		}
+	}
 	t.Chdir(dir)
 	if got := absolute("link/x"); got != filepath.Join(dir, "real/x") {
 		t.Errorf("link/x became %s", got)

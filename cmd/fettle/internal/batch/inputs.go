@@ -36,7 +36,7 @@ func (p Problems) Unwrap() []error { return p }
 // to files, and to a folder that is named outright. problems are what is named but
 // cannot be taken. It fails when there is nothing else.
 func Gather(args []string, aside ...string) (inputs []Input, problems Problems, err error) {
-	g := gatherer{seen: map[string]bool{}}
+	g := gatherer{seen: map[string]bool{}, folders: folderNames{}}
 	for _, folder := range aside {
 		if folder != "" {
 			g.aside = append(g.aside, absolute(folder))
@@ -60,6 +60,7 @@ type gatherer struct {
 	inputs   []Input
 	problems Problems
 	seen     map[string]bool
+	folders  folderNames
 	aside    []string
 }
 
@@ -86,7 +87,7 @@ func (g *gatherer) add(arg string) {
 // file takes a file once. One that cannot be examined is taken too: its
 // failure is its own.
 func (g *gatherer) file(path, rel string) {
-	key := absolute(path)
+	key := g.folders.absolute(path)
 	if g.seen[key] {
 		return
 	}
@@ -138,7 +139,7 @@ func (g *gatherer) pattern(arg string) {
 		switch {
 		case err != nil || !filepath.IsLocal(rel):
 			g.problem(path, errors.New("is not below the part of the pattern before its first *"), "write the pattern without .. behind a *")
-		case isWAV(path) && !isFolder(path) && !slices.ContainsFunc(aside, func(folder string) bool { return isBelow(absolute(path), folder) }):
+		case isWAV(path) && !isFolder(path) && !slices.ContainsFunc(aside, func(folder string) bool { return isBelow(g.folders.absolute(path), folder) }):
 			g.file(path, rel)
 		default:
 			continue
@@ -177,21 +178,6 @@ func isWAV(path string) bool {
 		return true
 	}
 	return false
-}
-
-// absolute is a path's one name, links resolved as far as it exists.
-func absolute(path string) string {
-	abs, err := filepath.Abs(path)
-	if err != nil {
-		return filepath.Clean(path)
-	}
-	if real, err := filepath.EvalSymlinks(abs); err == nil {
-		return real
-	}
-	if parent := filepath.Dir(abs); parent != abs {
-		return filepath.Join(absolute(parent), filepath.Base(abs))
-	}
-	return abs
 }
 
 // cause strips the path that a file system error repeats.

@@ -19,6 +19,7 @@ type Job struct {
 	// Need and NeedRemoved are the bytes that the output, and what is removed, will
 	// take, about.
 	Need, NeedRemoved int64
+	absolute          string // of Path
 	Done              bool   // the record says so, and nothing it depends on changed
 	past              *Entry // of an earlier run, or nil
 }

@@ -117,16 +117,13 @@ func (r *rendering) windows() (starts []int64, length int64) {
 
 // compareWindows feeds every channel's alignment.
 func (r *rendering) compareWindows(out *audio.Recording, starts []int64, length int64, to []*pair.Alignment) error {
-	original, err := audio.Open(r.job.Path)
-	if err != nil {
-		return err
-	}
-	defer original.Close()
 	channels := len(to)
-	x, y := make([]float64, proofFrames*channels), make([]float64, proofFrames*channels)
-	plane := make([]float64, 2*proofFrames)
+	buffer := takeSamples(2 * proofFrames * (channels + 1))
+	defer giveSamples(buffer)
+	x, y, planes := buffer[:proofFrames*channels], buffer[proofFrames*channels:][:proofFrames*channels], buffer[2*proofFrames*channels:]
+	a, b := planes[:proofFrames], planes[proofFrames:]
 	for _, start := range starts {
-		if err := original.SeekFrame(r.from + start); err != nil {
+		if err := r.rec.SeekFrame(r.from + start); err != nil {
 			return err
 		}
 		if err := out.SeekFrame(start); err != nil {
@@ -134,16 +131,16 @@ func (r *rendering) compareWindows(out *audio.Recording, starts []int64, length 
 		}
 		for left := length; left > 0; {
 			n := int(min(left, proofFrames))
-			if err := readFull(original, x[:n*channels]); err != nil {
+			if err := readFull(r.rec, x[:n*channels]); err != nil {
 				return err
 			}
 			if err := readFull(out, y[:n*channels]); err != nil {
 				return err
 			}
-			for c, a := range to {
-				pick(plane[:n], x, c, channels)
-				pick(plane[proofFrames:][:n], y, c, channels)
-				a.Add(plane[:n], plane[proofFrames:][:n])
+			for c, alignment := range to {
+				pick(a[:n], x, c, channels)
+				pick(b[:n], y, c, channels)
+				alignment.Add(a[:n], b[:n])
 			}
 			left -= int64(n)
 		}
@@ -196,7 +193,7 @@ func alignedResponse(f *filter.Filter, path *filter.Path) []complex128 {
 	for size < 2*len(path.System.Taps) {
 		size *= 2
 	}
-	all, _ := path.Response(size)
+	all := path.Spectrum(size)
 	step := 2 * math.Pi / float64(size) * float64(f.Shift(path))
 	var known []complex128
 	for k := 0; k < len(all); k += size / pair.AlignmentSize {

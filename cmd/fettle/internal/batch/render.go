@@ -17,9 +17,6 @@ import (
 	"fettle/filter"
 )
 
-// block is how many frames are moved at a time.
-const block = 16384
-
 // render treats one recording and fills in what the record says of it. It begins
 // with a slot and ends without.
 func (p *Plan) render(ctx context.Context, j *Job, e *Entry, progress Progress) error {
@@ -116,17 +113,15 @@ func roundUp(db float64) float64 { return math.Ceil(db*10) / 10 }
 // pass reads, filters and writes the recording once. On any error no output
 // appears.
 func (r *rendering) pass(ctx context.Context) error {
-	out, before, rest, err := r.filtered()
+	slabs, before, err := r.filtered()
 	if err != nil {
 		return fmt.Errorf("%s: %w", r.job.Path, err)
 	}
-	defer rest()
 	outputs, err := r.create()
 	if err != nil {
 		return err
 	}
-	err = outputs.copy(ctx, out, r.gain)
-	rest()
+	err = (&flow{ctx: ctx, slabs: slabs, outputs: outputs}).run(r.workers())
 	if err == nil {
 		r.entry.SHA256In, err = r.rec.SHA256()
 	}
@@ -139,43 +134,27 @@ func (r *rendering) pass(ctx context.Context) error {
 	return outputs.commit(r.entry)
 }
 
-// filtered gives what is to be rendered as it comes out of the filter, and the
-// meter of what goes in. Where there are cores to spare, reading and filtering go
-// on while what came before is written; rest ends that and may be called twice.
-func (r *rendering) filtered() (out audio.Source, before *audio.Meter, rest func(), err error) {
+// workers is how many goroutines share the recording.
+func (r *rendering) workers() int {
+	return max(1, min(r.plan.coresEach(), int(r.entry.Frames/share)))
+}
+
+// filtered gives what is to be rendered, with its context, as it comes out of the
+// filter, and the meter of what goes in.
+func (r *rendering) filtered() (*filter.Slabs, *audio.Meter, error) {
 	setup := r.filter.Setup()
-	setup.Kernel, setup.Workers = r.plan.Options.Kernel, r.plan.coresEach()
+	setup.Kernel = r.plan.Options.Kernel
 	ahead, behind := r.context()
 	src, err := newSection(r.rec, r.from-ahead, r.to+behind)
 	if err != nil {
-		return nil, nil, nil, err
+		return nil, nil, err
 	}
-	in := &metered{Source: src, meter: audio.NewMeter(r.rec.Format().NumChannels), skip: ahead, left: r.to - r.from}
+	in := &metered{Source: src, meter: audio.NewMeter(r.rec.Format().NumChannels), span: span{ahead, r.to - r.from}}
 	if r.progress != nil {
 		in.progress, in.frameBytes = r.progress, int64(r.rec.Encoding().Bytes*r.rec.Format().NumChannels)
 	}
-	overlap := setup.Workers > 1 && src.Frames() >= overlapFrom
-	closers := []func(){}
-	rest = func() {
-		for _, c := range slices.Backward(closers) {
-			c()
-		}
-	}
-	out = in
-	if overlap {
-		read := audio.NewAhead(out, block, 2)
-		out, closers = read, append(closers, read.Close)
-	}
-	if out, err = r.filter.ApplyWith(out, setup); err != nil {
-		rest()
-		return nil, nil, nil, err
-	}
-	out = &window{Source: out, skip: ahead, length: r.to - r.from}
-	if overlap {
-		written := audio.NewAhead(out, block, 2)
-		out, closers = written, append(closers, written.Close)
-	}
-	return out, in.meter, rest, nil
+	slabs, err := r.filter.Slabs(in, setup)
+	return slabs, in.meter, err
 }
 
 // context is how many frames before and after a stretch are filtered with it, so
@@ -191,12 +170,10 @@ func (r *rendering) context() (before, after int64) {
 	return min(before, r.from), min(after, length-r.to)
 }
 
-// overlapFrom is the least length in frames for which goroutines of their own pay.
-const overlapFrom = 8 * block
-
 // create begins all that a recording becomes.
 func (r *rendering) create() (*outputs, error) {
-	o := &outputs{rec: r.rec, meter: audio.NewMeter(r.rec.Format().NumChannels)}
+	ahead, _ := r.context()
+	o := &outputs{rec: r.rec, meter: audio.NewMeter(r.rec.Format().NumChannels), span: span{ahead, r.to - r.from}, gain: r.gain}
 	spec, err := r.spec()
 	if err != nil {
 		return nil, err
@@ -205,6 +182,7 @@ func (r *rendering) create() (*outputs, error) {
 	if err != nil {
 		return nil, err
 	}
+	w.Readers(r.workers())
 	o.writer, o.path = w, r.job.Output
 	if path := r.plan.removedPath(r.job); path != "" {
 		if o.removed, err = newRemoval(path, r.job.Path, r.from, r.to); err != nil {
@@ -302,33 +280,6 @@ func decibels(x float64) *float64 {
 	return &db
 }
 
-// metered measures what is read through it, but for the context of a stretch, and
-// tells how far it is.
-type metered struct {
-	audio.Source
-	meter      *audio.Meter
-	skip, left int64 // frames
-	progress   Progress
-	frameBytes int64
-}
-
-func (m *metered) ReadFrames(dst []float64) (int, error) {
-	n, err := m.Source.ReadFrames(dst)
-	if err != nil {
-		return n, err
-	}
-	if m.progress != nil {
-		m.progress.Bytes(int64(n) * m.frameBytes)
-	}
-	from := min(m.skip, int64(n))
-	to := min(from+m.left, int64(n))
-	m.skip -= from
-	m.left -= to - from
-	channels := int64(m.Format().NumChannels)
-	m.meter.Add(dst[from*channels : to*channels])
-	return n, nil
-}
-
 // outputs is all that a recording becomes: the output, and what was removed.
 type outputs struct {
 	rec     *audio.Recording
@@ -336,39 +287,43 @@ type outputs struct {
 	writer  *audio.Writer
 	removed *removal // nil: not kept
 	meter   *audio.Meter
+	span    span // of what comes out of the filter
+	gain    float64
 }
 
-// copy moves the frames, scaled, from the filter to the writers.
-func (o *outputs) copy(ctx context.Context, out audio.Source, gain float64) error {
-	channels := out.Format().NumChannels
-	buf := make([]float64, block*channels)
+func (o *outputs) channels() int { return o.rec.Format().NumChannels }
+
+// write takes in a slab, scaled. frames is room for some.
+func (o *outputs) write(slab *filter.Slab, frames []float64) error {
 	for {
-		if err := ctx.Err(); err != nil {
-			return err
-		}
-		n, err := out.ReadFrames(buf)
+		n, err := slab.ReadFrames(frames)
 		if err == io.EOF {
 			return nil
 		}
 		if err != nil {
 			return err
 		}
-		frames := buf[:n*channels]
-		if gain != 1 {
-			for i := range frames {
-				frames[i] *= gain
-			}
-		}
-		o.meter.Add(frames)
-		if err := o.writer.WriteFrames(frames); err != nil {
+		from, to := o.span.take(n)
+		if err := o.add(frames[from*o.channels() : to*o.channels()]); err != nil {
 			return err
 		}
-		if o.removed != nil {
-			if err := o.removed.add(frames, gain); err != nil {
-				return err
-			}
+	}
+}
+
+func (o *outputs) add(frames []float64) error {
+	if o.gain != 1 {
+		for i := range frames {
+			frames[i] *= o.gain
 		}
 	}
+	o.meter.Add(frames)
+	if err := o.writer.WriteFrames(frames); err != nil {
+		return err
+	}
+	if o.removed != nil {
+		return o.removed.add(frames, o.gain)
+	}
+	return nil
 }
 
 func (o *outputs) abort() error {

@@ -196,7 +196,7 @@ func (p *Plan) newEntry(j *Job) *Entry {
 	return &Entry{
 		Schema: RecordSchema, Version: p.Options.Version, Status: StatusDone,
 		Treated: time.Now().UTC().Truncate(time.Second),
-		Input:   name(absolute(j.Path)), Output: name(filepath.ToSlash(j.Rel)),
+		Input:   name(j.absolute), Output: name(filepath.ToSlash(j.Rel)),
 		Chain: j.Chain.Name, ChainSHA256: fmt.Sprintf("%x", j.Chain.SHA256), Settings: p.settings(j),
 		Shard: p.Options.Shard.String(), Batch: p.batch, BatchCount: p.count,
 		Edges: string(j.Chain.Edges), Kernel: p.Options.Kernel.String(), Warnings: []string{},

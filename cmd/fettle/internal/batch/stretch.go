@@ -110,32 +110,6 @@ func (s *section) ReadFrames(dst []float64) (int, error) {
 	return n, err
 }
 
-// window drops frames at the start of a source and ends it early.
-type window struct {
-	audio.Source
-	skip, length int64
-	given        int64
-}
-
-func (w *window) Frames() int64 { return w.length }
-
-func (w *window) ReadFrames(dst []float64) (int, error) {
-	channels := int64(w.Format().NumChannels)
-	for w.skip > 0 {
-		n, err := w.Source.ReadFrames(dst[:min(int64(len(dst)), w.skip*channels)])
-		if err != nil {
-			return 0, err
-		}
-		w.skip -= int64(n)
-	}
-	if w.given == w.length {
-		return 0, io.EOF
-	}
-	n, err := w.Source.ReadFrames(dst[:min(int64(len(dst)), (w.length-w.given)*channels)])
-	w.given += int64(n)
-	return n, err
-}
-
 // reach is how many frames before and after an output frame matter to it.
 func reach(f *filter.Filter) (before, after int64) {
 	for _, p := range f.Paths() {
