@@ -100,9 +100,19 @@ func auditAndRun(c *cli.Context, plan *batch.Plan) error {
 	done.Wait()
 	show.close()
 	if err != nil && c.Context.Err() == nil {
-		return err
+		return auditFailed(c, plan, summary, err)
 	}
 	return finishRun(c, plan, summary, failed)
+}
+
+// auditFailed tells a batch that was not begun from one that was stopped on the way.
+func auditFailed(c *cli.Context, plan *batch.Plan, summary *batch.Summary, err error) error {
+	if summary == nil || summary.Done == 0 {
+		return err
+	}
+	complain(c.App.ErrWriter, summary.Failures)
+	printSummary(c, plan, summary)
+	return &failure{exitSomeFailed, fmt.Errorf("the audit failed: %w; what was cleaned stays, and the same command goes on from there", err)}
 }
 
 // auditThenRun writes nothing if the audit finds a limit of a chain exceeded.
