@@ -35,7 +35,7 @@ func (d *deconvolver) channel(number int, y []float64, driftErr float64) *Result
 	}
 	linear := e.linear(e.mean)
 	m := newMeasurement(e, linear, peakOf(linear))
-	if m.goesOn(linear) {
+	if folded := r.warnFolded(m, linear); !folded && m.goesOn(linear) {
 		r.Warnings = append(r.Warnings, fmt.Sprintf("the response of channel %d still goes on %.1f s after its peak, when the next repeat begins; make a probe with a longer pause",
 			number, float64(e.late)/float64(e.p.Rate)))
 	}

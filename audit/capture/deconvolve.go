@@ -122,8 +122,8 @@ func (d *deconvolver) sequence(bins []complex128) []float64 {
 // stops at the edges, what is cut off the region falsifies them. Each round leaves a
 // fraction of the error of the one before: the less, the longer the region.
 //
-// raw is the region before anything is added to it. other has its slopes read over twice as much of the band: how far figures differ
-// under the two tells how much they rest on what was not measured.
+// raw is the region before anything is added to it. other is read further inside the
+// band: how far figures differ under the two tells how much they rest on what was not measured.
 func (d *deconvolver) continueFrom(mean []complex128) (more, other []complex128, raw []float64) {
 	more = make([]complex128, len(mean))
 	for range 16 {
@@ -141,7 +141,7 @@ func (d *deconvolver) continueFrom(mean []complex128) (more, other []complex128,
 		clean, peak := d.fft.Coefficients(nil, d.full(region)), peakOf(region)-d.early
 		last := more
 		more = d.continuation(clean, peak, 1)
-		other = d.continuation(clean, peak, 2)
+		other = d.continuation(clean, peak, furtherIn)
 		if apart(more, last) < 1e-8 {
 			break
 		}
@@ -161,15 +161,17 @@ func apart(a, b []complex128) float64 {
 
 // continuation is what the response is taken for outside the probe's band. Towards
 // 0 Hz and towards half the rate its magnitude goes on as the power of the distance
-// from there that it follows at the band's edge, read over so many quarters of an octave;
+// from there that it follows at the band's edge, read over a quarter of an octave;
 // its phase relative to the peak (at index 0, nearly) goes straight to the nearest that
 // a real response of that power can end with: whole multiples of 180 degrees, and 90
-// more for an odd power. bins is a clean response on the full grid.
-func (d *deconvolver) continuation(bins []complex128, peak int, quarters float64) []complex128 {
+// more for an odd power. bins is a clean response on the full grid. The edges are read
+// further times as far from 0 Hz and from half the rate as they are, if they are near it.
+func (d *deconvolver) continuation(bins []complex128, peak int, further float64) []complex128 {
+	const quarter = 1.189 // of an octave
 	top := float64(d.p.Rate) / 2
-	step := math.Exp2(quarters / 4)
-	low := d.edgeOf(bins, peak, d.p.From, d.p.From*step, 0)
-	high := d.edgeOf(bins, peak, d.p.To, d.p.To/step, top)
+	from, to := d.p.From*further, max(top-(top-d.p.To)*further, d.p.To/further)
+	low := d.edgeOf(bins, peak, from, from*quarter, 0)
+	high := d.edgeOf(bins, peak, to, to/quarter, top)
 	c := make([]complex128, len(bins))
 	turn := -2 * math.Pi / float64(d.size()) * float64(peak)
 	for k, share := range d.outside {
@@ -187,6 +189,11 @@ func (d *deconvolver) continuation(bins []complex128, peak int, quarters float64
 }
 
 const (
+	// furtherIn is a third of an octave: with high-passes from 15 Hz up and low-passes up to
+	// 0.45 of the rate, figures are off by a third or so of what they differ by then. A quarter
+	// of an octave is as much as they are off by; what turns the phase only, beyond the band,
+	// no reading can tell.
+	furtherIn  = 1.26
 	leastPower = 0.25 // less is a response that stays
 	mostPower  = 8.0
 )

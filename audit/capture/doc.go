@@ -15,9 +15,12 @@
 //     the response is continued from the band's edges instead, with the slope and
 //     towards the phase that it has there. So a device that does nothing has a response of
 //     one sample, and the probe's own edges ring nowhere. How far a figure differs when
-//     the slope is read over twice as much of the band counts in its interval.
+//     the edges are read further inside the band counts in its interval.
 //   - The products of distortion arrive before the linear response, the k-th order by
 //     L·ln k (Farina 2000); they are cut off and measured apart.
+//   - Harmonics that a digital device has folded over half the rate cannot be cut off: they
+//     cross the response. They are known by their trace over frequency and time, and the
+//     user is warned.
 //   - The response is cut, octave by octave, to twice the stretch in which it
 //     stands above the noise (after Lundeby, Vigran, Bietz and Vorländer 1995,
 //     Acustica 81, who cut decays so), and ten periods more.

@@ -22,6 +22,7 @@ import (
 type channel struct {
 	groups  []group
 	spectra *spectra  // of all groups
+	matrix  *toeplitz // of the normal equations
 	h       []float64 // time 0 is the middle
 	parts   [][]float64
 	weights []float64 // how far each bin of spectra is believed
@@ -74,19 +75,22 @@ func (c *channel) explain(w *welch, last bool) {
 			left[k] += v
 		}
 	}
-	row, right := w.equations(c.spectra.long, left, len(c.h)/2)
-	matrix := newToeplitz(row)
+	reach := len(c.h) / 2
+	if c.matrix == nil {
+		c.matrix = newToeplitz(w.row(c.spectra.long, reach))
+	}
+	right := w.right(left, reach)
 	enough := solved * math.Sqrt(dot(right, right))
-	change := matrix.solve(right, enough)
-	if c.done = last || c.small(w, matrix, change); c.done {
+	change := c.matrix.solve(right, enough)
+	if c.done = last || c.small(w, change); c.done {
 		c.parts = nil
 		for _, g := range c.groups {
 			rest := make([]complex128, len(left))
 			for k, v := range left {
 				rest[k] = v - g.left[k]
 			}
-			row, right := w.equations(c.spectra.without(g.spectra).long, rest, len(c.h)/2)
-			c.parts = append(c.parts, plus(newToeplitz(row).solve(right, enough), c.h))
+			matrix := newToeplitz(w.row(c.spectra.without(g.spectra).long, reach))
+			c.parts = append(c.parts, plus(matrix.solve(w.right(rest, reach), enough), c.h))
 		}
 	}
 	c.h = plus(c.h, change)
@@ -102,13 +106,13 @@ func plus(a, b []float64) []float64 {
 
 // small tells whether a change is a tenth of what the scatter of the groups leaves open,
 // or less, in every quarter of an octave.
-func (c *channel) small(w *welch, matrix *toeplitz, change []float64) bool {
+func (c *channel) small(w *welch, change []float64) bool {
 	bins := w.transfer(change)
 	open := make([]float64, len(bins))
 	n := float64(len(c.groups))
 	for _, g := range c.groups {
-		_, right := w.equations(g.spectra.long, g.left, len(c.h)/2)
-		for i, v := range w.transfer(matrix.nearly(right)) {
+		right := w.right(g.left, len(c.h)/2)
+		for i, v := range w.transfer(c.matrix.nearly(right)) {
 			open[i] += estimate.Power(v - bins[i]/complex(n, 0))
 		}
 	}

@@ -157,24 +157,24 @@ func (w *welch) transfer(h []float64) []complex128 {
 	return w.fft.Coefficients(nil, w.buf)
 }
 
-// equations are the normal equations for a response of reach to either side: the first
-// row of their matrix, the input's correlation at lags 0 to 2·reach-1, and their right
-// side, the cross-correlation at lags -reach to reach-1.
-func (w *welch) equations(long []float64, across []complex128, reach int) (row, right []float64) {
-	points := len(w.buf)
-	row, right = make([]float64, 2*reach), make([]float64, 2*reach)
+// row is the first row of the matrix of the normal equations for a response of reach to either
+// side: the input's correlation at lags 0 to 2·reach-1.
+func (w *welch) row(long []float64, reach int) []float64 {
 	for k, v := range long {
-		w.x[k] = complex(v/float64(points), 0)
+		w.x[k] = complex(v/float64(len(w.buf)), 0)
 	}
-	copy(row, w.fft.Sequence(w.buf, w.x))
+	return append([]float64(nil), w.fft.Sequence(w.buf, w.x)[:2*reach]...)
+}
+
+// right is the right side of the normal equations: the cross-correlation at lags -reach to
+// reach-1.
+func (w *welch) right(across []complex128, reach int) []float64 {
+	points := len(w.buf)
 	for k, v := range across {
 		w.x[k] = v / complex(float64(points), 0)
 	}
 	w.fft.Sequence(w.buf, w.x)
-	for i := range right {
-		right[i] = w.buf[(i-reach+points)%points]
-	}
-	return row, right
+	return append(append([]float64(nil), w.buf[points-reach:]...), w.buf[:reach]...)
 }
 
 // coherence is γ² over the bins from lo up to hi: the coherent output power
