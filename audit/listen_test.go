@@ -2,7 +2,6 @@ package audit
 
 import (
 	"strings"
-	"sync/atomic"
 	"testing"
 
 	"fettle/audio"
@@ -79,20 +78,5 @@ func TestListenErrors(t *testing.T) {
 	}
 	if _, err := Listen("none.wav", machine.Portable); err == nil || !strings.Contains(err.Error(), "none.wav") {
 		t.Errorf("no recording: %v", err)
-	}
-}
-
-// TestAbreast: everything is done once, and no more at once than is allowed.
-func TestAbreast(t *testing.T) {
-	var now, most, done atomic.Int32
-	Abreast(50, 2, func(i int) {
-		if n := now.Add(1); n > most.Load() {
-			most.Store(n)
-		}
-		done.Add(int32(i))
-		now.Add(-1)
-	})
-	if done.Load() != 50*49/2 || most.Load() > 2 {
-		t.Errorf("sum %d, %d at once", done.Load(), most.Load())
 	}
 }

@@ -5,6 +5,7 @@ import (
 	"math"
 	"slices"
 
+	"fettle/audit/atonce"
 	"fettle/audit/estimate"
 	"fettle/audit/figures"
 )
@@ -192,7 +193,7 @@ func (m *measurement) measureAll() {
 	carried := m.carried()
 	from, to := m.gates.extent(len(m.mean))
 	m.cut, m.cutOrigin = m.mean[from:to], m.origin-from
-	abreast(len(at), func(i int) { *at[i] = m.figuresOf(responses[i][from:to], m.origin-from, carried) })
+	atonce.Do(len(at), len(at), func(i int) { *at[i] = m.figuresOf(responses[i][from:to], m.origin-from, carried) })
 }
 
 // figuresOf measures at the level of the median band, and puts the level back.

@@ -2,8 +2,8 @@ package capture
 
 import (
 	"math"
-	"runtime"
-	"sync"
+
+	"fettle/audit/atonce"
 )
 
 // group is the mean of some repeats.
@@ -36,7 +36,7 @@ const ordersOf = 5
 func (d *deconvolver) gather(y []float64) *ensemble {
 	e := &ensemble{deconvolver: d}
 	e.groups = make([]group, min(d.repeats, mostGroups))
-	abreast(len(e.groups), func(i int) {
+	atonce.Do(len(e.groups), len(e.groups), func(i int) {
 		w := d.worker()
 		for r := range d.repeats {
 			if r*len(e.groups)/d.repeats == i {
@@ -58,7 +58,7 @@ func (d *deconvolver) gather(y []float64) *ensemble {
 		e.noise = d.tail(raw)
 	}
 	e.top = raw[peakOf(raw)]
-	abreast(len(e.groups), func(i int) { e.groups[i].settle(d.worker(), more) })
+	atonce.Do(len(e.groups), len(e.groups), func(i int) { e.groups[i].settle(d.worker(), more) })
 	e.mean = e.without(-1)
 	e.doubt = e.doubtOf(more, other)
 	return e
@@ -75,20 +75,6 @@ func (e *ensemble) doubtOf(more, other []complex128) []float64 {
 		return nil
 	}
 	return e.region(e.sequence(off))
-}
-
-// abreast does n things, as many at once as there are processors.
-func abreast(n int, do func(i int)) {
-	slots := make(chan struct{}, runtime.GOMAXPROCS(0))
-	var wait sync.WaitGroup
-	for i := range n {
-		slots <- struct{}{}
-		wait.Go(func() {
-			do(i)
-			<-slots
-		})
-	}
-	wait.Wait()
 }
 
 func (g *group) add(bins []complex128) {

@@ -6,6 +6,7 @@ import (
 	"math"
 	"slices"
 
+	"fettle/audit/atonce"
 	"fettle/audit/estimate"
 	"fettle/audit/probe"
 	"fettle/filter/response"
@@ -80,7 +81,7 @@ func compress(y []float64, p probe.Parameters) []float64 {
 	once := p.Once(1)
 	size := response.NextPow2(len(y) + len(once))
 	spectra := make([][]complex128, 2)
-	abreast(2, func(i int) { spectra[i] = response.Spectrum([][]float64{once, y}[i], size) })
+	atonce.Do(2, 2, func(i int) { spectra[i] = response.Spectrum([][]float64{once, y}[i], size) })
 	x, bins := spectra[0], spectra[1]
 	var largest float64
 	for _, v := range x {

@@ -6,6 +6,7 @@ import (
 	"slices"
 
 	"fettle/audit"
+	"fettle/audit/atonce"
 	"fettle/audit/limits"
 	"fettle/filter"
 	"fettle/filter/stream/machine"
@@ -111,7 +112,7 @@ func (c *Comparison) candidates(chain Chain, names []string) ([]*Row, error) {
 	}
 	rows := rowsOf(all)
 	failed := make([]error, len(rows))
-	audit.Abreast(len(rows), atOnce, func(i int) {
+	atonce.Do(len(rows), atOnce, func(i int) {
 		n := rows[i].Shown()
 		n.Results, failed[i] = audit.Chain(n.Filter, c.Kernel)
 	})
@@ -127,7 +128,7 @@ func candidatesOf(chain Chain, names []string, rate int) []*Candidate {
 	made := make([]*Candidate, len(names))
 	written, twin := slices.Index(names, AsWritten), slices.Index(names, string(chain.asWritten()))
 	shared := written >= 0 && twin >= 0
-	audit.Abreast(len(names), atOnce, func(i int) {
+	atonce.Do(len(names), atOnce, func(i int) {
 		if !shared || i != twin {
 			made[i] = newCandidate(chain, names[i], rate)
 		}

@@ -16,6 +16,9 @@ type Lag struct {
 	Clear float64
 }
 
+// transforms are kept: short recordings want thousands of one size.
+var transforms = Kept[*fourier.FFT]{Make: fourier.NewFFT}
+
 // LagOf finds the lag between two signals from their weighted cross-spectrum
 // conj(X)·Y at bins 0 to size/2 of a transform of even length: the lag t that
 // maximises |Σ c[k]·e^(j2πkt/size)|, real part, to well under a thousandth of a sample
@@ -23,7 +26,9 @@ type Lag struct {
 // likelihood are 1/noise (Knapp and Carter 1976, "The generalized correlation method
 // for estimation of time delay"). Lags reach from -size/2 to size/2.
 func LagOf(cross []complex128, size int) Lag {
-	x := fourier.NewFFT(size).Sequence(nil, cross)
+	fft := transforms.Take(size)
+	x := fft.Sequence(nil, cross)
+	transforms.Give(size, fft)
 	best := 0
 	for i, v := range x {
 		if math.Abs(v) > math.Abs(x[best]) {

@@ -43,9 +43,19 @@ type Alignment struct {
 	held  passage      // being filled
 	best  passage      // loudest so far in this part
 	sums  []*spectra   // of a stretch each
+	tools *tools
+}
+
+// tools are what the stretches of a size are transformed by. They are kept: a batch proves
+// thousands of recordings.
+type tools struct {
 	fft   *fourier.FFT
 	welch *welch
 }
+
+var keptTools = estimate.Kept[*tools]{Make: func(size int) *tools {
+	return &tools{fourier.NewFFT(size), newWelch(size / 2)}
+}}
 
 // passage is the same stretch of original and output.
 type passage struct {
@@ -73,7 +83,7 @@ func NewAlignment(rate int, frames int64, known []complex128) *Alignment {
 		a.known = append(a.known, known[k])
 	}
 	a.held, a.best = a.passage(), a.passage()
-	a.fft, a.welch = fourier.NewFFT(a.size), newWelch(a.size/2)
+	a.tools = keptTools.Take(a.size)
 	return a
 }
 
@@ -127,15 +137,15 @@ func (a *Alignment) endPart() {
 		return
 	}
 	a.best.energy = 0
-	bins := a.fft.Coefficients(nil, a.best.x)
+	bins := a.tools.fft.Coefficients(nil, a.best.x)
 	for k := range bins {
 		bins[k] *= a.known[k] / complex(float64(a.size), 0)
 	}
-	expected := a.fft.Sequence(nil, bins)
+	expected := a.tools.fft.Sequence(nil, bins)
 	s := newSpectra(a.size / 2)
 	// Away from the ends, where the circular convolution wraps round.
 	for at := a.size / 8; at <= 3*a.size/8; at += a.size / 8 {
-		a.welch.pair(s, expected[at:at+a.size/2], a.best.y[at:at+a.size/2])
+		a.tools.welch.pair(s, expected[at:at+a.size/2], a.best.y[at:at+a.size/2])
 	}
 	a.sums = append(a.sums, s)
 }
@@ -171,9 +181,13 @@ const (
 	sharp = 1.05
 )
 
-// Result fits the delay to all that was fed.
+// Result fits the delay to all that was fed. It ends the Alignment: nothing may be added.
 func (a *Alignment) Result() Placement {
 	a.endPart()
+	defer func() {
+		keptTools.Give(a.size, a.tools)
+		a.tools = nil
+	}()
 	p := Placement{Delay: math.NaN(), Err: math.NaN(), Stretches: len(a.sums)}
 	all := newSpectra(a.size / 2)
 	for _, s := range a.sums {
