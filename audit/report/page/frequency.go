@@ -296,23 +296,27 @@ func underLimit(subjects []Subject, i int, v limits.Verdict, points map[float64]
 	bars, allowed := segments{pen: pen{ink: p.ink, width: 2.6}}, segments{pen: boundLine}
 	var low, high []segment
 	var seen []float64
-	for _, b := range s.Figures.Bands {
+	for band, b := range s.Figures.Bands {
 		if !b.Carried {
 			continue
 		}
-		arrival := b.Arrival * toMS
+		arrival := exact(b.Arrival * toMS)
+		if s.Errors != nil {
+			arrival.half = s.Errors.Bands[band].Arrival * toMS
+		}
 		none := cell{text: "no published limit"}
-		cells := []cell{exact(b.Nominal), exact(arrival), none, none, none}
-		bars.lines = append(bars.lines, segment{b.Lower, arrival, b.Upper, arrival})
-		seen = append(seen, arrival)
+		cells := []cell{exact(b.Nominal), arrival, none, none, none}
+		bars.lines = append(bars.lines, segment{b.Lower, arrival.value, b.Upper, arrival.value})
+		seen = append(seen, arrival.value)
 		if pt, ok := points[b.Nominal]; ok {
-			at := arrival - pt.Value + pt.Limit
-			cells[1].half = pt.Half
+			at := arrival.value - pt.Value + pt.Limit
 			cells[2], cells[3], cells[4] = cell{value: pt.Value, half: pt.Half}, exact(pt.Limit), exact(at)
 			allowed.lines = append(allowed.lines, segment{b.Lower, at, b.Upper, at})
-			low = append(low, segment{b.Lower, arrival - pt.Half, b.Upper, arrival - pt.Half})
-			high = append(high, segment{b.Lower, arrival + pt.Half, b.Upper, arrival + pt.Half})
 			seen = append(seen, at)
+		}
+		if arrival.half > 0 {
+			low = append(low, segment{b.Lower, arrival.value - arrival.half, b.Upper, arrival.value - arrival.half})
+			high = append(high, segment{b.Lower, arrival.value + arrival.half, b.Upper, arrival.value + arrival.half})
 		}
 		c.rows = append(c.rows, row{b.Centre, cells})
 	}
