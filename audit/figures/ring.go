@@ -61,7 +61,7 @@ func (r *ringer) crossing(over func(float64) float64, near, far, nearOver, farOv
 	kept := 0
 	for {
 		least := max(1/r.rate, far*1e-3)
-		if far-near <= least {
+		if !(far-near > least) { // what is not a number ends it, too
 			return near
 		}
 		t := near + (far-near)*nearOver/(nearOver-farOver)

@@ -31,7 +31,8 @@ func drawable(p *plot.Plot, y float64) float64 {
 	return min(max(y, p.Y.Min-far), p.Y.Max+far)
 }
 
-// ribbon fills what lies between two lines.
+// ribbon fills what lies between two lines, where both are stated: the rasteriser never
+// comes to the end of a shape with a corner nowhere.
 type ribbon struct {
 	x, low, high []float64
 	ink          ink
@@ -43,7 +44,7 @@ func (m ribbon) Plot(c draw.Canvas, p *plot.Plot) {
 	within := func(y float64) vg.Length { return ty(min(max(y, p.Y.Min), p.Y.Max)) }
 	fill := m.ink.NRGBA
 	fill.A = m.share
-	for _, run := range stretches(m.high) {
+	for _, run := range stretches(m.widths()) {
 		var edge []vg.Point
 		for i := run[0]; i < run[1]; i++ {
 			edge = append(edge, vg.Point{X: tx(m.x[i]), Y: within(m.high[i])})
@@ -55,6 +56,17 @@ func (m ribbon) Plot(c draw.Canvas, p *plot.Plot) {
 			c.FillPolygon(fill, edge)
 		}
 	}
+}
+
+// widths are NaN where one of the lines is.
+func (m ribbon) widths() []float64 {
+	out := make([]float64, len(m.high))
+	for i, high := range m.high {
+		if out[i] = high; math.IsNaN(m.low[i]) {
+			out[i] = math.NaN()
+		}
+	}
+	return out
 }
 
 // stretches are the index ranges in which values are stated.

@@ -423,3 +423,31 @@ func TestDrawingsAreFinite(t *testing.T) {
 		}
 	}
 }
+
+// TestRibbonsHaveGaps: where one edge is not stated there is nothing to fill; a rasteriser
+// that is given a corner nowhere does not come back.
+func TestRibbonsHaveGaps(t *testing.T) {
+	nan := math.NaN()
+	whole := ribbon{x: []float64{1, 2, 3, 4, 5, 6}, low: []float64{0, 0, 0, 0, 0, 0}, high: []float64{1, 1, 1, 1, 1, 1}, ink: shade, share: 255}
+	gap := whole
+	gap.low, gap.high = []float64{0, 0, nan, 0, 0, math.Inf(-1)}, []float64{1, nan, 1, 1, math.Inf(1), 1}
+	var sizes []int
+	for _, m := range []ribbon{whole, gap} {
+		c := &chart{name: "x", title: "x", x: axis{min: 1, max: 6}, y: axis{min: 0, max: 1}, marks: []plot.Plotter{m}}
+		svg, _, _, err := c.svg("x", true)
+		if err != nil || strings.Contains(svg, "NaN") || strings.Contains(svg, "Inf") {
+			t.Errorf("%v: %s", err, svg)
+		}
+		png, err := c.png()
+		if err != nil {
+			t.Error(err)
+		}
+		sizes = append(sizes, len(png))
+	}
+	if got := stretches(gap.widths()); len(got) != 2 || got[0] != [2]int{0, 1} || got[1] != [2]int{3, 6} {
+		t.Errorf("stretches %v", got)
+	}
+	if sizes[0] == sizes[1] {
+		t.Error("a gap makes no difference to the picture")
+	}
+}
