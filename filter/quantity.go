@@ -58,6 +58,8 @@ func (d dimension) parse(text string) (float64, error) {
 	switch {
 	case ok:
 		return number * factor, nil
+	case strings.Contains(text, ","):
+		return 0, fmt.Errorf("%s has a comma; write a %s with a point, such as %s", quote(text), d.name, d.example)
 	case unit == "":
 		return 0, fmt.Errorf("%s has no unit; write a %s such as %s", quote(text), d.name, d.example)
 	default:

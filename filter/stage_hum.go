@@ -60,6 +60,9 @@ func (h hum) plan(rate float64) (plan, error) {
 	p.cusps = h.depth.of(sections)
 	p.half = func() ([]response.Section, error) { return h.sections(rate, n, design.HalfWidth) }
 	p.notes = append(p.notes, h.ringing(n))
+	if widest := h.widthOf(n); n > 1 && widest > h.mains/2 {
+		p.warnings = append(p.warnings, fmt.Sprintf("hum: notches %.4g Hz wide, %g Hz apart, take out most of what lies between them, too; make them narrower", widest, h.mains))
+	}
 	if n < h.harmonics {
 		p.warnings = append(p.warnings, fmt.Sprintf("hum: harmonics %d to %d, from %g Hz, are not below half the rate of %g Hz and are left out",
 			n+1, h.harmonics, h.mains*float64(n+1), rate))

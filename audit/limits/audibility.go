@@ -17,6 +17,7 @@ func audible(name, source string, late, early []row, help string) Limit {
 		Name: name, Source: source, Status: Published,
 		Measure: "arrival less the median of the carried bands one to two octaves away",
 		Range:   a.span(),
+		Values:  a.values(),
 		Between: "linear in ms over log frequency, which is not the source's",
 		Help:    help + " " + stricter,
 		unit:    "ms", judge: a.judge,
@@ -33,6 +34,13 @@ func (a audibility) span() string {
 		return "late and early bands at " + a.late.span()
 	}
 	return "late bands at " + a.late.span() + ", early ones at " + a.early.span()
+}
+
+func (a audibility) values() string {
+	if a.early.empty() {
+		return "late: " + a.late.values()
+	}
+	return "late: " + a.late.values() + ". Early: " + a.early.values()
 }
 
 // onTime in seconds is too little to call a band late or early: the audit's own

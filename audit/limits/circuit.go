@@ -7,7 +7,7 @@ func circuit(name, source string, status Status, t table, between, help string) 
 	return Limit{
 		Name: name, Source: source, Status: status,
 		Measure: "arrival less the earliest of the carried bands in the table's range",
-		Range:   t.span(), Between: between, Help: help,
+		Range:   t.span(), Values: t.values(), Between: between, Help: help,
 		unit: "ms", judge: t.judgeExcess,
 	}
 }

@@ -27,6 +27,7 @@ type Limit struct {
 	Status  Status
 	Measure string // what is compared, in words
 	Range   string // where a set says something; "" for what has no frequencies
+	Values  string // the table of a set in words; "" for what has no frequencies
 	Between string // how a set reads between the points of its table
 	Help    string // what a set was derived for
 

@@ -93,13 +93,17 @@ func (v Verdict) notes() []string {
 		notes = append(notes, "no published limit"+onBands(v.Uncovered))
 	}
 	if len(v.Early) > 0 {
-		notes = append(notes, "of these, bands that are early where the limit is for late ones"+onBands(v.Early))
+		notes = append(notes, "among these, bands that arrive early where only late ones have a limit"+onBands(v.Early))
 	}
 	if v.Status == FromMemory {
 		notes = append(notes, "the figures of "+v.Source+" are from memory: advice, not a verdict")
 	}
 	return notes
 }
+
+// Silent says at which carried bands a set has no limit, such as " at 25 to 800 Hz"; "" if
+// it has one at all of them.
+func (v Verdict) Silent() string { return onBands(v.Uncovered) }
 
 // onBands lists bands by their nominal frequencies, neighbours as one stretch.
 func onBands(hz []float64) string {

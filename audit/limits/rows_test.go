@@ -70,7 +70,7 @@ func TestNoteOnEarlyBands(t *testing.T) {
 	r := Rows([]Verdict{verdict(t, oneOff(630, -2), "audibility")})[0]
 	want := []string{
 		"no published limit at 20 to 400, 630, 16000 Hz",
-		"of these, bands that are early where the limit is for late ones at 630 Hz",
+		"among these, bands that arrive early where only late ones have a limit at 630 Hz",
 	}
 	if diff := cmp.Diff(want, r.Notes); r.Verdict != "within" || diff != "" {
 		t.Errorf("%s (-want +got)\n%s", r.Verdict, diff)

@@ -3,6 +3,7 @@ package limits
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"fettle/audit/figures"
 )
@@ -97,4 +98,22 @@ func (t table) span() string {
 		return fmt.Sprintf("%g Hz", t.from())
 	}
 	return fmt.Sprintf("%g to %g Hz", t.from(), t.to())
+}
+
+// values lists the limits, neighbours of one value together.
+func (t table) values() string {
+	var parts []string
+	for i := 0; i < len(t.rows); {
+		j, places := i, []string{}
+		for ; j < len(t.rows) && t.rows[j].most == t.rows[i].most; j++ {
+			place := fmt.Sprintf("%g", t.rows[j].from)
+			if t.rows[j].to != t.rows[j].from {
+				place += fmt.Sprintf(" to %g", t.rows[j].to)
+			}
+			places = append(places, place)
+		}
+		parts = append(parts, fmt.Sprintf("%g ms at %s Hz", toMS*t.rows[i].most, strings.Join(places, ", ")))
+		i = j
+	}
+	return strings.Join(parts, "; ")
 }

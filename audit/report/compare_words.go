@@ -38,7 +38,7 @@ func CompareNotes(c *choose.Comparison) []string {
 	var out []string
 	for _, row := range c.Rows {
 		if names := row.Names(); len(names) > 1 {
-			out = append(out, fmt.Sprintf("%s%s agree within tolerance, %s dB apart at most: one row, with the figures of %s, which costs least.",
+			out = append(out, fmt.Sprintf("%s%s agree within their tolerances, %s dB apart at most: one row, with the figures of %s, which costs least.",
 				whose(c, row.Shown()), listed(names), decimal(row.Apart, 3), names[0]))
 		}
 		for _, n := range row.Candidates {

@@ -14,7 +14,12 @@ func limitsTable(b *strings.Builder, verdicts []limits.Verdict) {
 	}
 	fmt.Fprintf(b, "\n  %-22s %-18s %-30s %-11s %s\n", "limit", "verdict", "worst", "allowed", "margin")
 	for _, row := range limits.Rows(verdicts) {
-		fmt.Fprintf(b, "  %-22s %-18s %-30s %-11s %s\n", clip(row.Limit, 22), row.Verdict, clip(row.Worst, 30), clip(row.Allowed, 11), row.Margin)
+		name := row.Limit
+		if len(name) > 22 { // a line of its own, for what is cut off tells limits apart
+			fmt.Fprintf(b, "  %s\n", clip(name, Width-2))
+			name = ""
+		}
+		fmt.Fprintf(b, "  %-22s %-18s %-30s %-11s %s\n", name, row.Verdict, clip(row.Worst, 30), clip(row.Allowed, 11), row.Margin)
 		for _, note := range row.Notes {
 			for _, line := range wrapped(note, Width-6) {
 				fmt.Fprintf(b, "      %s\n", line)

@@ -160,7 +160,7 @@ func plusMinus(value, half float64, digits int) string {
 		digits = max(0, min(digits, int(math.Ceil(-math.Log10(half)))+1))
 	}
 	unit := math.Pow(10, float64(digits))
-	return decimal(value, digits) + " ±" + decimal(math.Ceil(half*unit-1e-9)/unit, digits)
+	return decimal(value, digits) + " ±" + decimal(math.Ceil(half*unit*(1-1e-9))/unit, digits)
 }
 
 func plusMinusMS(value, half float64) string {

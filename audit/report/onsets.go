@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"io"
+	"math"
 	"strings"
 
 	"fettle/audit/figures"
@@ -25,7 +26,7 @@ func onsetsOf(b *strings.Builder, c *onsets.Channel) {
 		c.Channel, c.Onsets, c.Unclear, c.Weak, c.Lost, c.Blurred)
 	fmt.Fprintf(b, "  %-34s %8s %12s %12s %12s   %s\n", "", "stated", "median", "95 %", "worst", "at")
 	times := func(name string, s onsets.Summary) {
-		fmt.Fprintf(b, "  %-34s %8d %12s %12s %12s   %s\n", name, s.Count, milliseconds(s.Median), milliseconds(s.Percentile95), milliseconds(s.Worst), at(s))
+		fmt.Fprintf(b, "  %-34s %8d %12s %12s %12s   %s\n", name, s.Count, orDash(s.Median, milliseconds), orDash(s.Percentile95, milliseconds), orDash(s.Worst, milliseconds), at(s))
 	}
 	times("shift", c.Shift)
 	times("rise, 10 to 90 %, in the original", c.Rise)
@@ -35,7 +36,21 @@ func onsetsOf(b *strings.Builder, c *onsets.Channel) {
 		fmt.Fprintf(b, "  %-34s %8d %12s %12s %12s   %s\n", fmt.Sprintf("energy more than %g ms early", t*toMS), s.Count,
 			early(s.Median), early(s.Percentile95), early(s.Worst), at(s))
 	}
-	fmt.Fprintf(b, "  %-34s %8d %12s\n", "  which shows above", c.Floor.Count, early(c.Floor.Median))
+	fmt.Fprintf(b, "  %-34s %8d %12s\n", "  it would be seen above", c.Floor.Count, early(c.Floor.Median))
+	if c.Onsets < fewOnsets {
+		fmt.Fprintf(b, "  A median wants 5 onsets, a 95th percentile 20: use a longer recording.\n")
+	}
+}
+
+// fewOnsets is how many onsets all figures want.
+const fewOnsets = 20
+
+// orDash is a dash for what is not.
+func orDash(x float64, text func(float64) string) string {
+	if math.IsNaN(x) {
+		return "-"
+	}
+	return text(x)
 }
 
 // early is a level re the onset's own energy.

@@ -37,7 +37,7 @@ func ThroughFile(w io.Writer, r *audit.Result) error {
 	row("latency left, samples", decimal(r.Latency.Residual, 2), func(t audit.ThroughFile) string {
 		return plusMinus(t.Captured.Latency, t.Captured.LatencyErr, 4)
 	})
-	figure("delay spread", milliseconds(f.DelaySpread), func(f, e *figures.Figures) string { return plusMinusMS(f.DelaySpread, e.DelaySpread) })
+	row("delay spread", milliseconds(f.DelaySpread), func(t audit.ThroughFile) string { return shippedSpread(r, t) })
 	figure("smear, pink", milliseconds(f.Pink.Total), func(f, e *figures.Figures) string { return plusMinusMS(f.Pink.Total, e.Pink.Total) })
 	figure("smear, white", milliseconds(f.White.Total), func(f, e *figures.Figures) string { return plusMinusMS(f.White.Total, e.White.Total) })
 	figure("pre-ring to -60 dB, white", milliseconds(f.PreRing.White.Length), func(f, e *figures.Figures) string {
@@ -52,6 +52,20 @@ func ThroughFile(w io.Writer, r *audit.Result) error {
 	row("bands within their interval", "", func(t audit.ThroughFile) string { return fmt.Sprintf("%d of %d", t.Apart.Within, t.Apart.Bands) })
 	_, err := io.WriteString(w, b.String())
 	return err
+}
+
+// shippedSpread is not stated unless all bands are that the chain carries.
+func shippedSpread(r *audit.Result, t audit.ThroughFile) string {
+	carried := 0
+	for _, b := range r.Figures.Bands {
+		if b.Carried {
+			carried++
+		}
+	}
+	if t.Captured.Absent != "" || t.Apart.Bands < carried {
+		return "not stated"
+	}
+	return plusMinusMS(t.Captured.Figures.DelaySpread, t.Captured.Errors.DelaySpread)
 }
 
 type throughFile struct {

@@ -111,9 +111,9 @@ func smearOf(s figures.Smear) string {
 
 // rings tables early and late energy.
 func rings(b *strings.Builder, f *figures.Figures) {
-	fmt.Fprintf(b, "\n  %-18s %10s %10s   %s\n", "", "level", "to -60 dB", "energy beyond 2 / 5 / 20 ms")
+	fmt.Fprintf(b, "\n  %-18s %10s %12s   %s\n", "", "level", "to -60 dB", "energy beyond 2 / 5 / 20 ms")
 	line := func(name string, c figures.RingColumn) {
-		fmt.Fprintf(b, "  %-18s %10s %10s   %s\n", name, ringLevel(c.Level), milliseconds(c.Length),
+		fmt.Fprintf(b, "  %-18s %10s %12s   %s\n", name, ringLevel(c.Level), milliseconds(c.Length),
 			strings.Join([]string{ringLevel(c.Beyond[0]), ringLevel(c.Beyond[1]), ringLevel(c.Beyond[2])}, " / "))
 	}
 	line("pre-ring, white", f.PreRing.White)

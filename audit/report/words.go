@@ -96,5 +96,9 @@ func nearest(verdicts []limits.Verdict) string {
 		return ""
 	}
 	row := limits.Rows([]limits.Verdict{v})[0]
-	return fmt.Sprintf("The nearest limit is %s: %s, with %s against %s.", row.Limit, row.Verdict, row.Worst, row.Allowed)
+	s := fmt.Sprintf("The nearest limit is %s: %s, with %s against %s", row.Limit, row.Verdict, row.Worst, row.Allowed)
+	if silent := v.Silent(); silent != "" {
+		s += "; it has none for the carried bands" + silent
+	}
+	return s + "."
 }

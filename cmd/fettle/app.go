@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"runtime/debug"
+	"slices"
 	"strings"
 
 	"fettle/cmd/fettle/internal/batch"
@@ -115,8 +116,19 @@ func quiet(c *cli.Command) {
 }
 
 func usageError(c *cli.Context, err error, _ bool) error {
-	command := strings.TrimSpace("fettle " + strings.TrimPrefix(c.Command.FullName(), "fettle"))
-	return fmt.Errorf("%w; see %s --help", err, command)
+	return fmt.Errorf("%w; see %s --help", err, strings.TrimSpace("fettle "+commandName(c)))
+}
+
+// commandName is what was called, such as "audit chain".
+func commandName(c *cli.Context) string {
+	var names []string
+	for _, at := range c.Lineage() {
+		if at.Command != nil && at.Command.Name != "" && at.Command.Name != c.App.Name && !slices.Contains(names, at.Command.Name) {
+			names = append(names, at.Command.Name)
+		}
+	}
+	slices.Reverse(names)
+	return strings.Join(names, " ")
 }
 
 // version is the module's version where the build knows one.

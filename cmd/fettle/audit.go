@@ -15,6 +15,7 @@ import (
 	"fettle/audit/limits"
 	"fettle/audit/report"
 	"fettle/audit/report/page"
+	"fettle/cmd/fettle/internal/batch"
 	"fettle/filter"
 	"fettle/filter/stream/machine"
 
@@ -51,7 +52,7 @@ func auditChainCommand() *cli.Command {
 			&cli.StringFlag{Name: "rates", Usage: "compare sample rates `LIST`, such as 44.1k,48k,96k"},
 			phaseFlag(),
 			limitFlag(),
-			&cli.StringFlag{Name: "recording", Usage: "what becomes of the onsets in `FILE`, too"},
+			&cli.StringFlag{Name: "recording", Usage: "what becomes of the onsets in `FILE`, too, at its rate"},
 			&cli.StringFlag{Name: "through-file", Usage: "measure through files of format `F`, such as pcm24, too"},
 			flag("stages", "what each stage costs by itself, too"),
 			flag("methods", "print a paragraph for a treatment report instead"),
@@ -75,7 +76,7 @@ func rateFlag() cli.Flag {
 }
 
 func phaseFlag() cli.Flag {
-	return &cli.StringFlag{Name: "phase", Usage: "`PHASE`: linear, minimum, iir, zero or given, over the file"}
+	return &cli.StringFlag{Name: "phase", Usage: "`PHASE`: linear, minimum, iir, zero or given, not the file's"}
 }
 
 func jsonFlag() cli.Flag {
@@ -87,10 +88,8 @@ func auditChain(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	for _, flag := range reportFlags {
-		if err := tryWriting(c.String(flag)); err != nil {
-			return err
-		}
+	if err := tryReports(c); err != nil {
+		return err
 	}
 	results, err := unlessInterrupted(c.Context, func() ([]*audit.Result, error) { return a.run(c.Context) })
 	if err != nil {
@@ -99,6 +98,7 @@ func auditChain(c *cli.Context) error {
 	if err := a.print(c, results); err != nil {
 		return err
 	}
+	complain(c.App.ErrWriter, a.refused)
 	if err := writeReports(c, append(results, a.stages...), a.heard); err != nil {
 		return err
 	}
@@ -123,6 +123,7 @@ type chainAudit struct {
 	heard  report.Heard  // empty: no recording is named
 	// heardBy is the chain at the recording's rate.
 	heardBy *filter.Filter
+	refused batch.Problems  // rates that the chain cannot serve
 	stages  []*audit.Result // of the first rate
 }
 
@@ -164,7 +165,8 @@ func (a *chainAudit) run(ctx context.Context) ([]*audit.Result, error) {
 	for _, rate := range a.rates {
 		f, err := a.chain.Realise(rate, a.phase)
 		if err != nil {
-			return nil, err
+			a.refused = append(a.refused, err)
+			continue
 		}
 		results, err := audit.Chain(f, a.kernel)
 		if err != nil {
@@ -180,6 +182,9 @@ func (a *chainAudit) run(ctx context.Context) ([]*audit.Result, error) {
 		}
 		all = append(all, results...)
 	}
+	if all == nil {
+		return nil, a.refused
+	}
 	var err error
 	if a.heard.Recording != "" {
 		if err = a.listen(); err != nil {
@@ -187,7 +192,7 @@ func (a *chainAudit) run(ctx context.Context) ([]*audit.Result, error) {
 		}
 	}
 	if a.apart {
-		a.stages, err = audit.Stages(a.chain, a.rates[0], a.phase, a.kernel)
+		a.stages, err = audit.Stages(a.chain, all[0].Rate, a.phase, a.kernel)
 	}
 	return all, err
 }
@@ -278,7 +283,7 @@ func writeReports(c *cli.Context, results []*audit.Result, heard report.Heard) e
 // oneChain reads the one chain that is named, and the phase.
 func oneChain(c *cli.Context) (*filter.Chain, filter.Realisation, error) {
 	if c.NArg() != 1 {
-		return nil, "", fmt.Errorf("%s: takes one chain file, not %d; see fettle %s --help", c.Command.FullName(), c.NArg(), c.Command.FullName())
+		return nil, "", fmt.Errorf("%s: takes one chain file, not %d; see fettle %s --help", commandName(c), c.NArg(), commandName(c))
 	}
 	return loadChain(c.Args().First(), c.String("phase"))
 }

@@ -65,23 +65,36 @@ type measuredForms struct {
 func beginMeasured(c *cli.Context, first, second string) (report.Names, []limits.Limit, error) {
 	n := report.Names{}
 	if c.NArg() != 2 {
-		return n, nil, fmt.Errorf("%s: takes two files, %s and %s, not %d; see fettle %[1]s --help", c.Command.FullName(), first, second, c.NArg())
+		return n, nil, fmt.Errorf("%s: takes two files, %s and %s, not %d; see fettle %[1]s --help", commandName(c), first, second, c.NArg())
 	}
 	n.From, n.To = c.Args().Get(0), c.Args().Get(1)
 	l, err := limits.Parse(*c.Generic("limit").(*texts)...)
 	if err != nil {
 		return n, nil, fmt.Errorf("--limit: %w", err)
 	}
-	for _, flag := range reportFlags {
-		if err := tryWriting(c.String(flag)); err != nil {
-			return n, nil, err
-		}
-	}
-	return n, l, nil
+	return n, l, tryReports(c)
 }
 
 // reportFlags name the files that an audit writes.
 var reportFlags = []string{"json", "csv", "curve-csv", "html"}
+
+// tryReports proves before any work is done that the reports can be written.
+func tryReports(c *cli.Context) error {
+	shown := ""
+	for _, flag := range reportFlags {
+		name := c.String(flag)
+		if name == "-" && shown != "" {
+			return fmt.Errorf("--%s: standard output is for --%s already; name a file for one of them", flag, shown)
+		}
+		if name == "-" {
+			shown = flag
+		}
+		if err := tryWriting(name); err != nil {
+			return err
+		}
+	}
+	return nil
+}
 
 // toStdout tells whether standard output is for another form of the figures than text.
 func toStdout(c *cli.Context) bool {

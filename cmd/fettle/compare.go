@@ -26,7 +26,7 @@ func compareCommand() *cli.Command {
 		Description: compareHelp() +
 			"EXIT STATUS\n   0 done; 1 could not start (usage, chain); 3 no realisation keeps the\n   limits; 130 interrupted",
 		Flags: []cli.Flag{
-			&cli.StringFlag{Name: "as", Value: strings.Join(choose.Usual, ","), Usage: "compare the realisations `LIST`; also given"},
+			&cli.StringFlag{Name: "as", Value: strings.Join(choose.Usual, ","), Usage: "compare the realisations `LIST` (given may be named, too)"},
 			&cli.StringFlag{Name: "for", Usage: "what the output is for: `PURPOSE`", DefaultText: "each in turn"},
 			limitFlag(),
 			comparedRateFlag(),
@@ -36,7 +36,7 @@ func compareCommand() *cli.Command {
 			htmlFlag(),
 			plotsFlag(),
 			&cli.StringFlag{Name: "csv", Usage: "write the rows to `FILE`; -: in place of the table"},
-			&cli.StringFlag{Name: "save", Usage: "write the chain as advised to the new file `FILE`"},
+			&cli.StringFlag{Name: "save", Usage: "write the chain as advised by --for or --limit to the new `FILE`"},
 		},
 		Action: compare,
 	}
@@ -182,10 +182,8 @@ func namesOf(list string) ([]string, error) {
 // tryComparisonFiles proves before any work is done that what is asked for can be
 // written.
 func tryComparisonFiles(c *cli.Context, r choose.Request) error {
-	for _, name := range []string{c.String("json"), c.String("csv"), c.String("html")} {
-		if err := tryWriting(name); err != nil {
-			return err
-		}
+	if err := tryReports(c); err != nil {
+		return err
 	}
 	name := c.String("save")
 	if name == "" {

@@ -58,7 +58,7 @@ func TestCompareTable(t *testing.T) {
 			t.Errorf("a line of %d columns: %s", n, line)
 		}
 	}
-	for _, want := range []string{"written, iir, minimum", "agree within tolerance", "mixed has highpass", "mix        linear"} {
+	for _, want := range []string{"written, iir, minimum", "agree within their tolerances", "mixed has highpass", "mix        linear"} {
 		if !strings.Contains(got.stdout, want) {
 			t.Errorf("no %q in %s", want, got.stdout)
 		}

@@ -18,7 +18,8 @@ func exportCommand() *cli.Command {
 		UsageText: "fettle export [options] CHAIN",
 		Description: "taps: one tap a line; biquads: rows of b0 b1 b2 a0 a1 a2; json: all of it;\n" +
 			"wav: the kernel as 64-bit float. The stages fir and biquads read these back.\n" +
-			"Coefficients are causal: latency is in them.\n\n" + exitHelp,
+			"Coefficients are causal: latency is in them.\n\n" +
+			"EXIT STATUS\n   0 done; 1 not done (usage, chain, file); 130 interrupted",
 		Flags: []cli.Flag{
 			rateFlag(),
 			phaseFlag(),

@@ -21,8 +21,10 @@ func auditLimitsCommand() *cli.Command {
 			}
 			for _, l := range limits.Sets() {
 				fmt.Fprintf(c.App.Writer, "%s\n", l.Name)
-				for _, text := range []string{l.Source + " (" + string(l.Status) + ")", l.Measure, l.Range, l.Help} {
-					printWrapped(c, text)
+				for _, text := range []string{l.Source + " (" + string(l.Status) + ")", l.Measure, l.Range, l.Values, l.Help} {
+					if text != "" {
+						printWrapped(c, text)
+					}
 				}
 				fmt.Fprintln(c.App.Writer)
 			}

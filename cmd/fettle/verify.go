@@ -85,7 +85,7 @@ func gather(c *cli.Context) error {
 
 func oneFolder(c *cli.Context) (string, error) {
 	if c.NArg() != 1 {
-		return "", errors.New(c.Command.FullName() + ": takes one folder; see fettle " + c.Command.FullName() + " --help")
+		return "", errors.New(commandName(c) + ": takes one folder; see fettle " + commandName(c) + " --help")
 	}
 	return c.Args().First(), nil
 }
