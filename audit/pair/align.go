@@ -160,8 +160,10 @@ type Placement struct {
 	// Coherence is γ² in the octave where it is greatest: the share of the output
 	// that is the original filtered by the known response.
 	Coherence float64
-	// Stretches is how many were looked at.
+	// Stretches is how many were looked at, and Level the output's in them, RMS, dB re full
+	// scale.
 	Stretches int
+	Level     float64
 	// Unrelated tells that the output is loud enough to tell, and is not what it ought
 	// to be: wrong, or farther off than a quarter of a stretch.
 	Unrelated bool
@@ -177,6 +179,9 @@ const (
 	// gated is the energy, as a share of the expected, under which an output counts as
 	// silent.
 	gated = 1e-6
+	// ringsOn is how many times the expected energy an output may hold: more comes from
+	// before the stretch, in which then was little.
+	ringsOn = 1000.0
 	// sharp is how far the correlation's peak must stand above the next.
 	sharp = 1.05
 )
@@ -193,6 +198,7 @@ func (a *Alignment) Result() Placement {
 	for _, s := range a.sums {
 		all.add(s, 1)
 	}
+	p.Level = a.level(all)
 	if p.NotStated = a.nothing(all); p.NotStated != "" {
 		return p
 	}
@@ -219,6 +225,21 @@ func (a *Alignment) Result() Placement {
 	return p
 }
 
+// level is the output's RMS in dB over all that was looked at.
+func (a *Alignment) level(all *spectra) float64 {
+	var power float64
+	for k, v := range all.yy {
+		if power += v; k > 0 {
+			power += v // of the negative frequency
+		}
+	}
+	var window float64
+	for _, w := range a.tools.welch.window {
+		window += w * w
+	}
+	return 10 * math.Log10(power/float64(2*a.tools.welch.size)/window/float64(all.segments))
+}
+
 // nothing says why there is nothing to measure, or "".
 func (a *Alignment) nothing(all *spectra) string {
 	if len(a.sums) < leastStretchesOf {
@@ -232,6 +253,8 @@ func (a *Alignment) nothing(all *spectra) string {
 	switch {
 	case expected == 0:
 		return "the chain leaves nothing of this recording"
+	case output > ringsOn*expected:
+		return "what rings on from before the stretches hides what they tell"
 	case output <= gated*expected:
 		return "the output is silent where it ought not to be"
 	}

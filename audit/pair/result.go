@@ -3,6 +3,7 @@ package pair
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"fettle/audit/estimate"
 	"fettle/audit/figures"
@@ -181,11 +182,11 @@ func (r *Result) measure(c *comparison, v *channel) {
 	for i, h := range v.parts {
 		parts = append(parts, v.view(h, s.without(v.groups[i].spectra).gain(), float64(c.rate)))
 	}
-	r.fill(s, whole, parts, c)
+	r.fill(v, s, whole, parts, c)
 }
 
 // fill puts the figures of the whole and their intervals into the result.
-func (r *Result) fill(s *spectra, whole *view, parts []*view, c *comparison) {
+func (r *Result) fill(v *channel, s *spectra, whole *view, parts []*view, c *comparison) {
 	delays, gains := make([]float64, len(parts)), make([]float64, len(parts))
 	for i, p := range parts {
 		delays[i], gains[i] = p.delay, p.gain
@@ -196,13 +197,16 @@ func (r *Result) fill(s *spectra, whole *view, parts []*view, c *comparison) {
 		r.NotStated["polarity"] = "the phase at the bulk latency is neither near 0 nor near 180 degrees, or has no common value"
 	}
 	r.Gain, r.GainErr, _, _ = estimate.Decibels(estimate.Jackknife(whole.gain, gains))
-	r.fillBands(s, whole, parts, c)
+	r.fillBands(v, s, whole, parts, c)
 	r.fillCurve(s, whole, c)
 }
 
-func (r *Result) fillBands(s *spectra, whole *view, parts []*view, c *comparison) {
+func (r *Result) fillBands(v *channel, s *spectra, whole *view, parts []*view, c *comparison) {
 	hz := float64(c.rate) / float64(2*s.size())
 	power := make([]float64, len(whole.bands))
+	late := v.late(float64(c.rate))
+	cut := slices.Max(append(late, 0)) > wellAfter
+	inner := v.view(middle(v.h), s.gain(), float64(c.rate))
 	for i, b := range figures.Bands(float64(c.rate)) {
 		lo, hi := int(math.Ceil(b.Lower/hz)), int(b.Upper/hz)+1
 		band := Band{Band: b, Coherence: s.coherence(lo, hi)}
@@ -216,6 +220,15 @@ func (r *Result) fillBands(s *spectra, whole *view, parts []*view, c *comparison
 		default:
 			band.fill(i, whole, parts)
 			power[i] = whole.bands[i].Power
+			if why := band.whyUnended(late[i], v.reach(float64(c.rate))); why != "" {
+				r.NotStated[bandKey(b)] = why
+			}
+			if cut {
+				band.doubtArrival(inner.arrival(i))
+			}
+			if band.doubtSpread(math.Sqrt(max(inner.bands[i].Spread2, 0))); math.IsNaN(band.Spread) && !math.IsNaN(band.Arrival) {
+				r.NotStated[bandKey(b)+".spread_ms"] = "noise in what was found of the response decides it"
+			}
 		}
 		r.Bands = append(r.Bands, band)
 	}
@@ -261,9 +274,17 @@ func (r *Result) carry(power []float64, whole *view, parts []*view) {
 		r.NotStated["delay_spread"] = "no band is carried"
 		return
 	}
+	for _, b := range r.Bands {
+		if b.Carried && math.IsNaN(b.Arrival) {
+			r.DelaySpread, r.DelaySpreadErr = math.NaN(), math.NaN()
+			r.NotStated["delay_spread"] = "the arrival of a carried band is not stated"
+			return
+		}
+	}
 	var without []float64
 	for _, p := range parts {
 		without = append(without, spread(p))
 	}
 	r.DelaySpread, r.DelaySpreadErr = estimate.Jackknife(spread(whole), without)
+	r.DelaySpread = max(r.DelaySpread, 0)
 }

@@ -56,7 +56,7 @@ func (r *rendering) proveAlignment(out *audio.Recording) error {
 // judge makes of an output that is certainly off an error.
 func (r *rendering) judge(p pair.Placement, channel int) error {
 	switch {
-	case p.Unrelated && r.loud():
+	case p.Unrelated && p.Level > r.least():
 		return fmt.Errorf("channel %d is not what the chain makes of the original: %s; please report this", channel+1, p.NotStated)
 	case p.NotStated == "" && p.Inverted:
 		return fmt.Errorf("channel %d is inverted against what the chain makes of the original; please report this", channel+1)
@@ -66,9 +66,12 @@ func (r *rendering) judge(p pair.Placement, channel int) error {
 	return nil
 }
 
-// loud tells whether an output stands 40 dB above the rounding of 16 bits, so that
-// what it consists of is signal.
-func (r *rendering) loud() bool { return r.entry.PeakOut != nil && *r.entry.PeakOut > -50 }
+// least is the level in dB above which an output consists of signal, not of its own
+// rounding: 36 dB above a step.
+func (r *rendering) least() float64 {
+	bits := r.plan.encoding(r.rec).Bits
+	return 36 - 20*math.Log10(2)*float64(min(bits, 24))
+}
 
 // enter keeps the channel that is worst off, one that states something before one
 // that does not.

@@ -75,12 +75,12 @@ func verifyEntry(folder string, e *Entry, originals bool) error {
 		return fmt.Errorf("%s: is not treated: %s", filepath.Join(folder, string(e.Output)), e.Error)
 	}
 	output := filepath.Join(folder, filepath.FromSlash(string(e.Output)))
-	err := sameAs(output, e.SHA256Out, "render it again")
+	err := sameAs(output, e.SHA256Out, "render it again, with --rehash")
 	if err == nil {
 		err = hasFrames(output, e.Frames)
 	}
 	if e.Removed != "" {
-		err = errors.Join(err, sameAs(string(e.Removed), e.SHA256Removed, "render it again"))
+		err = errors.Join(err, sameAs(string(e.Removed), e.SHA256Removed, "render it again, with --rehash"))
 	}
 	if originals {
 		err = errors.Join(err, sameAs(string(e.Input), e.SHA256In, "find the original that was treated"))
@@ -107,7 +107,7 @@ func hasFrames(path string, want int64) error {
 	}
 	defer r.Close()
 	if r.Frames() != want {
-		return fmt.Errorf("%s: has %d frames, the record says %d; render it again", path, r.Frames(), want)
+		return fmt.Errorf("%s: has %d frames, the record says %d; render it again, with --rehash", path, r.Frames(), want)
 	}
 	return nil
 }
