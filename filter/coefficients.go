@@ -108,6 +108,44 @@ func fromRecording[T any](path string, read func(*audio.Recording) (T, error)) (
 	return out, digest, err
 }
 
+// madeAt is the sample rate in Hz that coefficients were made for; 0: they say nothing.
+type madeAt int
+
+// check refuses another rate.
+func (m madeAt) check(rate float64) error {
+	if m != 0 && rate != ampleRate && rate != float64(m) {
+		return fmt.Errorf("its file was made for %d Hz, and at %g Hz is another filter; give one for that rate, or add when: rate == %d Hz", m, rate, m)
+	}
+	return nil
+}
+
+// rateRemark begins the remark by which a text of coefficients tells its rate.
+const rateRemark = "# rate_hz "
+
+// noting reads coefficients, and notes the rate that their file tells: a text in a remark,
+// JSON under the key rate_hz, both as Export writes them.
+func noting[T any](made *madeAt, read func([]byte) (T, error)) func([]byte) (T, error) {
+	return func(raw []byte) (T, error) {
+		var object struct {
+			Rate int `json:"rate_hz"`
+		}
+		if json.Unmarshal(raw, &object) == nil {
+			*made = madeAt(object.Rate)
+		}
+		for line := range strings.Lines(string(raw)) {
+			if !strings.HasPrefix(line, "#") {
+				break // remarks stand first
+			}
+			if text, ok := strings.CutPrefix(line, rateRemark); ok {
+				if n, err := strconv.Atoi(strings.TrimSpace(text)); err == nil && n > 0 {
+					*made = madeAt(n)
+				}
+			}
+		}
+		return read(raw)
+	}
+}
+
 // lineError is what is wrong in a line of a coefficient file.
 type lineError struct {
 	line int // from 1
@@ -141,7 +179,13 @@ func eachRow(raw []byte, take func(row []float64) error) error {
 	return nil
 }
 
+// rowsRemark heads the rows of a text of biquads.
+const rowsRemark = "b0 b1 b2 a0 a1 a2"
+
 func tapsFromText(raw []byte) (taps []float64, err error) {
+	if bytes.Contains(raw, []byte("# "+rowsRemark+"\n")) {
+		return nil, errors.New("holds biquads, not taps; read it by the stage biquads")
+	}
 	err = eachRow(raw, func(row []float64) error {
 		taps = append(taps, row...)
 		return nil

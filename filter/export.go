@@ -8,6 +8,8 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"strconv"
+	"strings"
 
 	"fettle/audio/container"
 )
@@ -80,6 +82,7 @@ func (f *Filter) remarks(p *Path) []string {
 	l := f.Latency(p)
 	return []string{
 		fmt.Sprintf("%s, %s, %d Hz", f.chain.Name, f.Phase(), f.rate),
+		strings.TrimPrefix(rateRemark, "# ") + strconv.Itoa(f.rate),
 		fmt.Sprintf("latency %.6g samples, of which %.6g are removed when rendering", l.Exact, l.Removed),
 	}
 }
@@ -89,7 +92,7 @@ func (f *Filter) exportTaps(w io.Writer, p *Path) error {
 }
 
 func (f *Filter) exportBiquads(w io.Writer, p *Path) error {
-	return writeLines(w, append(f.remarks(p), "b0 b1 b2 a0 a1 a2"), p.rows(), func(row [6]float64) string {
+	return writeLines(w, append(f.remarks(p), rowsRemark), p.rows(), func(row [6]float64) string {
 		return fmt.Sprintf("%.17g %.17g %.17g %.17g %.17g %.17g", row[0], row[1], row[2], row[3], row[4], row[5])
 	})
 }

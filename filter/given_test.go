@@ -251,19 +251,28 @@ func TestCoefficientsFromFiles(t *testing.T) {
 	}
 }
 
-// An impulse response belongs to its rate.
-func TestKernelOfAnotherRate(t *testing.T) {
+// Coefficients belong to the rate that their file tells.
+func TestCoefficientsOfAnotherRate(t *testing.T) {
 	dir := t.TempDir()
 	writeFile(t, filepath.Join(dir, "taps.wav"), wavFile(1, []float64{0.25, 0.5}))
-	c, err := Parse([]byte("stages: [{fir: {file: taps.wav}}]"), filepath.Join(dir, "chain.yaml"))
-	if err != nil {
-		t.Fatal(err)
+	writeFile(t, filepath.Join(dir, "taps.txt"), "# a chain\n# rate_hz 48000\n0.25\n0.5\n")
+	writeFile(t, filepath.Join(dir, "taps.json"), `{"rate_hz": 48000, "taps": [0.25, 0.5]}`)
+	writeFile(t, filepath.Join(dir, "rows.txt"), "# rate_hz 48000\n# b0 b1 b2 a0 a1 a2\n1 0 0 1 0 0\n")
+	writeFile(t, filepath.Join(dir, "rows.json"), `{"rate_hz": 48000, "sections": [[1, 0, 0, 1, 0, 0]]}`)
+	for _, stage := range []string{"fir: {file: taps.wav}", "fir: {file: taps.txt}", "fir: {file: taps.json}", "biquads: {file: rows.txt}", "biquads: {file: rows.json}"} {
+		c, err := Parse([]byte("stages: [{"+stage+"}]"), filepath.Join(dir, "chain.yaml"))
+		if err != nil {
+			t.Fatal(err)
+		}
+		if _, err := c.Realise(16000, Written); !errors.Is(err, ErrForRecording) || !strings.Contains(err.Error(), "for 48000 Hz, and at 16000 Hz") {
+			t.Errorf("%s realised at 16000 Hz: %v", stage, err)
+		}
+		if _, err := c.Realise(48000, Written); err != nil {
+			t.Errorf("%s realised at 48000 Hz: %v", stage, err)
+		}
 	}
-	if _, err := c.Realise(16000, Written); !errors.Is(err, ErrForRecording) || !strings.Contains(err.Error(), "at 48000 Hz, which at 16000 Hz") {
-		t.Errorf("realised at 16000 Hz: %v", err)
-	}
-	if _, err := c.Realise(48000, Written); err != nil {
-		t.Errorf("realised at 48000 Hz: %v", err)
+	if _, err := Parse([]byte("stages: [{fir: {file: rows.txt}}]"), filepath.Join(dir, "chain.yaml")); err == nil || !strings.Contains(err.Error(), "stage biquads") {
+		t.Errorf("biquads read as taps: %v", err)
 	}
 }
 

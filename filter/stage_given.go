@@ -17,11 +17,11 @@ import (
 func readFIR(f *fields, c *Chain) func(float64) (plan, error) {
 	const example = "[0.25, 0.5, 0.25]"
 	var taps []float64
-	recordedAt := 0 // Hz; 0 for taps that say nothing of a rate
+	var made madeAt
 	if f.oneOf("taps", "file", example) == "file" {
 		n, path := c.coefficientFile(f)
-		taps = readFile(c, f.d, n, path, formats[[]float64]{tapsFromText, tapsFromJSON, func(r *audio.Recording) ([]float64, error) {
-			recordedAt = r.Format().SampleRate
+		taps = readFile(c, f.d, n, path, formats[[]float64]{noting(&made, tapsFromText), noting(&made, tapsFromJSON), func(r *audio.Recording) ([]float64, error) {
+			made = madeAt(r.Format().SampleRate)
 			return tapsFromWAV(r)
 		}})
 	} else {
@@ -31,10 +31,7 @@ func readFIR(f *fields, c *Chain) func(float64) (plan, error) {
 		f.d.fail(f.at, "%s: %v", f.owner, err)
 	}
 	return func(rate float64) (plan, error) {
-		if recordedAt != 0 && rate != ampleRate && rate != float64(recordedAt) {
-			return plan{}, fmt.Errorf("its file is an impulse response at %d Hz, which at %g Hz is another filter; give one at that rate, or add when: rate == %d Hz", recordedAt, rate, recordedAt)
-		}
-		return plan{gain: 1, taps: taps}, nil
+		return plan{gain: 1, taps: taps}, made.check(rate)
 	}
 }
 
@@ -60,16 +57,17 @@ const maxCoefficient = 1e10
 func readBiquads(f *fields, c *Chain) func(float64) (plan, error) {
 	const example = "[[1, 0, 0, 1, -0.5, 0]]"
 	var sections []response.Section
+	var made madeAt
 	if f.oneOf("sections", "file", example) == "file" {
 		n, path := c.coefficientFile(f)
-		sections = readFile(c, f.d, n, path, formats[[]response.Section]{text: sectionsFromText, json: sectionsFromJSON})
+		sections = readFile(c, f.d, n, path, formats[[]response.Section]{text: noting(&made, sectionsFromText), json: noting(&made, sectionsFromJSON)})
 	} else {
 		sections = f.inlineSections(f.need("sections", example), example)
 	}
 	if len(sections) == 0 {
 		f.d.fail(f.at, "%s has no sections; it needs at least one", f.owner)
 	}
-	return func(float64) (plan, error) { return curve(sections), nil }
+	return func(rate float64) (plan, error) { return curve(sections), made.check(rate) }
 }
 
 func (f *fields) inlineSections(n ast.Node, example string) []response.Section {

@@ -36,13 +36,19 @@ func (d *deconvolver) channel(number int, y []float64, driftErr float64) *Result
 	}
 	linear := e.linear(e.mean)
 	m := newMeasurement(e, linear, peakOf(linear))
-	if folded := r.warnFolded(m, linear); !folded && m.goesOn(linear) {
+	folded := r.warnFolded(m, linear)
+	if !folded && m.goesOn(linear) {
 		r.Warnings = append(r.Warnings, fmt.Sprintf("the response of channel %d still goes on %.1f s after its peak, when the next repeat begins; make a probe with a longer pause",
 			number, float64(e.late)/float64(e.p.Rate)))
 	}
 	r.Noise = m.bandNoise()
 	r.warnWeak(m)
-	r.Products = e.products(m.mean)
+	if r.Products = e.products(m.mean); folded {
+		for i := range r.Products {
+			r.Products[i].Level, r.Products[i].Err = math.NaN(), math.NaN()
+			r.Products[i].NotStated = "folded harmonics fall among the orders"
+		}
+	}
 	m.measureAll()
 	m.state(r)
 	r.placeIn(m, driftErr)
@@ -125,8 +131,9 @@ func (m *measurement) goesOn(linear []float64) bool {
 	return end > float64(to-from)*prominent*m.perSample() && end > loudEnd*all
 }
 
-// loudEnd is the share of a response's energy that its end may hold: -60 dB.
-const loudEnd = 1e-6
+// loudEnd is the share of a response's energy that its end may hold: -100 dB, for what rings
+// longest is a narrow band.
+const loudEnd = 1e-10
 
 // noiseIn is the noise of the mean in a band, as mean |N|².
 func (m *measurement) noiseIn(b figures.Band) float64 {

@@ -35,7 +35,7 @@ const nothing = 1e-9
 func entries(f *figures.Figures) []entry {
 	list := []entry{
 		{&f.Latency, plain, "residual_samples"},
-		{&f.DelaySpread, plain, "delay_spread"},
+		{&f.DelaySpread, mean, "delay_spread"},
 		{&f.PhaseDeviation, mean, "phase_deviation"},
 		{&f.SumTest, plain, "sum_test"},
 		{&f.D90, length, "d90_ms"},

@@ -40,6 +40,9 @@ func driftOf(r *capture.Report) string {
 	if math.Abs(r.Drift.PPM) <= r.Drift.Err {
 		s = plusMinus(r.Drift.PPM, r.Drift.Err, 3) + " ppm: none that can be told"
 	}
+	if math.IsNaN(r.Drift.Err) {
+		s = plusMinus(r.Drift.PPM, r.Drift.Err, 3) + " ppm"
+	}
 	if r.Drift.NotStated != "" {
 		s += "; " + r.Drift.NotStated
 	}
@@ -273,7 +276,7 @@ func CaptureWords(c *capture.Result) []string {
 	if c.Absent != "" {
 		return []string{"Not stated: " + c.Absent + "."}
 	}
-	return words(c.Figures, c.Verdicts)
+	return wordsOf(c.Figures, c.Errors, c.Verdicts)
 }
 
 // PairWords says in sentences what a channel of a pair does to timing.
@@ -281,8 +284,7 @@ func PairWords(r *pair.Report, c *pair.Result) []string {
 	if c.Absent != "" {
 		return []string{"Not stated: " + c.Absent + "."}
 	}
-	f, _ := r.FiguresOf(c)
-	out := []string{timingOf(f)}
+	out := []string{timingWithin(r.FiguresOf(c))}
 	if s := nearest(c.Verdicts); s != "" {
 		out = append(out, s)
 	}

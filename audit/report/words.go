@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"fettle/audit"
 	"fettle/audit/figures"
@@ -20,7 +21,12 @@ const (
 func Words(r *audit.Result) []string { return words(r.Figures, r.Verdicts) }
 
 func words(f *figures.Figures, verdicts []limits.Verdict) []string {
-	out := []string{timingOf(f), mixing(f)}
+	return wordsOf(f, nil, verdicts)
+}
+
+// wordsOf are those of figures that were measured with half widths errs.
+func wordsOf(f, errs *figures.Figures, verdicts []limits.Verdict) []string {
+	out := []string{timingWithin(f, errs), mixing(f)}
 	if s := nearest(verdicts); s != "" {
 		out = append(out, s)
 	}
@@ -29,11 +35,15 @@ func words(f *figures.Figures, verdicts []limits.Verdict) []string {
 
 func timing(r *audit.Result) string { return timingOf(r.Figures) }
 
-func timingOf(f *figures.Figures) string {
+func timingOf(f *figures.Figures) string { return timingWithin(f, nil) }
+
+func timingWithin(f, errs *figures.Figures) string {
 	var s string
 	switch last, first, ok := extremes(f.Bands); {
 	case math.IsNaN(f.DelaySpread) || !ok:
 		s = "How far its bands arrive apart is not stated"
+	case errs != nil && !(errs.DelaySpread < max(f.DelaySpread/2, smallTime)):
+		s = fmt.Sprintf("How far its bands arrive apart is known to ±%s only", milliseconds(errs.DelaySpread))
 	case f.DelaySpread < smallTime:
 		s = "All carried bands arrive together"
 	default:
@@ -44,9 +54,9 @@ func timingOf(f *figures.Figures) string {
 	}
 	s += fmt.Sprintf("; transients are smeared by %s", milliseconds(f.Pink.Total))
 	if f.Pink.Phase >= smallTime {
-		s += fmt.Sprintf(", %s of it by phase", milliseconds(f.Pink.Phase))
+		s += fmt.Sprintf(", %s of it by phase,", milliseconds(f.Pink.Phase))
 	}
-	return s + ahead(f) + "."
+	return strings.TrimSuffix(s+ahead(f), ",") + "."
 }
 
 // ahead says how early it rings, by whichever weights show it longest.
@@ -84,6 +94,8 @@ func mixing(f *figures.Figures) string {
 	switch {
 	case math.IsNaN(f.SumTest):
 		return "Whether the output may be mixed with the untreated original is not stated."
+	case f.Polarity < 0:
+		return "It inverts polarity: turn that round before mixing with the untreated original, which it would cancel."
 	case f.SumTest > -smallLoss:
 		return "The output may be mixed with the untreated original: no carried band is weakened by its timing."
 	}

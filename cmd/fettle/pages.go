@@ -111,7 +111,7 @@ func capturePage(c *cli.Context, n report.Names, r *capture.Report) (page.Page, 
 }
 
 // measuredNote says what differs from the page of a chain.
-const measuredNote = "Shaded bands and ± are 95 % intervals. A band counts as carried when it lies within 40 dB of the median band and stands out of the noise."
+const measuredNote = "Shaded bands and ± are 95 % intervals."
 
 // notesOf makes whole sentences of warnings.
 func notesOf(warnings []string) []string {
