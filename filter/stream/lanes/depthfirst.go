@@ -30,12 +30,15 @@ const cacheLine = 64
 func (v *vector) wide() bool { return v.size >= widePoints }
 
 // scratch returns room for a block, at the start of a cache line.
-func (v *vector) scratch() []float64 {
+func (v *vector) scratch() []float64 { return aligned(v.scratchSize()) }
+
+// scratchSize is how much of it convolve writes to.
+func (v *vector) scratchSize() int {
 	n := 2 * v.size
 	if v.wide() {
 		n += 2 * 16 * pad
 	}
-	return aligned(n)
+	return n
 }
 
 func aligned(n int) []float64 {

@@ -93,6 +93,9 @@ func (p *Plan) Convolve(yre, yim, re, im []float64, s *Scratch) {
 		}
 	}
 	if p.vector != nil {
+		if n := p.vector.scratchSize(); len(s.vector) < n { // the assembly would write beyond it
+			panic(fmt.Sprintf("lanes: a scratch of %d samples: this plan's takes %d", len(s.vector), n))
+		}
 		p.vector.convolve(yre, yim, re, im, s.vector)
 		return
 	}

@@ -14,4 +14,6 @@ func newVector(machine.Kernel, []complex128, []factor) *vector {
 
 func (v *vector) scratch() []float64 { return nil }
 
+func (v *vector) scratchSize() int { return 0 }
+
 func (v *vector) convolve(yre, yim, re, im, x []float64) {}
