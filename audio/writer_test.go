@@ -14,6 +14,7 @@ import (
 	"testing"
 
 	"fettle/audio/container"
+	"fettle/audio/needs"
 	"fettle/audio/pcm"
 )
 
@@ -305,7 +306,7 @@ func TestChannelMaskSurvivesAFormatChange(t *testing.T) {
 func TestFullDisk(t *testing.T) {
 	full, err := os.OpenFile("/dev/full", os.O_WRONLY, 0)
 	if err != nil {
-		t.Skipf("this system has no device that is always full: %v", err)
+		needs.Missing(t, "this system has no device that is always full: %v", err)
 	}
 	defer full.Close()
 	for name, frames := range map[string]int{"while writing": long, "at Commit": 10} {

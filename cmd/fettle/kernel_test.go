@@ -6,6 +6,7 @@ import (
 	"path/filepath"
 	"testing"
 
+	"fettle/audio/needs"
 	"fettle/filter/stream/machine"
 )
 
@@ -58,7 +59,7 @@ func TestUnknownKernel(t *testing.T) {
 func TestOtherKernelThanTheRecord(t *testing.T) {
 	other := machine.Available()[len(machine.Available())-1].String()
 	if other == "portable" {
-		t.Skip("only the portable kernel runs here")
+		needs.Missing(t, "missing: a processor with AVX2 and FMA, for a second kernel")
 	}
 	start := func() *bench {
 		b := newBench(t)

@@ -9,6 +9,7 @@ import (
 	"strings"
 	"testing"
 
+	"fettle/audio/needs"
 	"fettle/cmd/fettle/internal/batch"
 	"fettle/filter/stream/machine"
 )
@@ -308,7 +309,7 @@ func TestGatherRefuses(t *testing.T) {
 	t.Run("mixed kernels", func(t *testing.T) {
 		other := machine.Available()[len(machine.Available())-1].String()
 		if other == "portable" {
-			t.Skip("only the portable kernel runs here")
+			needs.Missing(t, "missing: a processor with AVX2 and FMA, for a second kernel")
 		}
 		b := newBench(t)
 		b.mixedSizes()

@@ -13,11 +13,12 @@ import (
 	"syscall"
 	"testing"
 	"time"
+
+	"fettle/audio/needs"
 )
 
-// needs skips a test where programs are missing, and names them. In CI, which
-// installs them, they must be there.
-func needs(t *testing.T, packages string, programs ...string) {
+// needsPrograms names the programs that are missing.
+func needsPrograms(t *testing.T, packages string, programs ...string) {
 	t.Helper()
 	var missing []string
 	for _, p := range programs {
@@ -25,12 +26,8 @@ func needs(t *testing.T, packages string, programs ...string) {
 			missing = append(missing, p)
 		}
 	}
-	switch {
-	case missing == nil:
-	case os.Getenv("CI") != "":
-		t.Fatalf("missing: %s (Debian: %s)", strings.Join(missing, ", "), packages)
-	default:
-		t.Skipf("missing: %s (Debian: %s)", strings.Join(missing, ", "), packages)
+	if missing != nil {
+		needs.Missing(t, "missing: %s (Debian: %s)", strings.Join(missing, ", "), packages)
 	}
 }
 
@@ -39,7 +36,7 @@ func needs(t *testing.T, packages string, programs ...string) {
 // one process.
 func TestSlurmArray(t *testing.T) {
 	t.Setenv("PATH", os.Getenv("PATH")+":/usr/sbin:/sbin") // where Debian puts the daemons
-	needs(t, "slurm-wlm munge", "bash", "munged", "slurmctld", "slurmd", "sbatch", "sinfo", "squeue", "scancel")
+	needsPrograms(t, "slurm-wlm munge", "bash", "munged", "slurmctld", "slurmd", "sbatch", "sinfo", "squeue", "scancel")
 	b := newBench(t)
 	const count, tasks = 100, 4
 	for i := range count {

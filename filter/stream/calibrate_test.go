@@ -1,7 +1,8 @@
+//go:build calibrate
+
 package stream
 
 import (
-	"flag"
 	"fmt"
 	"go/format"
 	"os"
@@ -15,19 +16,14 @@ import (
 	"fettle/filter/stream/machine"
 )
 
-var calibrate = flag.Bool("calibrate", false, "measure the planner's constants anew and write costs.go")
-
 // largestCalibrated is the largest block that is measured, in points.
 const largestCalibrated = 1 << 21
 
 // TestCalibrate writes costs.go. It is a program rather than a test, and needs
 // all kernels and a quiet machine:
 //
-//	GOMAXPROCS=1 go test -run TestCalibrate ./filter/stream -calibrate
+//	GOMAXPROCS=1 go test -tags calibrate -run TestCalibrate ./filter/stream
 func TestCalibrate(t *testing.T) {
-	if !*calibrate {
-		t.Skip("measures only with -calibrate")
-	}
 	if len(machine.Available()) != 3 {
 		t.Fatalf("kernels %s: a machine that runs all of them is needed", machine.Names())
 	}

@@ -15,6 +15,7 @@ import (
 	"testing"
 	"time"
 
+	"fettle/audio/needs"
 	"fettle/audit"
 	"fettle/audit/report"
 
@@ -63,11 +64,7 @@ func startedBrowser(t *testing.T) context.Context {
 	t.Helper()
 	program, err := exec.LookPath("chromium")
 	if err != nil {
-		const missing = "chromium is missing: apt-get install chromium"
-		if os.Getenv("CI") == "true" {
-			t.Fatal(missing)
-		}
-		t.Skip(missing)
+		needs.Missing(t, "missing: chromium (Debian: chromium)")
 	}
 	browser.Do(func() {
 		// The page is our own: a browser run by root, as in a container, has no sandbox.

@@ -122,23 +122,6 @@ func TestSplits(t *testing.T) {
 	})
 }
 
-// TestArrangementIsNoMatter: a channel comes out the same from every kernel in
-// assembly, alone and beside others.
-func TestArrangementIsNoMatter(t *testing.T) {
-	kernels := inAssembly(t)
-	x := noise(13, 3, 1000, 1)
-	for count := 1; count <= 20; count++ {
-		sections := resonances(uint64(count), count)
-		for _, kernel := range kernels {
-			y := planes(3, 1000)
-			New(sections, 3, kernel).Process(y, x)
-			for c := range y {
-				sameBits(t, fmt.Sprintf("%v, %d sections, channel %d", kernel, count, c), y[c], fused(sections, x[c]))
-			}
-		}
-	}
-}
-
 // TestFallsSilent: the states of a section that has decayed are zero, not small.
 func TestFallsSilent(t *testing.T) {
 	atEachKernel(t, func(t *testing.T, kernel machine.Kernel) {

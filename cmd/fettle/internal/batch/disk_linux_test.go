@@ -11,6 +11,7 @@ import (
 	"testing"
 
 	"fettle/audio"
+	"fettle/audio/needs"
 	"fettle/audio/pcm"
 )
 
@@ -18,11 +19,11 @@ import (
 func mount(t *testing.T, path string, mib int, flags uintptr) {
 	t.Helper()
 	if os.Geteuid() != 0 {
-		t.Skip("mounting a file system takes root")
+		needs.Missing(t, "missing: root, to mount a small file system")
 	}
 	mustDo(t, os.MkdirAll(path, 0o777))
 	if err := syscall.Mount("tmpfs", path, "tmpfs", flags, fmt.Sprintf("size=%dm", mib)); err != nil {
-		t.Skipf("no file system can be mounted here: %v", err)
+		needs.Missing(t, "missing: the right to mount a small file system: %v", err)
 	}
 	t.Cleanup(func() { mustDo(t, syscall.Unmount(path, 0)) })
 }

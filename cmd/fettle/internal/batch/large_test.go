@@ -28,10 +28,10 @@ func sparse(t *testing.T, path string, spec audio.Spec) {
 }
 
 // TestOutgrowsRIFF renders recordings whose outputs are too large for RIFF: with
-// a limit of 100 kB, and with FETTLE_LARGE set a real one of 5 GiB.
+// a limit of 100 kB, and with the tag large a real one of 5 GiB.
 func TestOutgrowsRIFF(t *testing.T) {
 	frames, limit := int64(60_000), int64(100_000)
-	if os.Getenv("FETTLE_LARGE") != "" {
+	if realSize {
 		frames, limit = 5<<29, 0
 	}
 	in, out := filepath.Join(t.TempDir(), "in"), filepath.Join(t.TempDir(), "out")

@@ -1,0 +1,5 @@
+//go:build large
+
+package batch
+
+const realSize = true
