@@ -9,6 +9,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"fettle/audio/needs"
 )
 
 // Current runs a generator as go:generate does and compares what it writes with
@@ -20,7 +22,7 @@ func Current(t *testing.T, module, program string, args ...string) {
 	t.Helper()
 	goTool := goCommand(t)
 	if out, err := command(goTool, "-C", module, "mod", "download").CombinedOutput(); err != nil {
-		missing(t, "the generator's modules: %v\n%s", err, out)
+		needs.Missing(t, "missing: the generator's modules: %v\n%s", err, out)
 	}
 	// The arguments go into the header, so they must be those of go:generate.
 	work := filepath.Join(t.TempDir(), "work")
@@ -74,7 +76,7 @@ func goCommand(t *testing.T) string {
 	t.Helper()
 	path, err := exec.LookPath("go")
 	if err != nil {
-		missing(t, "the go command: %v", err)
+		needs.Missing(t, "missing: the go command: %v", err)
 	}
 	return path
 }
@@ -85,14 +87,6 @@ func command(name string, args ...string) *exec.Cmd {
 	c := exec.Command(name, args...)
 	c.Env = append(os.Environ(), "GOFLAGS=-mod=readonly -buildvcs=false", "GOWORK=off", "GOOS=", "GOARCH=")
 	return c
-}
-
-func missing(t *testing.T, format string, args ...any) {
-	t.Helper()
-	if os.Getenv("CI") != "" {
-		t.Fatalf("missing: "+format, args...)
-	}
-	t.Skipf("missing: "+format, args...)
 }
 
 func compare(t *testing.T, committed, fresh string) {

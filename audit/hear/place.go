@@ -57,15 +57,9 @@ func (w *watched) ReadFrames(dst []float64) (int, error) {
 
 // readAll reads frames until dst is full.
 func readAll(src audio.Source, dst []float64) error {
-	for len(dst) > 0 {
-		n, err := src.ReadFrames(dst)
-		if errors.Is(err, io.EOF) {
-			return fmt.Errorf("the recording ends sooner than it says: %w; wait until nothing writes to it", io.ErrUnexpectedEOF)
-		}
-		if err != nil {
-			return err
-		}
-		dst = dst[n*src.Format().NumChannels:]
+	_, err := audio.ReadFull(src, dst)
+	if errors.Is(err, io.ErrUnexpectedEOF) {
+		return fmt.Errorf("the recording ends sooner than it says: %w; wait until nothing writes to it", err)
 	}
-	return nil
+	return err
 }

@@ -133,16 +133,9 @@ func alongside(processed audio.Source, i int, tracks []*track, buffer []float64,
 // fill reads frames until dst is full or the source ends, and returns how many
 // samples that are.
 func fill(src audio.Source, dst []float64) (int, error) {
-	filled := 0
-	for filled < len(dst) {
-		frames, err := src.ReadFrames(dst[filled:])
-		if errors.Is(err, io.EOF) {
-			break
-		}
-		if err != nil {
-			return filled, err
-		}
-		filled += frames * src.Format().NumChannels
+	n, err := audio.ReadFull(src, dst)
+	if errors.Is(err, io.ErrUnexpectedEOF) {
+		err = nil
 	}
-	return filled, nil
+	return n, err
 }

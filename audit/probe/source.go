@@ -107,7 +107,7 @@ func (p Parameters) Verify(file audio.Source) error {
 		if err != nil {
 			return err
 		}
-		if err := fill(own, want[:n*p.Channels]); err != nil {
+		if _, err := audio.ReadFull(own, want[:n*p.Channels]); err != nil {
 			return &AlteredError{frame, fmt.Sprintf("it goes on after frame %d", p.Frames())}
 		}
 		for i := range n * p.Channels {
@@ -118,16 +118,4 @@ func (p Parameters) Verify(file audio.Source) error {
 		}
 		frame += int64(n)
 	}
-}
-
-// fill reads exactly as many samples as dst holds.
-func fill(src audio.Source, dst []float64) error {
-	for len(dst) > 0 {
-		n, err := src.ReadFrames(dst)
-		if err != nil {
-			return err
-		}
-		dst = dst[n*src.Format().NumChannels:]
-	}
-	return nil
 }

@@ -1,7 +1,6 @@
 package report
 
 import (
-	"encoding/json"
 	"io"
 	"math"
 	"slices"
@@ -80,9 +79,7 @@ func CompareJSON(w io.Writer, c *choose.Comparison, version string) error {
 	for _, a := range c.Advice {
 		doc.Advice = append(doc.Advice, adviceOf(c, a))
 	}
-	enc := json.NewEncoder(w)
-	enc.SetIndent("", " ")
-	return enc.Encode(doc)
+	return writeJSON(w, doc)
 }
 
 func comparisonRowOf(c *choose.Comparison, row *choose.Row) comparisonRow {

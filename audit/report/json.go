@@ -180,13 +180,13 @@ func JSONHeard(w io.Writer, results []*audit.Result, heard Heard, version string
 	for _, r := range results {
 		doc.Results = append(doc.Results, resultOf(r))
 	}
-	return doc.write(w)
+	return writeJSON(w, doc)
 }
 
-func (d document) write(w io.Writer) error {
+func writeJSON(w io.Writer, doc any) error {
 	enc := json.NewEncoder(w)
 	enc.SetIndent("", " ")
-	return enc.Encode(d)
+	return enc.Encode(doc)
 }
 
 func resultOf(r *audit.Result) result {

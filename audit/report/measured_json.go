@@ -68,15 +68,11 @@ const (
 
 // CaptureJSON writes a capture's audit in the layout of a chain's.
 func CaptureJSON(w io.Writer, n Names, r *capture.Report, version string) error {
-	return captureOf(n, r, version).write(w)
-}
-
-func captureOf(n Names, r *capture.Report, version string) document {
 	doc := document{Schema: Schema, Version: version, Results: []result{}, Capture: captureJSON(n, r)}
 	for _, c := range r.Channels {
 		doc.Results = append(doc.Results, capturedJSON(c))
 	}
-	return doc
+	return writeJSON(w, doc)
 }
 
 func captureJSON(n Names, r *capture.Report) *captureDocument {
@@ -135,7 +131,7 @@ func PairJSON(w io.Writer, n Names, r *pair.Report, version string) error {
 	for _, c := range r.Channels {
 		doc.Results = append(doc.Results, pairedJSON(r, c))
 	}
-	return doc.write(w)
+	return writeJSON(w, doc)
 }
 
 func pairedJSON(r *pair.Report, c *pair.Result) result {

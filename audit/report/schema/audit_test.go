@@ -22,24 +22,9 @@ import (
 	goaudio "github.com/go-audio/audio"
 )
 
-// memory plays samples, interleaved.
-type memory struct {
-	rate, channels int
-	samples        []float64
-}
-
-func (m *memory) Format() *goaudio.Format {
-	return &goaudio.Format{SampleRate: m.rate, NumChannels: m.channels}
-}
-func (m *memory) Frames() int64 { return int64(len(m.samples) / m.channels) }
-
-func (m *memory) ReadFrames(dst []float64) (int, error) {
-	if len(m.samples) == 0 {
-		return 0, io.EOF
-	}
-	n := copy(dst, m.samples)
-	m.samples = m.samples[n:]
-	return n / m.channels, nil
+// playing is a source of interleaved samples.
+func playing(rate, channels int, samples []float64) audio.Source {
+	return audio.FromFrames(&goaudio.Format{SampleRate: rate, NumChannels: channels}, samples)
 }
 
 // audits are of chains with channels and stages apart, figures not stated, limits, a
@@ -83,7 +68,7 @@ func chainAudit(t *testing.T, text string, heard bool) []byte {
 		}
 		h.Recording = "noise.wav"
 		x := noise(rate, 1)
-		if h.Onsets, err = onsets.Measure(&memory{rate, 1, x}, &memory{rate, 1, x}, onsets.Options{}); err != nil {
+		if h.Onsets, err = onsets.Measure(playing(rate, 1, x), playing(rate, 1, x), onsets.Options{}); err != nil {
 			t.Fatal(err)
 		}
 		stages, err := audit.Stages(f.Chain(), rate, filter.Written, machine.Portable)
@@ -115,7 +100,7 @@ func captureAudit(t *testing.T, repeats int) []byte {
 			y[i] += 0.5*x[i/2] + 0.1*x[i/2]*x[i/2]
 		}
 	}
-	c, err := capture.Measure(p, &memory{p.Rate, 2, y})
+	c, err := capture.Measure(p, playing(p.Rate, 2, y))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -130,7 +115,7 @@ func pairAudit(t *testing.T, do func(x []float64) []float64) []byte {
 	const rate = 8000
 	x := noise(20*rate, 1)
 	open := func(x []float64) pair.Opener {
-		return func() (audio.Source, error) { return &memory{rate, 1, x}, nil }
+		return func() (audio.Source, error) { return playing(rate, 1, x), nil }
 	}
 	r, err := pair.Measure(open(x), open(do(x)))
 	if err != nil {

@@ -2,7 +2,6 @@ package batch
 
 import (
 	"fmt"
-	"io"
 	"math"
 	"math/cmplx"
 
@@ -134,10 +133,10 @@ func (r *rendering) compareWindows(out *audio.Recording, starts []int64, length 
 		}
 		for left := length; left > 0; {
 			n := int(min(left, proofFrames))
-			if err := readFull(r.rec, x[:n*channels]); err != nil {
+			if _, err := audio.ReadFull(r.rec, x[:n*channels]); err != nil {
 				return err
 			}
-			if err := readFull(out, y[:n*channels]); err != nil {
+			if _, err := audio.ReadFull(out, y[:n*channels]); err != nil {
 				return err
 			}
 			for c, alignment := range to {
@@ -153,21 +152,6 @@ func (r *rendering) compareWindows(out *audio.Recording, starts []int64, length 
 
 // proofFrames is how many frames are read at a time.
 const proofFrames = 4096
-
-// readFull reads until x is full.
-func readFull(src audio.Source, x []float64) error {
-	for len(x) > 0 {
-		n, err := src.ReadFrames(x)
-		if err == io.EOF {
-			return io.ErrUnexpectedEOF
-		}
-		if err != nil {
-			return err
-		}
-		x = x[n*src.Format().NumChannels:]
-	}
-	return nil
-}
 
 // pick takes one channel out of interleaved frames.
 func pick(plane, frames []float64, channel, channels int) {
